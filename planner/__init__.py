@@ -1,0 +1,1 @@
+"""Front door of the planner: a Case goes in, a Plan comes out."""
