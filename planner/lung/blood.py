@@ -29,6 +29,7 @@ ML_OXYGEN_PER_DL_MMHG = 0.0031
 
 ML_PER_MMOL = 22.26  # molar volume of carbon dioxide; Douglas AR et al., J Appl Physiol 1988;65:473
 DL_PER_L = 10.0
+HIGHEST_CELL_PH = 7.8  # planning assumption: the end of the range of pH met in life
 
 # Zander R, in: Blood Gases, Oxygen and Acid-Base (the Van Slyke equation, after Siggaard-Andersen), 1998.
 CO2_SOLUBILITY_MMOL_L_MMHG = 0.0304
@@ -113,11 +114,13 @@ def carbon_dioxide_content_ml_dl(
     """Carbon dioxide held by whole blood (mL/dL).
 
     Plasma 2.226 s PCO2 (1 + 10^(pH - pK')), times 1 - 0.0289 Hb / [(3.352 - 0.456 S)(8.142 - pH)].
+    The red-cell term is kept at its value of pH 7.8 in blood more alkaline than that, for which it was not made.
     Source: Douglas AR, Jones NL, Reed JW, J Appl Physiol 1988;65:473, with pK' and s of Kelman.
     """
     dissolved = ML_PER_MMOL / DL_PER_L * carbon_dioxide_solubility_mmol_l_mmhg(temperature_c) * pco2_mmhg
     plasma = dissolved * (1.0 + 10.0 ** (ph - apparent_pk(ph, temperature_c)))
-    cells = 0.0289 * haemoglobin_g_dl / ((3.352 - 0.456 * saturation) * (8.142 - ph))
+    held = np.minimum(ph, HIGHEST_CELL_PH)
+    cells = 0.0289 * haemoglobin_g_dl / ((3.352 - 0.456 * saturation) * (8.142 - held))
     result: Numbers = plasma * (1.0 - cells)  # type: ignore[assignment]
     return result
 
