@@ -36,8 +36,9 @@ CARDIAC_OUTPUT_L_MIN = 6.0
 
 HIGHEST_LOG_SD = 2.5
 HIGHEST_SHUNT = 0.5
-LOWEST_PO2_MMHG = 22.0  # an arterial PO2 below is no steady state of rest that this model was checked for
+LOWEST_PO2_MMHG = 20.0  # an arterial PO2 below is no steady state of rest that this model was checked for
 
+FIRST_STEPS = 10  # nearly every sample that has a solution has found it by then
 MOST_STEPS = 40
 PO2_TOLERANCE_MMHG = 1e-6
 LARGEST_FACTOR = 4.0  # how far one step may raise or lower a pressure
@@ -134,12 +135,21 @@ def exchange(
     flat = [np.ascontiguousarray(values).reshape(-1) for values in given]
     if (flat[0] > flat[1] + 1e-9).any():
         raise InputError("inspired_po2_mmhg", "Inspired oxygen pressure is above the pressure of the dry gas breathed.")
+    solved = _in_blocks(flat, nodes, FIRST_STEPS)
+    slow = np.flatnonzero(solved.below_range)
+    if slow.size:
+        again = _in_blocks([values[slow] for values in flat], nodes, MOST_STEPS)
+        for one in fields(Exchange):
+            getattr(solved, one.name)[slow] = getattr(again, one.name)
+    return Exchange(*(getattr(solved, one.name).reshape(shape) for one in fields(Exchange)))
+
+
+def _in_blocks(given: list[Array], nodes: int, steps: int) -> Exchange:
     blocks = [
-        _solve([values[start : start + BLOCK] for values in flat], nodes) for start in range(0, flat[0].size, BLOCK)
+        _solve([values[start : start + BLOCK] for values in given], nodes, steps)
+        for start in range(0, given[0].size, BLOCK)
     ]
-    return Exchange(
-        *(np.concatenate([getattr(block, one.name) for block in blocks]).reshape(shape) for one in fields(Exchange))
-    )
+    return Exchange(*(np.concatenate([getattr(block, one.name) for block in blocks]) for one in fields(Exchange)))
 
 
 @cache
@@ -149,7 +159,7 @@ def _flow_nodes(nodes: int) -> tuple[Array, Array]:
     return points, weights / weights.sum()
 
 
-def _solve(given: list[Array], nodes: int) -> Exchange:
+def _solve(given: list[Array], nodes: int, steps: int) -> Exchange:
     """Newton's method for one block; every array of `given` has shape (samples,)."""
     inspired, dry, paco2, log_sd, shunt, haemoglobin, uptake, quotient, output, base_excess = given
     points, weights = _flow_nodes(nodes)
@@ -175,7 +185,7 @@ def _solve(given: list[Array], nodes: int) -> Exchange:
     inspired_units = inspired[:, None]
     settled = np.zeros(po2_a.shape, dtype=bool)
     with np.errstate(all="ignore"):  # samples without a solution run away; they are marked below
-        for _ in range(MOST_STEPS):
+        for _ in range(steps):
             unit = blood_state(po2, pco2, ph, hb_units, be_units)
             artery = blood_state(po2_a, paco2, ph_a, haemoglobin, base_excess)
             step, unit_steps = _newton_step(
