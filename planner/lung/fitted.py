@@ -1,0 +1,191 @@
+"""The fitted lung of one person: many drawn lungs, and what the blood of each is in any air."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import NDArray
+
+from planner.air.inspired import WATER_VAPOUR_MMHG
+from planner.air.ranges import Array, FloatOrArray, require_within
+from planner.errors import InputError
+from planner.lung import diffusion, ventilation
+from planner.lung.alveolar import carbon_dioxide_factor
+from planner.lung.blood_shift import SaturationCurve
+from planner.lung.gas_exchange import HIGHEST_LOG_SD
+from planner.lung.reading import Activity, Person
+from planner.lung.response import AIR, RESPIRATORY_QUOTIENT, Body, Response
+
+# The model's own error for one person, SD per fall of inspired PO2: with the other spreads it makes the residual SD
+# of 3.6 to 5 mmHg of published predictions from a ground gas (Edvardsen 2013, Kelly 2009, Dillard 1989).
+STRUCTURAL_SD_MMHG = 3.0
+REFERENCE_FALL_MMHG = ventilation.REFERENCE_FALL_MMHG
+ANCHORED_SHARE = 0.7  # of that error between and beyond two anchors, over the distance to the nearest; assumption
+
+LEAST_MMHG = 25.0  # an arterial PO2 below is "below model range"
+CURVE_POINTS = 16
+CURVE_START_MMHG = 40.0
+
+
+@dataclass(frozen=True)
+class Arterial:
+    """Arterial blood of every draw at every point: arrays (draws, points), pressures in mmHg.
+
+    A draw below the model's range stands at its lower end, 25 mmHg: a quantile there reads "25 or lower".
+    share_below (points,) is the share of such draws; below_range (points,) is true where they are most.
+    """
+
+    po2_mmhg: Array
+    saturation: Array
+    paco2_mmhg: Array
+    share_below: Array
+    below_range: NDArray[np.bool_]
+
+
+@dataclass(frozen=True)
+class FittedLung:
+    """Many lungs that agree with what was measured. Arrays have shape (draws,)."""
+
+    person: Person
+    body: Body
+    log_sd: Array
+    shunt: Array
+    paco2_mmhg: Array  # at rest, where the first reading was taken
+    hypoxic_gain_l_min: Array
+    fall_z: Array
+    structural_z: Array
+    anchored_z: Array
+    walking_extra_mmhg: Array
+    diffusing_capacity: Array | None
+    sleep_rise_mmhg: Array
+    acclimatised_exponent: Array
+    base_inspired_mmhg: float
+    anchors_mmhg: tuple[float, ...]  # inspired PO2 of the readings that tie the model down
+    widened: tuple[str, ...]
+    _responses: dict[str, Response] = field(default_factory=dict, repr=False, compare=False)
+
+    def arterial(
+        self,
+        inspired_po2_mmhg: FloatOrArray,
+        barometric_mmhg: FloatOrArray,
+        *,
+        activity: Activity = "rest",
+        hours_at_altitude: FloatOrArray = 0.0,
+        ventilation_depression: FloatOrArray = 0.0,
+    ) -> Arterial:
+        """Arterial blood in this air.
+
+        inspired_po2_mmhg: scalar, (points,) or (draws, points), 20 to 760, added oxygen included; barometric_mmhg and
+        hours_at_altitude (since arrival, 0 is acute): scalar or (points,). ventilation_depression: share of alveolar
+        ventilation lost beyond sleep, 0 to 0.5. Raises InputError outside.
+        """
+        inspired, dry, hours = self._checked(inspired_po2_mmhg, barometric_mmhg, hours_at_altitude)
+        depression = require_within("ventilation_depression", "Lost ventilation", ventilation_depression, 0.0, 0.5)
+        pco2 = self._pco2_mmhg(inspired, hours)
+        if activity == "asleep":
+            pco2 = pco2 + self.sleep_rise_mmhg[:, None]
+        pco2 = pco2 / (1.0 - depression)
+        po2 = self._response(activity).arterial_po2_mmhg(inspired, dry, pco2) + self._model_error_mmhg(inspired)
+        fall = self.base_inspired_mmhg - inspired
+        if self.diffusing_capacity is not None:
+            strain = 2.0 if activity == "walking" else 1.0
+            po2 -= strain * diffusion.diffusion_fall_mmhg(self.diffusing_capacity[:, None], fall)
+        if activity == "walking":
+            po2 -= self.walking_extra_mmhg[:, None]
+        ideal = inspired - pco2 * carbon_dioxide_factor(inspired / dry, RESPIRATORY_QUOTIENT)
+        po2 = np.minimum(po2, ideal)  # no blood is above the alveolar gas it met
+        below = po2 < LEAST_MMHG
+        share = below.mean(axis=0)
+        po2[below] = LEAST_MMHG
+        return Arterial(po2, self.blood.saturation(po2, pco2), pco2, share, share > 0.5)
+
+    @cached_property
+    def blood(self) -> SaturationCurve:
+        """Saturation of this person's blood."""
+        return SaturationCurve(self.body.haemoglobin_g_dl, self.body.base_excess_mmol_l)
+
+    def _checked(
+        self, inspired_po2_mmhg: FloatOrArray, barometric_mmhg: FloatOrArray, hours_at_altitude: FloatOrArray
+    ) -> tuple[Array, Array, Array]:
+        inspired = np.atleast_2d(
+            require_within("inspired_po2_mmhg", "Inspired oxygen pressure", inspired_po2_mmhg, 20.0, 760.0, "mmHg")
+        )
+        pressure = require_within("barometric_mmhg", "Barometric pressure", barometric_mmhg, 230.0, 830.0, "mmHg")
+        dry = np.broadcast_to(np.atleast_1d(pressure) - WATER_VAPOUR_MMHG, inspired.shape[-1:])
+        hours = require_within("hours_at_altitude", "Time at altitude", hours_at_altitude, 0.0, np.inf, "h")
+        if (inspired > dry * (1.0 + 1e-9)).any():
+            raise InputError("inspired_po2_mmhg", "Inspired oxygen is above the pressure of the dry gas breathed.")
+        if inspired.shape[0] not in (1, self.log_sd.size):
+            raise InputError("inspired_po2_mmhg", f"{inspired.shape[0]} rows were given for {self.log_sd.size} draws.")
+        return inspired, dry, hours
+
+    def _response(self, activity: Activity) -> Response:
+        """The solved table for one activity, made when first asked for."""
+        if activity not in self._responses:
+            body, log_sd = self.body, self.log_sd
+            rise = float(self.sleep_rise_mmhg.max()) if activity == "asleep" else 0.0
+            if activity == "walking":
+                body = Body(
+                    body.haemoglobin_g_dl,
+                    body.base_excess_mmol_l,
+                    body.oxygen_uptake_l_min * ventilation.WALKING_UPTAKE_FACTOR,
+                    body.cardiac_output_l_min * ventilation.WALKING_OUTPUT_FACTOR,
+                )
+            if activity == "asleep":
+                log_sd = log_sd * ventilation.SLEEP_LOG_SD_FACTOR
+            lowest, highest = max(0.6 * float(self.paco2_mmhg.min()), 12.0), float(self.paco2_mmhg.max()) + 4.0 + rise
+            self._responses[activity] = Response(body, np.minimum(log_sd, HIGHEST_LOG_SD), self.shunt, lowest, highest)
+        return self._responses[activity]
+
+    def _pco2_mmhg(self, inspired: Array, hours: Array) -> Array:
+        """Arterial PCO2 awake, (draws, points): acute response, its spread, and what days have added."""
+        rest = self.paco2_mmhg[:, None]
+        fall = (self.base_inspired_mmhg - inspired) / REFERENCE_FALL_MMHG
+        distance = np.clip(fall, 0.0, ventilation.MOST_SPREAD_DISTANCE)
+        spread = ventilation.FALL_SPREAD_MMHG * self.fall_z[:, None] * distance
+        if not self.person.can_hyperventilate:
+            return rest + np.maximum(spread, -ventilation.BOUNDED_FALL_MMHG)
+        acute = self._acute_curve_at(inspired) + spread
+        ratio = inspired / self.base_inspired_mmhg
+        target = ventilation.acclimatised_pco2_mmhg(rest, ratio, self.acclimatised_exponent[:, None])
+        return acute + ventilation.acclimatised_share(hours) * np.minimum(target - acute, 0.0)
+
+    @cached_property
+    def _acute_curve(self) -> Array:
+        """Acute PCO2 over inspired PO2 from 40 mmHg to that of the first reading, (draws, CURVE_POINTS)."""
+        inspired = np.linspace(CURVE_START_MMHG, self.base_inspired_mmhg, CURVE_POINTS)[None]
+        dry = inspired[0] / np.maximum(AIR, inspired[0] / 760.0)
+        response = self._response("rest")
+
+        def saturation_at(pco2: Array) -> Array:
+            everywhere = np.broadcast_to(pco2, (pco2.shape[0], CURVE_POINTS))
+            po2 = response.arterial_po2_mmhg(inspired, dry, everywhere)
+            return self.blood.saturation(np.maximum(po2, 0.0), pco2)
+
+        rest = self.paco2_mmhg[:, None]
+        return ventilation.acute_pco2_mmhg(
+            saturation_at, rest, saturation_at(rest)[:, -1:], self.hypoxic_gain_l_min[:, None]
+        )
+
+    def _acute_curve_at(self, inspired: Array) -> Array:
+        step = (self.base_inspired_mmhg - CURVE_START_MMHG) / (CURVE_POINTS - 1)
+        where = np.clip((inspired - CURVE_START_MMHG) / step, 0.0, CURVE_POINTS - 1.000001)
+        index = where.astype(np.int64)
+        share = where - index
+        if inspired.shape[0] == 1:
+            low, high = self._acute_curve[:, index[0]], self._acute_curve[:, index[0] + 1]
+        else:
+            low = np.take_along_axis(self._acute_curve, index, axis=1)
+            high = np.take_along_axis(self._acute_curve, index + 1, axis=1)
+        return low + share * (high - low)
+
+    def _model_error_mmhg(self, inspired: Array) -> Array:
+        """The model's own error of each draw: it grows with the distance from where the lung was measured."""
+        distance = (self.base_inspired_mmhg - inspired) / REFERENCE_FALL_MMHG
+        error = STRUCTURAL_SD_MMHG * self.structural_z[:, None] * distance
+        if len(self.anchors_mmhg) > 1:
+            nearest = np.min([np.abs(inspired - anchor) for anchor in self.anchors_mmhg], axis=0) / REFERENCE_FALL_MMHG
+            error = error + ANCHORED_SHARE * STRUCTURAL_SD_MMHG * self.anchored_z[:, None] * nearest
+        return error

@@ -1,0 +1,222 @@
+"""Answers of the fitted lung at once: the solved lung of every draw as a small table, read by interpolation.
+
+The table stands over the ideal alveolar PO2 (the alveolar gas equation), the arterial PCO2 and, on oxygen or a
+hypoxic mixture, the inspired fraction; its nodes are solved by planner.lung.gas_exchange for a few log SDs and shunts
+that span the draws. What is interpolated is oxygen content, which bends less than pressure. Error against a converged
+solution: at most 0.35 mmHg where the arterial PO2 is below 100 mmHg, shown by a test.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from planner.air.ranges import Array
+from planner.lung import blood
+from planner.lung.alveolar import carbon_dioxide_factor
+from planner.lung.gas_exchange import exchange
+from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic
+
+RESPIRATORY_QUOTIENT = 0.82  # at rest, 0.80 to 0.83; textbook value
+AIR = 0.2093
+TABLE_NODES = 16  # units of a lung in the table
+LOG_SD_NODES = ((0.35, 5), (0.8, 8), (np.inf, 11))  # up to this width of the draws, so many
+SHUNT_NODES = 4
+GREATEST_DRY_MMHG = 760.0  # ground pressure of 807 mmHg, the Dead Sea
+LEAST_DRY_MMHG = 360.0  # ground pressure at 5200 m
+RICHEST = 0.95
+LEAST_ALVEOLAR_MMHG = 30.0
+AIR_ALVEOLAR_MMHG = 125.0
+MOST_ALVEOLAR_MMHG = 600.0
+CONTENT_STEPS = 6000
+MOST_PO2_MMHG = 760.0
+FRACTION_TOLERANCE = 0.003
+FRACTION_PLACES = (0.0, 0.4, 1.0)
+
+
+@dataclass(frozen=True)
+class Body:
+    """What of this body, beside its lungs, bears on gas exchange."""
+
+    haemoglobin_g_dl: float
+    base_excess_mmol_l: float
+    oxygen_uptake_l_min: float = 0.25
+    cardiac_output_l_min: float = 5.2
+
+
+@dataclass(frozen=True)
+class _Branch:
+    """Oxygen pressure over (draw, fraction place, power of carbon dioxide, log alveolar PO2)."""
+
+    po2: Array
+    log_first: float
+    per_log: float
+    steps: int
+
+
+class Response:
+    """The lungs of all draws of one body, ready to be asked for the arterial PO2 of any air.
+
+    log_sd, shunt: shape (draws,). lowest_pco2_mmhg, highest_pco2_mmhg: the arterial PCO2 it may be asked for.
+    """
+
+    def __init__(
+        self, body: Body, log_sd: Array, shunt: Array, lowest_pco2_mmhg: float, highest_pco2_mmhg: float
+    ) -> None:
+        self.body = body
+        self.draws = log_sd.size
+        width = max(float(np.ptp(log_sd)), 0.02)
+        count = next(count for most, count in LOG_SD_NODES if width <= most)
+        self._log_sd_nodes = end_nodes(log_sd.min(), log_sd.min() + width, count)
+        self._shunt_nodes = end_nodes(shunt.min(), max(shunt.max(), shunt.min() + 0.005), SHUNT_NODES)
+        by_log_sd = lagrange(log_sd, self._log_sd_nodes)
+        by_shunt = lagrange(shunt, self._shunt_nodes)
+        self._weights = (by_log_sd[:, :, None] * by_shunt[:, None, :]).reshape(self.draws, -1)
+        self.lowest_pco2_mmhg, self.highest_pco2_mmhg = lowest_pco2_mmhg, highest_pco2_mmhg
+        self._pco2_mid = 0.5 * (lowest_pco2_mmhg + highest_pco2_mmhg)
+        self._pco2_half = 0.5 * (highest_pco2_mmhg - lowest_pco2_mmhg)
+        self._air = self._branch(AIR_ALVEOLAR_MMHG, nodes=9, steps=40, places=np.array([0.0]), rich=False)
+        self._rich: _Branch | None = None
+
+    def arterial_po2_mmhg(self, inspired_mmhg: Array, dry_mmhg: Array, pco2_mmhg: Array) -> Array:
+        """Arterial PO2, shape (draws, points). inspired_mmhg (1 or draws, points), dry_mmhg (points,), pco2_mmhg
+        (draws, points). Values under 25 mmHg only say that the model's range has been left."""
+        fraction: Array = inspired_mmhg / dry_mmhg
+        by_air = np.abs(fraction - _air_fraction(inspired_mmhg)).max(axis=0) < FRACTION_TOLERANCE
+        alveolar = inspired_mmhg - pco2_mmhg * carbon_dioxide_factor(fraction, RESPIRATORY_QUOTIENT)
+        if by_air.all():
+            return self._read(self._air, alveolar, pco2_mmhg, None)
+        result = np.empty(np.broadcast_shapes(alveolar.shape, (self.draws, 1)))
+        if by_air.any():
+            result[:, by_air] = self._read(self._air, alveolar[:, by_air], pco2_mmhg[:, by_air], None)
+        if self._rich is None:
+            self._rich = self._branch(
+                MOST_ALVEOLAR_MMHG, nodes=15, steps=56, places=np.array(FRACTION_PLACES), rich=True
+            )
+        other = ~by_air
+        alveolar, pco2 = alveolar[:, other], pco2_mmhg[:, other]
+        least, most = _fraction_ends(alveolar, pco2)
+        place = (fraction[:, other] - least) / (most - least)
+        result[:, other] = self._read(self._rich, alveolar, pco2, place)
+        return result
+
+    def _branch(self, most_alveolar: float, nodes: int, steps: int, places: Array, rich: bool) -> _Branch:
+        logs = np.linspace(np.log(LEAST_ALVEOLAR_MMHG), np.log(most_alveolar), nodes)
+        pco2 = self._pco2_mid + self._pco2_half * np.array([-1.0, 0.0, 1.0])
+        grid = np.meshgrid(places, pco2, np.exp(logs), indexing="ij")
+        place, carbon, alveolar = grid
+        if rich:
+            least, most = _fraction_ends(alveolar, carbon)
+            fraction = least + place * (most - least)
+            inspired: Array = alveolar + carbon * carbon_dioxide_factor(fraction, RESPIRATORY_QUOTIENT)
+        else:
+            inspired = _inspired_of_air(alveolar, carbon)
+            fraction = _air_fraction(inspired)
+        content = contents(self.body, self._log_sd_nodes, self._shunt_nodes, inspired, inspired / fraction, carbon)
+        content = extended(content, logs, axis=-1, downward=True)
+        fine = np.linspace(logs[0], logs[-1], steps)
+        flat = content.reshape(-1, nodes) @ local_cubic(fine, logs).T
+        per_draw = self._weights @ flat.reshape(self._weights.shape[1], -1)
+        po2 = ContentCurve(self.body.haemoglobin_g_dl).po2_mmhg(per_draw).reshape(self.draws, places.size, 3, steps)
+        # Parabola in carbon dioxide, as powers of its distance from the middle.
+        low, middle, high = po2[:, :, 0], po2[:, :, 1], po2[:, :, 2]
+        powers = np.stack([middle, 0.5 * (high - low), 0.5 * (high + low) - middle], axis=2)
+        return _Branch(powers, float(logs[0]), (steps - 1) / float(logs[-1] - logs[0]), steps)
+
+    def _read(self, branch: _Branch, alveolar: Array, pco2: Array, place: Array | None) -> Array:
+        where = (np.log(np.maximum(alveolar, 1.0)) - branch.log_first) * branch.per_log
+        index = np.clip(where.astype(np.int64), 0, branch.steps - 2)
+        beyond = np.clip(where - index, -4.0, 1.0)
+        u = (pco2 - self._pco2_mid) / self._pco2_half
+        start = np.arange(self.draws)[:, None] * (branch.po2[0].size) + index
+        table = branch.po2.reshape(-1)
+
+        def along(offset: int) -> Array:
+            low: Array = table.take(start + offset)
+            high: Array = table.take(start + (offset + 1))
+            return low + beyond * (high - low)
+
+        def parabola(k: int) -> Array:
+            first = k * 3 * branch.steps
+            return along(first) + u * (along(first + branch.steps) + u * along(first + 2 * branch.steps))
+
+        if place is None:
+            return parabola(0)
+        result = np.zeros(alveolar.shape)
+        for k, node in enumerate(FRACTION_PLACES):
+            others = [other for other in FRACTION_PLACES if other != node]
+            result += np.prod([(place - other) / (node - other) for other in others], axis=0) * parabola(k)
+        return result
+
+
+class ContentCurve:
+    """Oxygen content of standard blood over pressure, and back by a fine table. Monotone; 0 to 760 mmHg."""
+
+    def __init__(self, haemoglobin_g_dl: float) -> None:
+        self._haemoglobin = haemoglobin_g_dl
+        pressures = np.concatenate([np.linspace(0.0, 200.0, 4001), np.linspace(200.0, MOST_PO2_MMHG, 1121)[1:]])
+        held = self.content_ml_dl(pressures)
+        self._per_step = CONTENT_STEPS / float(held[-1])
+        even = np.linspace(0.0, float(held[-1]), CONTENT_STEPS + 1)
+        self._pressures = np.interp(even, held, pressures)
+
+    def content_ml_dl(self, po2_mmhg: Array) -> Array:
+        """1.34 Hb S + 0.0031 PO2 on the standard curve."""
+        return blood.oxygen_content_ml_dl(po2_mmhg, blood.saturation(po2_mmhg), self._haemoglobin)
+
+    def po2_mmhg(self, content_ml_dl: Array) -> Array:
+        """The pressure that belongs to a content; 0 for contents below 0, 760 beyond the end."""
+        where = np.clip(content_ml_dl * self._per_step, 0.0, CONTENT_STEPS - 1e-6)
+        index = where.astype(np.int64)
+        low: Array = self._pressures.take(index)
+        high: Array = self._pressures.take(index + 1)
+        return low + (where - index) * (high - low)
+
+
+def contents(body: Body, log_sd: Array, shunt: Array, inspired_mmhg: Array, dry_mmhg: Array, pco2_mmhg: Array) -> Array:
+    """Standard oxygen content (mL/dL) at the arterial PO2 of the solved lung, over (log SD, shunt, condition...).
+
+    NaN where the model has no answer. The three conditions share one shape.
+    """
+    shape = inspired_mmhg.shape
+    grid_sd, grid_shunt, index = np.meshgrid(log_sd, shunt, np.arange(inspired_mmhg.size), indexing="ij")
+    solved = exchange(
+        inspired_mmhg.reshape(-1)[index],
+        dry_mmhg.reshape(-1)[index] + 47.0,
+        pco2_mmhg.reshape(-1)[index],
+        grid_sd,
+        np.maximum(grid_shunt, 0.0),
+        haemoglobin_g_dl=body.haemoglobin_g_dl,
+        oxygen_uptake_l_min=body.oxygen_uptake_l_min,
+        respiratory_quotient=RESPIRATORY_QUOTIENT,
+        cardiac_output_l_min=body.cardiac_output_l_min,
+        base_excess_mmol_l=body.base_excess_mmol_l,
+        nodes=TABLE_NODES,
+    )
+    known = ~solved.below_range
+    content = np.full(known.shape, np.nan)
+    content[known] = ContentCurve(body.haemoglobin_g_dl).content_ml_dl(solved.po2_mmhg[known])
+    return content.reshape((log_sd.size, shunt.size, *shape))
+
+
+def _air_fraction(inspired_mmhg: Array) -> Array:
+    """Inspired fraction on the branch of air: that of air, and above its reach what 760 mmHg dry needs."""
+    return np.maximum(AIR, inspired_mmhg / GREATEST_DRY_MMHG)
+
+
+def _inspired_of_air(alveolar: Array, pco2: Array) -> Array:
+    by_air = alveolar + pco2 * carbon_dioxide_factor(AIR, RESPIRATORY_QUOTIENT)
+    return np.where(by_air <= AIR * GREATEST_DRY_MMHG, by_air, _inspired_at(alveolar, pco2, GREATEST_DRY_MMHG))
+
+
+def _inspired_at(alveolar: Array, pco2: Array, dry_mmhg: float) -> Array:
+    """The alveolar gas equation solved for the inspired PO2 at a given dry pressure."""
+    return (alveolar + pco2 / RESPIRATORY_QUOTIENT) / (1.0 - pco2 * (1.0 - 1.0 / RESPIRATORY_QUOTIENT) / dry_mmhg)
+
+
+def _fraction_ends(alveolar: Array, pco2: Array) -> tuple[Array, Array]:
+    """The least and the greatest inspired fraction that gives this alveolar PO2, at the ends of dry pressure."""
+    least = _inspired_at(alveolar, pco2, GREATEST_DRY_MMHG) / GREATEST_DRY_MMHG
+    most = np.minimum(_inspired_at(alveolar, pco2, LEAST_DRY_MMHG) / LEAST_DRY_MMHG, RICHEST)
+    return least, most
