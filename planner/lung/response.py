@@ -79,17 +79,20 @@ class Response:
         self._air = self._branch(AIR_ALVEOLAR_MMHG, nodes=9, steps=40, places=np.array([0.0]), rich=False)
         self._rich: _Branch | None = None
 
-    def arterial_po2_mmhg(self, inspired_mmhg: Array, dry_mmhg: Array, pco2_mmhg: Array) -> Array:
-        """Arterial PO2, shape (draws, points). inspired_mmhg (1 or draws, points), dry_mmhg (points,), pco2_mmhg
-        (draws, points). Values under 25 mmHg only say that the model's range has been left."""
+    def arterial_po2_mmhg(self, inspired_mmhg: Array, dry_mmhg: Array, pco2_mmhg: Array, first_draw: int = 0) -> Array:
+        """Arterial PO2 of the draws from first_draw on, as many as pco2_mmhg (draws, points) has rows.
+
+        inspired_mmhg: (1 or draws, points); dry_mmhg: (points,). Values under 25 mmHg only say that the model's range
+        has been left.
+        """
         fraction: Array = inspired_mmhg / dry_mmhg
         by_air = np.abs(fraction - _air_fraction(inspired_mmhg)).max(axis=0) < FRACTION_TOLERANCE
         alveolar = inspired_mmhg - pco2_mmhg * carbon_dioxide_factor(fraction, RESPIRATORY_QUOTIENT)
         if by_air.all():
-            return self._read(self._air, alveolar, pco2_mmhg, None)
-        result = np.empty(np.broadcast_shapes(alveolar.shape, (self.draws, 1)))
+            return self._read(self._air, alveolar, pco2_mmhg, None, first_draw)
+        result = np.empty(alveolar.shape)
         if by_air.any():
-            result[:, by_air] = self._read(self._air, alveolar[:, by_air], pco2_mmhg[:, by_air], None)
+            result[:, by_air] = self._read(self._air, alveolar[:, by_air], pco2_mmhg[:, by_air], None, first_draw)
         if self._rich is None:
             self._rich = self._branch(
                 MOST_ALVEOLAR_MMHG, nodes=15, steps=56, places=np.array(FRACTION_PLACES), rich=True
@@ -98,7 +101,7 @@ class Response:
         alveolar, pco2 = alveolar[:, other], pco2_mmhg[:, other]
         least, most = _fraction_ends(alveolar, pco2)
         place = (fraction[:, other] - least) / (most - least)
-        result[:, other] = self._read(self._rich, alveolar, pco2, place)
+        result[:, other] = self._read(self._rich, alveolar, pco2, place, first_draw)
         return result
 
     def _branch(self, most_alveolar: float, nodes: int, steps: int, places: Array, rich: bool) -> _Branch:
@@ -124,12 +127,12 @@ class Response:
         powers = np.stack([middle, 0.5 * (high - low), 0.5 * (high + low) - middle], axis=2)
         return _Branch(powers, float(logs[0]), (steps - 1) / float(logs[-1] - logs[0]), steps)
 
-    def _read(self, branch: _Branch, alveolar: Array, pco2: Array, place: Array | None) -> Array:
+    def _read(self, branch: _Branch, alveolar: Array, pco2: Array, place: Array | None, first: int) -> Array:
         where = (np.log(np.maximum(alveolar, 1.0)) - branch.log_first) * branch.per_log
         index = np.clip(where.astype(np.int64), 0, branch.steps - 2)
         beyond = np.clip(where - index, -4.0, 1.0)
         u = (pco2 - self._pco2_mid) / self._pco2_half
-        start = np.arange(self.draws)[:, None] * (branch.po2[0].size) + index
+        start = np.arange(first, first + alveolar.shape[0])[:, None] * branch.po2[0].size + index
         table = branch.po2.reshape(-1)
 
         def along(offset: int) -> Array:
@@ -138,8 +141,8 @@ class Response:
             return low + beyond * (high - low)
 
         def parabola(k: int) -> Array:
-            first = k * 3 * branch.steps
-            return along(first) + u * (along(first + branch.steps) + u * along(first + 2 * branch.steps))
+            at = k * 3 * branch.steps
+            return along(at) + u * (along(at + branch.steps) + u * along(at + 2 * branch.steps))
 
         if place is None:
             return parabola(0)
