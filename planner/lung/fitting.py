@@ -7,10 +7,12 @@ same case, so nothing jitters while a digit is typed.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, replace
 
 import numpy as np
 
+from planner.air.inspired import WATER_VAPOUR_MMHG
 from planner.air.ranges import Array, FloatOrArray, require_within
 from planner.errors import InputError
 from planner.lung import blood, diffusion, ventilation
@@ -19,10 +21,30 @@ from planner.lung.draws import Draws, resampled
 from planner.lung.fitted import REFERENCE_FALL_MMHG, STRUCTURAL_SD_MMHG, Arterial, FittedLung
 from planner.lung.gas_exchange import HIGHEST_LOG_SD, exchange
 from planner.lung.likelihood import LOG_SDS, UNLIKELY_SD, log_likelihood, po2_over_log_sd
-from planner.lung.reading import LungReading, Person, paco2_sd_mmhg, usable, widening
+from planner.lung.reading import (
+    LOWEST_PAO2_MMHG,
+    Activity,
+    LungReading,
+    Person,
+    paco2_sd_mmhg,
+    pao2_sd_mmhg,
+    trust_sd_mmhg,
+    usable,
+    widening,
+)
 from planner.lung.response import RESPIRATORY_QUOTIENT, Body
 
-__all__ = ["Arterial", "FittedLung", "LungReading", "Person", "fit_log_sd", "fit_lung"]
+__all__ = [
+    "Arterial",
+    "Condition",
+    "FittedLung",
+    "LungReading",
+    "Narrowing",
+    "Person",
+    "fit_log_sd",
+    "fit_lung",
+    "narrowing",
+]
 
 HAEMOGLOBIN_G_DL = 14.5  # where not measured; planning assumption, 12 to 17 changes the forecast by 0.4 mmHg
 # Shunt in stable COPD is below 4 % (Barbera JA et al., Am Rev Respir Dis 1990, from memory); 2 to 4 % of flow in
@@ -35,6 +57,28 @@ LOG_SD_PRIOR = (0.8, 0.45)
 PACO2_PRIOR_MMHG = (39.5, 3.5)
 PACO2_BOUNDED_PRIOR_MMHG = (46.0, 6.0)
 EXPECTED_FALL_MMHG = 1.8  # mean of the published falls of PaCO2, sea level to about 8000 ft; see ventilation
+
+
+NARROWING_DRAWS = 400
+
+
+@dataclass(frozen=True)
+class Condition:
+    """Air in which the blood is asked for."""
+
+    inspired_po2_mmhg: float
+    barometric_mmhg: float
+    activity: Activity = "rest"
+    hours_at_altitude: float = 0.0
+
+
+@dataclass(frozen=True)
+class Narrowing:
+    """What one missing entry would do to the spread (5 to 95 %) of the PaO2 forecast."""
+
+    input_name: str
+    spread_now_mmhg: float
+    spread_then_mmhg: float
 
 
 def fit_lung(readings: Sequence[LungReading], person: Person, *, draws: int = 1000, seed: int = 20260101) -> FittedLung:
@@ -151,6 +195,73 @@ def fit_log_sd(
         raise InputError("pao2_mmhg", "Below model range: this PaO2 is lower than any unevenness explains.")
     found = (low + (high - low) * (at_low - target) / (at_low - at_high))[..., 0]
     return found if found.ndim else float(found)
+
+
+def narrowing(
+    readings: Sequence[LungReading], person: Person, condition: Condition, *, seed: int = 20260101
+) -> tuple[Narrowing, ...]:
+    """Which missing entry would narrow the forecast most: first the one that would most; only those that would.
+
+    For each, the lung is fitted again with that entry added at the value now expected. Raises what fit_lung raises.
+    """
+    ordered = usable(readings)
+    now = fit_lung(ordered, person, draws=NARROWING_DRAWS, seed=seed)
+    spread_now = _spread_mmhg(now, condition)
+    found = []
+    for name, more_readings, more_person in _with_one_more(ordered, person, condition, now):
+        then = _spread_mmhg(fit_lung(more_readings, more_person, draws=NARROWING_DRAWS, seed=seed), condition)
+        if then < spread_now:
+            found.append(Narrowing(name, spread_now, then))
+    return tuple(sorted(found, key=lambda one: one.spread_then_mmhg))
+
+
+def _with_one_more(
+    ordered: tuple[LungReading, ...], person: Person, condition: Condition, now: FittedLung
+) -> Iterator[tuple[str, tuple[LungReading, ...], Person]]:
+    """Each entry that is missing, with the case as it would be if it were known."""
+    base = ordered[0]
+    expected = now.arterial(base.inspired_po2_mmhg, base.barometric_mmhg)
+    gas = LungReading(
+        base.barometric_mmhg,
+        base.fio2,
+        pao2_mmhg=max(float(np.median(expected.po2_mmhg)), LOWEST_PAO2_MMHG),
+        paco2_mmhg=float(np.median(expected.paco2_mmhg)),
+        sample="arterial",
+        age_days=0.0,
+    )
+    if pao2_sd_mmhg(gas) < trust_sd_mmhg(base):
+        yield "a fresh arterial blood gas", (gas, *ordered), person
+    elif base.paco2_mmhg is None:
+        yield "the arterial carbon dioxide", (replace(base, paco2_mmhg=gas.paco2_mmhg), *ordered[1:]), person
+    if any(one.age_days is None for one in ordered):
+        dated = tuple(replace(one, age_days=one.age_days or 0.0) for one in ordered)
+        yield "the date of the measurement", dated, person
+    if person.skin is None and any(one.spo2_fraction is not None for one in ordered):
+        yield "the skin pigmentation", ordered, replace(person, skin="light")
+    mixture = condition.inspired_po2_mmhg / (base.barometric_mmhg - WATER_VAPOUR_MMHG)
+    if not any(one.challenge for one in ordered) and 0.10 <= mixture < base.fio2:
+        there = now.arterial(condition.inspired_po2_mmhg, base.barometric_mmhg)
+        test = LungReading(
+            base.barometric_mmhg,
+            mixture,
+            pao2_mmhg=max(float(np.median(there.po2_mmhg)), LOWEST_PAO2_MMHG),
+            paco2_mmhg=float(np.median(there.paco2_mmhg)),
+            sample="arterial",
+            age_days=0.0,
+            challenge=True,
+        )
+        yield "a hypoxic challenge test with a blood gas", (*ordered, test), person
+
+
+def _spread_mmhg(fitted: FittedLung, condition: Condition) -> float:
+    blood_there = fitted.arterial(
+        condition.inspired_po2_mmhg,
+        condition.barometric_mmhg,
+        activity=condition.activity,
+        hours_at_altitude=condition.hours_at_altitude,
+    )
+    low, high = np.quantile(blood_there.po2_mmhg, (0.05, 0.95))
+    return float(high - low)
 
 
 def _rest_pco2(ordered: Sequence[LungReading], person: Person, z: Array) -> Array:
