@@ -17,10 +17,10 @@ DIFFUSION_DIAGNOSES = frozenset({"interstitial", "pulmonary_vascular"})
 CAPACITY_MEDIAN = 16.0
 CAPACITY_VARIATION = 0.25
 
-# Fall of PaO2 (mmHg) at 8000 ft less that at sea level, by capacity, for an otherwise even lung (log SD 0.35) at 5.2
-# L/min: the equation of the capillary, dC/dt = D (PA - P(C)) / flow, integrated beforehand.
-CAPACITIES = np.array([8.0, 12.0, 15.0, 20.0, 30.0])
-FALL_AT_8000_FT_MMHG = np.array([20.0, 8.7, 4.2, 1.4, 0.0])
+# Fall of PaO2 (mmHg) at 8000 ft less that at sea level, by capacity, for an even lung at rest (uptake 0.25 L/min, flow
+# 5.2 L/min): the equation of the capillary, dC/dt = D (PA - P(C)) / flow, integrated; a test does it again.
+CAPACITIES = np.array([8.0, 10.0, 12.0, 14.0, 16.0, 20.0, 30.0])
+FALL_AT_8000_FT_MMHG = np.array([23.6, 15.5, 9.5, 5.6, 3.2, 1.0, 0.05])
 REFERENCE_FALL_MMHG = 41.0  # of inspired PO2, sea level to 8000 ft
 
 
@@ -28,7 +28,7 @@ def diffusion_fall_mmhg(capacity: Array, inspired_fall_mmhg: Array) -> Array:
     """How much lower the PaO2 is for slow diffusion, beyond what the ground showed.
 
     capacity: mL/min/mmHg; inspired_fall_mmhg: how far the inspired PO2 is below that of the ground reading; none of
-    it at or above that. Straight in the inspired fall. Broadcasts.
+    it at or above that. Straight in the inspired fall; capacities outside 8 to 30 count as the nearer end. Broadcasts.
     """
     at_reference = np.interp(np.log(capacity), np.log(CAPACITIES), FALL_AT_8000_FT_MMHG)
     fall: Array = at_reference * np.maximum(inspired_fall_mmhg, 0.0) / REFERENCE_FALL_MMHG
