@@ -1,0 +1,1 @@
+"""What oxygen adds to the air breathed: devices, their effect, and the amount that reaches a target."""
