@@ -131,7 +131,8 @@ def target() -> float:
 
 def mixed(over: Colour, under: Colour, share: float) -> Colour:
     """A colour laid over another with this share, opaque."""
-    return tuple(a * share + b * (1 - share) for a, b in zip(over[:3], under[:3], strict=True)) + (1.0,)  # type: ignore[return-value]
+    red, green, blue = (a * share + b * (1 - share) for a, b in zip(over[:3], under[:3], strict=True))
+    return red, green, blue, 1.0
 
 
 def contrast(a: Colour, b: Colour) -> float:

@@ -14,7 +14,7 @@ os.environ["SDL_VIDEODRIVER"] = "offscreen"
 for provider in ("CLIPBOARD", "IMAGE", "TEXT", "WINDOW"):
     os.environ.setdefault(f"KIVY_{provider}", "sdl2")
 
-from kivy.config import Config
+from kivy.config import Config  # noqa: E402
 
 # Made once, larger than every size a test asks for: SDL's offscreen surface cannot grow later.
 Config.set("graphics", "width", "1280")

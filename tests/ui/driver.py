@@ -138,7 +138,9 @@ class Driver:
     def says(self, text: str) -> Widget:
         """The widget that says exactly this, else the first that holds it."""
         exact: Iterator[Widget] = (w for w in self.app.root.walk() if getattr(w, "text", None) == text)
-        found = next(exact, None) or next((w for w in self.app.root.walk() if text in (getattr(w, "text", "") or "")), None)
+        found = next(exact, None) or next(
+            (w for w in self.app.root.walk() if text in (getattr(w, "text", "") or "")), None
+        )
         assert found is not None, f"nothing on the screen says {text!r}; it says {self.texts()}"
         return found
 

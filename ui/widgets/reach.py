@@ -1,4 +1,4 @@
-"""What makes a widget reachable by finger and by keyboard: focus, a visible ring, Enter and Space, and scrolling to it."""
+"""What makes a widget reachable by finger and keyboard: focus, a visible ring, Enter and Space, scrolling to it."""
 
 from __future__ import annotations
 
@@ -69,7 +69,11 @@ class Reachable(FocusBehavior):  # type: ignore[misc]
     def _draw_ring(self, *_: Any) -> None:
         inset = dp(2)
         self._ring_line.rounded_rectangle = (
-            self.x + inset, self.y + inset, max(self.width - 2 * inset, 0), max(self.height - 2 * inset, 0), dp(6)
+            self.x + inset,
+            self.y + inset,
+            max(self.width - 2 * inset, 0),
+            max(self.height - 2 * inset, 0),
+            dp(6),
         )
 
     def _focused(self, _: Any, focused: bool) -> None:

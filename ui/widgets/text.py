@@ -23,7 +23,12 @@ class Text(Label):
         keywords.setdefault("markup", True)
         keywords.setdefault("size_hint_y", None)
         super().__init__(
-            text=text, role=role, tone=tone, font_name=FONT, font_size=theme.size(role), color=theme.colour(tone),
+            text=text,
+            role=role,
+            tone=tone,
+            font_name=FONT,
+            font_size=theme.size(role),
+            color=theme.colour(tone),
             **keywords,
         )
         self.bind(width=self._wrap, texture_size=self._grow, role=self._restyle, tone=self._restyle)

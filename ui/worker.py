@@ -1,0 +1,78 @@
+"""Works plans out away from the screen: the newest case wins, older work is given up."""
+
+from __future__ import annotations
+
+import threading
+from collections.abc import Callable
+from typing import Any
+
+from kivy.clock import Clock
+
+Planner = Callable[..., Any]  # planner.plan: (case, *, memory, through, on_progress, cancelled) -> Plan
+Deliver = Callable[[Any, Any, str, str], None]  # case, plan or None, what is being done, fault
+
+
+class PlanWorker:
+    """One thread that answers the last case asked for: first through titration, then with the kit."""
+
+    def __init__(self, planner: Planner, deliver: Deliver) -> None:
+        self._planner, self._deliver = planner, deliver
+        self._memory: Any = None
+        self._wanted: Any = None
+        self._turn = 0
+        self._changed = threading.Condition()
+        self._thread: threading.Thread | None = None
+
+    def ask(self, case: Any) -> None:
+        """Work this case out; what is being worked out now is given up."""
+        with self._changed:
+            self._wanted = case
+            self._turn += 1
+            self._changed.notify()
+        if self._thread is None:
+            self._thread = threading.Thread(target=self._run, name="plan", daemon=True)
+            self._thread.start()
+
+    def cancel(self) -> None:
+        """Give up what is being worked out."""
+        with self._changed:
+            self._wanted = None
+            self._turn += 1
+
+    def _run(self) -> None:
+        from planner.planning import StageMemory
+
+        self._memory = StageMemory()
+        while True:
+            with self._changed:
+                while self._wanted is None:
+                    self._changed.wait()
+                case, turn = self._wanted, self._turn
+                self._wanted = None
+            if self._work(case, turn, "titration"):
+                self._work(case, turn, "kit")
+
+    def _work(self, case: Any, turn: int, through: str) -> bool:
+        def given_up() -> bool:
+            return self._turn != turn
+
+        def progress(what: str, share: float) -> None:
+            self._say(case, None, f"{what}, {share * 100:.0f} %", "")
+
+        if given_up():
+            return False
+        try:
+            plan = self._planner(case, memory=self._memory, through=through, on_progress=progress, cancelled=given_up)
+        except (
+            Exception
+        ) as error:  # shown to the person: a worker that dies in silence would leave old numbers standing
+            if not given_up():
+                self._say(case, None, "", f"The plan could not be worked out: {error}")
+            return False
+        if given_up():
+            return False
+        self._say(case, plan, "Working out what to carry" if through == "titration" else "", "")
+        return True
+
+    def _say(self, case: Any, plan: Any, working_on: str, fault: str) -> None:
+        Clock.schedule_once(lambda _dt: self._deliver(case, plan, working_on, fault), 0)
