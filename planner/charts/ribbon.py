@@ -17,11 +17,13 @@ from planner.charts.layout import (
     Axis,
     Band,
     Box,
+    Dash,
     Drawing,
     Item,
     Marker,
     Measure,
     Polyline,
+    Role,
     Text,
     finite_runs,
     fitting,
@@ -66,7 +68,7 @@ class Layer:
     threshold_text: str = ""
     least: float | None = None
     most: float | None = None
-    stepped: bool = False
+    stepped: bool = False  # each value holds until the next moment, the last to the end of the trip
 
 
 @dataclass(frozen=True)
@@ -154,7 +156,7 @@ def lay_ribbon(
     has_clock = any(part.start_text for part in parts)
     says_short = bool(shortened_text) and any(part.duration_min > LONG_MIN for part in parts)
     bottom = line * (1.15 + has_clock + says_short) + 2.0
-    top = height - (line if layer is not None else text_size)
+    top = height - (1.7 * text_size if layer is not None else text_size)
     axis = None if layer is None else _layer_axis(layer, bottom, top)
     ticks = [] if axis is None or layer is None else _ticks(layer, axis)
     gutter = 2.0 + max((measure(text, text_size) + LABEL_GAP for _, text in ticks), default=0.0)
@@ -169,7 +171,7 @@ def lay_ribbon(
     if layer is None and altitude_text is not None:
         items += _heights(scale, parts, minutes, altitude_m, altitude_axis, text_size, measure, altitude_text)
     if layer is not None and axis is not None:
-        items += _layer(layer, axis, scale, ticks, gutter, right, text_size, measure, top + line * 0.5)
+        items += _layer(layer, axis, scale, ticks, gutter, right, text_size, measure, top + text_size)
     items += _part_axis(scale, parts, bottom, text_size, line, measure)
     if says_short:
         items.append(Text(shortened_text, gutter, line * 0.5, text_size * 0.9, "muted"))
@@ -272,8 +274,8 @@ def _layer(
         low, high = axis.of(layer.low), axis.of(layer.high)
         items += [Band(x[run], low[run], high[run], "data_soft") for run in finite_runs(low, high)]
     if layer.stress is not None:
-        items += _line(x, axis.of(layer.stress), layer.stepped, "stop", 1.4, dotted=True)
-    items += _line(x, axis.of(layer.median), layer.stepped, "data", 1.8)
+        items += _line(x, axis.of(layer.stress), layer.stepped, right, "stop", 1.4, "dotted")
+    items += _line(x, axis.of(layer.median), layer.stepped, right, "data", 1.8)
     if layer.threshold is not None:
         y = axis.at(layer.threshold)
         items.append(Polyline(np.array([[left, y], [right, y]]), "caution", 1.1, "dashed"))
@@ -283,14 +285,10 @@ def _layer(
     return items
 
 
-def _line(x: Array, y: Array, stepped: bool, role: str, width: float, dotted: bool = False) -> list[Item]:
+def _line(x: Array, y: Array, stepped: bool, end: float, role: Role, width: float, dash: Dash = "solid") -> list[Item]:
     if stepped:
-        x, y = np.repeat(x, 2)[1:], np.repeat(y, 2)[:-1]
-    dash = "dotted" if dotted else "solid"
-    return [
-        Polyline(np.column_stack([x[run], y[run]]), role, width, dash)  # type: ignore[arg-type]
-        for run in finite_runs(y)
-    ]
+        x, y = np.append(np.repeat(x, 2)[1:], end), np.repeat(y, 2)
+    return [Polyline(np.column_stack([x[run], y[run]]), role, width, dash) for run in finite_runs(y)]
 
 
 def _part_axis(
