@@ -40,9 +40,9 @@ LOWEST_PO2_MMHG = 20.0  # an arterial PO2 below is no steady state of rest that 
 
 FIRST_STEPS = 10  # nearly every sample that has a solution has found it by then
 MOST_STEPS = 40
-PO2_TOLERANCE_MMHG = 1e-6
+SETTLED_STEP = 1e-4  # a last step this small (mmHg, and of the log ratio) leaves an error of its square
 LARGEST_FACTOR = 4.0  # how far one step may raise or lower a pressure
-BLOCK = 512  # samples solved together; their arrays stay in the processor's cache
+BLOCK_UNITS = 10_240  # units (samples times nodes) solved together; their arrays stay in the processor's cache
 BELOW_RANGE = (
     "Below model range: with this air, carbon dioxide, unevenness and shunt no steady state with an arterial oxygen "
     f"pressure above {LOWEST_PO2_MMHG:g} mmHg exists."
@@ -145,9 +145,10 @@ def exchange(
 
 
 def _in_blocks(given: list[Array], nodes: int, steps: int) -> Exchange:
+    block = BLOCK_UNITS // nodes
     blocks = [
-        _solve([values[start : start + BLOCK] for values in given], nodes, steps)
-        for start in range(0, given[0].size, BLOCK)
+        _solve([values[start : start + block] for values in given], nodes, steps)
+        for start in range(0, given[0].size, block)
     ]
     return Exchange(*(np.concatenate([getattr(block, one.name) for block in blocks]) for one in fields(Exchange)))
 
@@ -200,7 +201,7 @@ def _solve(given: list[Array], nodes: int, steps: int) -> Exchange:
             po2_a = np.clip(po2_a + d_artery, po2_a / 2.0, po2_a * 2.0)
             log_ratio = log_ratio + np.clip(d_log_ratio, -1.0, 1.0)
             ratio = np.exp(log_ratio)[:, None] * per_mean
-            settled = (np.abs(d_artery) < PO2_TOLERANCE_MMHG) & (np.abs(d_log_ratio) < PO2_TOLERANCE_MMHG)
+            settled = (np.abs(d_artery) < SETTLED_STEP) & (np.abs(d_log_ratio) < SETTLED_STEP)
             if settled.all():
                 break
         artery = blood_state(po2_a, paco2, ph_a, haemoglobin, base_excess)

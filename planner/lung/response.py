@@ -3,7 +3,8 @@
 The table stands over the ideal alveolar PO2 (the alveolar gas equation), the arterial PCO2 and, on oxygen or a
 hypoxic mixture, the inspired fraction; its nodes are solved by planner.lung.gas_exchange for a few log SDs and shunts
 that span the draws. What is interpolated is oxygen content, which bends less than pressure. Error against a converged
-solution: at most 0.35 mmHg where the arterial PO2 is below 100 mmHg, shown by a test.
+solution: at most 0.35 mmHg on air between 30 and 100 mmHg of arterial PO2, and on oxygen or a hypoxic mixture at most
+0.35 mmHg below 70 mmHg and 0.3 points of saturation above; shown by a test.
 """
 
 from __future__ import annotations
@@ -20,9 +21,10 @@ from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic
 
 RESPIRATORY_QUOTIENT = 0.82  # at rest, 0.80 to 0.83; textbook value
 AIR = 0.2093
-TABLE_NODES = 16  # units of a lung in the table
-LOG_SD_NODES = ((0.35, 5), (0.8, 8), (np.inf, 11))  # up to this width of the draws, so many
-SHUNT_NODES = 4
+TABLE_NODES = ((1.15, 14), (np.inf, 24))  # up to this log SD, so many units of a lung in the table
+AIR_NODES, RICH_NODES = 9, 14  # of the alveolar PO2
+LOG_SD_NODES = ((0.8, 5), (np.inf, 7))  # up to this width of the draws, so many
+SHUNT_NODES = 3
 GREATEST_DRY_MMHG = 760.0  # ground pressure of 807 mmHg, the Dead Sea
 LEAST_DRY_MMHG = 360.0  # ground pressure at 5200 m
 RICHEST = 0.95
@@ -32,7 +34,9 @@ MOST_ALVEOLAR_MMHG = 600.0
 CONTENT_STEPS = 6000
 MOST_PO2_MMHG = 760.0
 FRACTION_TOLERANCE = 0.003
-FRACTION_PLACES = (0.0, 0.4, 1.0)
+FRACTION_PLACES = (0.0, 0.35, 1.0)
+PCO2_PLACES = np.array([-1.0, -0.5, 0.5, 1.0])  # of the carbon dioxide asked for, from lowest to highest
+TO_POWERS = np.linalg.inv(np.vander(PCO2_PLACES, increasing=True))
 
 
 @dataclass(frozen=True)
@@ -76,7 +80,7 @@ class Response:
         self.lowest_pco2_mmhg, self.highest_pco2_mmhg = lowest_pco2_mmhg, highest_pco2_mmhg
         self._pco2_mid = 0.5 * (lowest_pco2_mmhg + highest_pco2_mmhg)
         self._pco2_half = 0.5 * (highest_pco2_mmhg - lowest_pco2_mmhg)
-        self._air = self._branch(AIR_ALVEOLAR_MMHG, nodes=9, steps=40, places=np.array([0.0]), rich=False)
+        self._air = self._branch(AIR_ALVEOLAR_MMHG, nodes=AIR_NODES, steps=40, places=np.array([0.0]), rich=False)
         self._rich: _Branch | None = None
 
     def arterial_po2_mmhg(self, inspired_mmhg: Array, dry_mmhg: Array, pco2_mmhg: Array, first_draw: int = 0) -> Array:
@@ -95,7 +99,7 @@ class Response:
             result[:, by_air] = self._read(self._air, alveolar[:, by_air], pco2_mmhg[:, by_air], None, first_draw)
         if self._rich is None:
             self._rich = self._branch(
-                MOST_ALVEOLAR_MMHG, nodes=15, steps=56, places=np.array(FRACTION_PLACES), rich=True
+                MOST_ALVEOLAR_MMHG, nodes=RICH_NODES, steps=56, places=np.array(FRACTION_PLACES), rich=True
             )
         other = ~by_air
         alveolar, pco2 = alveolar[:, other], pco2_mmhg[:, other]
@@ -106,7 +110,7 @@ class Response:
 
     def _branch(self, most_alveolar: float, nodes: int, steps: int, places: Array, rich: bool) -> _Branch:
         logs = np.linspace(np.log(LEAST_ALVEOLAR_MMHG), np.log(most_alveolar), nodes)
-        pco2 = self._pco2_mid + self._pco2_half * np.array([-1.0, 0.0, 1.0])
+        pco2 = self._pco2_mid + self._pco2_half * PCO2_PLACES
         grid = np.meshgrid(places, pco2, np.exp(logs), indexing="ij")
         place, carbon, alveolar = grid
         if rich:
@@ -121,10 +125,8 @@ class Response:
         fine = np.linspace(logs[0], logs[-1], steps)
         flat = content.reshape(-1, nodes) @ local_cubic(fine, logs).T
         per_draw = self._weights @ flat.reshape(self._weights.shape[1], -1)
-        po2 = ContentCurve(self.body.haemoglobin_g_dl).po2_mmhg(per_draw).reshape(self.draws, places.size, 3, steps)
-        # Parabola in carbon dioxide, as powers of its distance from the middle.
-        low, middle, high = po2[:, :, 0], po2[:, :, 1], po2[:, :, 2]
-        powers = np.stack([middle, 0.5 * (high - low), 0.5 * (high + low) - middle], axis=2)
+        po2 = ContentCurve(self.body.haemoglobin_g_dl).po2_mmhg(per_draw).reshape(self.draws, places.size, -1, steps)
+        powers = np.einsum("kc,dpcs->dpks", TO_POWERS, po2)
         return _Branch(powers, float(logs[0]), (steps - 1) / float(logs[-1] - logs[0]), steps)
 
     def _read(self, branch: _Branch, alveolar: Array, pco2: Array, place: Array | None, first: int) -> Array:
@@ -140,16 +142,19 @@ class Response:
             high: Array = table.take(start + (offset + 1))
             return low + beyond * (high - low)
 
-        def parabola(k: int) -> Array:
-            at = k * 3 * branch.steps
-            return along(at) + u * (along(at + branch.steps) + u * along(at + 2 * branch.steps))
+        def over_pco2(k: int) -> Array:
+            at = k * PCO2_PLACES.size * branch.steps
+            total = along(at + (PCO2_PLACES.size - 1) * branch.steps)
+            for power in range(PCO2_PLACES.size - 2, -1, -1):
+                total = along(at + power * branch.steps) + u * total
+            return total
 
         if place is None:
-            return parabola(0)
+            return over_pco2(0)
         result = np.zeros(alveolar.shape)
         for k, node in enumerate(FRACTION_PLACES):
             others = [other for other in FRACTION_PLACES if other != node]
-            result += np.prod([(place - other) / (node - other) for other in others], axis=0) * parabola(k)
+            result += np.prod([(place - other) / (node - other) for other in others], axis=0) * over_pco2(k)
         return result
 
 
@@ -195,7 +200,7 @@ def contents(body: Body, log_sd: Array, shunt: Array, inspired_mmhg: Array, dry_
         respiratory_quotient=RESPIRATORY_QUOTIENT,
         cardiac_output_l_min=body.cardiac_output_l_min,
         base_excess_mmol_l=body.base_excess_mmol_l,
-        nodes=TABLE_NODES,
+        nodes=next(count for most, count in TABLE_NODES if log_sd.max() <= most),
     )
     known = ~solved.below_range
     content = np.full(known.shape, np.nan)
