@@ -8,7 +8,7 @@ from planner.air.ranges import Array
 from planner.lung import blood
 
 REFERENCE_SATURATION = 0.88
-DEGREE = 5
+DEGREE = 6
 
 
 class SaturationCurve:
@@ -30,15 +30,16 @@ class SaturationCurve:
         at_reference = log_shift(REFERENCE_SATURATION)
         self._shift = np.polynomial.Polynomial.fit(pco2, np.exp(at_reference), DEGREE)
         per_unsaturated = (log_shift(REFERENCE_SATURATION - 0.1) - at_reference) / 0.1
-        self._by_unsaturated = float(per_unsaturated.mean())
+        self._by_unsaturated = np.polynomial.Polynomial.fit(pco2, per_unsaturated, 1)
 
     def saturation(self, po2_mmhg: Array, pco2_mmhg: Array) -> Array:
         """Functional saturation, a fraction; NaN where the pressure is NaN. Broadcasts."""
         virtual = po2_mmhg * self._shift(pco2_mmhg)
+        by_unsaturated = self._by_unsaturated(pco2_mmhg)
         first = _severinghaus(virtual)
-        second = _severinghaus(virtual * (1.0 + self._by_unsaturated * (REFERENCE_SATURATION - first)))
+        second = _severinghaus(virtual * (1.0 + by_unsaturated * (REFERENCE_SATURATION - first)))
         # One Newton step: saturation lowers its own shift, by about 3 S (1 - S) times the coefficient.
-        result: Array = first + (second - first) / (1.0 + 3.0 * self._by_unsaturated * second * (1.0 - second))
+        result: Array = first + (second - first) / (1.0 + 3.0 * by_unsaturated * second * (1.0 - second))
         return result
 
 
