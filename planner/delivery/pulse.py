@@ -59,5 +59,13 @@ def pulse_rise_mmhg(
     (Palwai A et al., Am J Respir Crit Care Med 2010;181:1061).
     """
     require_within("capture", "Captured share of a pulse", capture, 0.0, 1.0)
-    equal_flow_l_min = bolus_ml * breathing_rate_min / 1000.0 / INHALED_SHARE
-    return continuous_rise_mmhg(equal_flow_l_min, gain_mmhg_per_l_min, activity) * capture
+    flow = equal_flow_l_min(bolus_ml, breathing_rate_min)
+    return continuous_rise_mmhg(flow, gain_mmhg_per_l_min, activity) * capture
+
+
+def equal_flow_l_min(bolus_ml: float, breathing_rate_min: float) -> float:
+    """The continuous flow of which as much oxygen is inhaled as these pulses hold. Never shown for a setting.
+
+    bolus x rate over the third of a continuous flow that comes while breathing in. Source: definition.
+    """
+    return bolus_ml * breathing_rate_min / 1000.0 / INHALED_SHARE
