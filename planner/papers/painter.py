@@ -5,11 +5,14 @@ Legible in grey print: lightness alone tells the roles apart.
 
 from __future__ import annotations
 
+from io import BytesIO
+
 from reportlab.lib.colors import Color, HexColor  # type: ignore[import-untyped]
 from reportlab.pdfgen.canvas import Canvas  # type: ignore[import-untyped]
 
 from planner.charts.layout import Array, Band, Box, Dash, Drawing, Item, Marker, Polyline, Role, Text
 from planner.papers import fonts
+from planner.papers.sheet import Paper
 
 COLOURS: dict[Role, Color] = {
     "ink": HexColor(0x1E1E1A),
@@ -25,6 +28,24 @@ COLOURS: dict[Role, Color] = {
 }
 DASHES: dict[Dash, tuple[float, ...]] = {"solid": (), "dashed": (4.0, 2.5), "dotted": (1.2, 2.0)}
 BASELINE = 0.34  # the baseline lies this share of the size below the middle of a line of text
+
+
+def pdf_bytes(paper: Paper) -> bytes:
+    """The paper as PDF: fonts embedded, title and language set, the same paper always the same bytes."""
+    fonts.register()
+    buffer = BytesIO()
+    canvas = Canvas(buffer, invariant=1, pageCompression=1, lang=paper.language, initialFontName=fonts.REGULAR)
+    canvas.setTitle(paper.title)
+    canvas.setSubject(paper.subject)
+    canvas.setAuthor("")
+    canvas.setCreator("")
+    canvas.setViewerPreference("DisplayDocTitle", "true")
+    for page in paper.pages:
+        canvas.setPageSize((page.width, page.height))
+        paint(canvas, page, 0.0, 0.0)
+        canvas.showPage()
+    canvas.save()
+    return buffer.getvalue()
 
 
 def paint(canvas: Canvas, drawing: Drawing, left: float, bottom: float) -> None:
