@@ -96,12 +96,12 @@ class Choice(BoxLayout):
         hint: str = "",
         several: bool = False,
     ) -> None:
-        super().__init__(orientation="vertical", size_hint_y=None, spacing=space(1.5), label=label)
+        super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(1.5), label=label)
         self.on_value, self.several = on_value, several
         self.value: Any = value
         if label:
             self.add_widget(Text(label, role="label", tone="muted"))
-        self._chips = _Chips(spacing=space(2), size_hint_y=None)
+        self._chips = _Chips(spacing=space(2), size_hint_y=None, height=0)
         for option, words in options:
             self._chips.add_widget(Chip(option, words, self._tapped))
         self.add_widget(self._chips)

@@ -9,6 +9,7 @@ from collections.abc import Callable
 from datetime import date
 from typing import Any
 
+from kivy.metrics import sp
 from kivy.properties import StringProperty
 from kivy.uix.anchorlayout import AnchorLayout
 from kivy.uix.boxlayout import BoxLayout
@@ -36,7 +37,7 @@ class Entry(BoxLayout):
         on_value: Callable[[Any], None] | None = None,
         on_fault: Callable[[str], None] | None = None,
     ) -> None:
-        super().__init__(orientation="vertical", size_hint_y=None, spacing=space(0.5), label=label)
+        super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(0.5), label=label)
         self.input, self.on_value, self.on_fault = line, on_value, on_fault
         self._showing = False
         self.add_widget(Text(label, role="label", tone="muted"))
@@ -44,7 +45,8 @@ class Entry(BoxLayout):
         row.add_widget(line)
         self.unit = Fixed(unit, role="body", tone="muted", halign="right")
         if unit:
-            holder = AnchorLayout(size_hint_x=None, anchor_x="right", anchor_y="center")
+            holder = AnchorLayout(size_hint_x=None, anchor_x="right", anchor_y="bottom")
+            holder.padding = (0, 0, 0, line.padding[3] + sp(1))
             holder.add_widget(self.unit)
             self.unit.bind(width=lambda _, width: setattr(holder, "width", width))
             holder.width = self.unit.width
@@ -189,7 +191,7 @@ class NumberEntry(Entry):
         if not low <= meant <= high:
             return
         words = f"{number:g} {self.measure.unit} is unusual here. Was {number:g} {other.unit} meant?"
-        self._question = BoxLayout(orientation="vertical", size_hint_y=None, spacing=space(1))
+        self._question = BoxLayout(orientation="vertical", size_hint_y=None, height=0, spacing=space(1))
         self._question.bind(minimum_height=self._question.setter("height"))
         self._question.add_widget(Text(words, role="label", tone="caution"))
         self._question.add_widget(PlainButton(f"Yes, {number:g} {other.unit}", lambda: self._take_other(meant)))

@@ -38,7 +38,9 @@ class CautionStrip(BoxLayout):
     """At the foot of every result screen; it cannot be dismissed."""
 
     def __init__(self, **keywords: Any) -> None:
-        super().__init__(size_hint_y=None, padding=(dp(MARGIN_DP), space(3), dp(MARGIN_DP), space(3)), **keywords)
+        super().__init__(
+            size_hint_y=None, height=0, padding=(dp(MARGIN_DP), space(3), dp(MARGIN_DP), space(3)), **keywords
+        )
         paint_ground(self, theme.caution_ground)
         with self.canvas.after:
             Color(*theme.caution)
@@ -48,7 +50,7 @@ class CautionStrip(BoxLayout):
         self.bind(pos=self._place, size=self._place, minimum_height=self.setter("height"))
 
     def _place(self, *_: Any) -> None:
-        self._edge.pos, self._edge.size = (self.x, self.top - dp(1.5)), (self.width, dp(1.5))
+        self._edge.pos, self._edge.size = (self.x, self.y + self.height - dp(1.5)), (self.width, dp(1.5))
 
 
 Kind = Literal["note", "caution", "stop", "good"]
@@ -70,6 +72,7 @@ class Notice(BoxLayout):
         super().__init__(
             orientation="vertical",
             size_hint_y=None,
+            height=0,
             spacing=space(2),
             padding=(space(4), space(1), 0, space(1)),
             **keywords,
@@ -98,7 +101,7 @@ class Section(BoxLayout):
     """A heading with what belongs to it."""
 
     def __init__(self, title: str, *, note: str = "", **keywords: Any) -> None:
-        super().__init__(orientation="vertical", size_hint_y=None, spacing=space(4), **keywords)
+        super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(4), **keywords)
         self.title = Text(f"[b]{title}[/b]", role="lead")
         self.add_widget(self.title)
         if note:

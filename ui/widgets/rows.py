@@ -27,8 +27,10 @@ class ListRow(Tappable):
         self, title: str, detail: str = "", value: str = "", on_tap: Callable[[], None] | None = None, **keywords: Any
     ) -> None:
         keywords.setdefault("padding", (0, space(2.5), 0, space(2.5)))
-        super().__init__(on_tap, size_hint_y=None, spacing=space(3), **keywords)
-        words = BoxLayout(orientation="vertical", size_hint_y=None, spacing=space(0.5), pos_hint={"center_y": 0.5})
+        super().__init__(on_tap, size_hint_y=None, height=0, spacing=space(3), **keywords)
+        words = BoxLayout(
+            orientation="vertical", size_hint_y=None, height=0, spacing=space(0.5), pos_hint={"center_y": 0.5}
+        )
         words.bind(minimum_height=words.setter("height"))
         self.title, self.detail, self.value = Text(title), Text(detail, role="label", tone="muted"), Fixed(value)
         words.add_widget(self.title)
@@ -94,14 +96,14 @@ class Fold(BoxLayout):
     open = BooleanProperty(False)
 
     def __init__(self, title: str, summary: str, fill: Callable[[BoxLayout], None], **keywords: Any) -> None:
-        super().__init__(orientation="vertical", size_hint_y=None, **keywords)
+        super().__init__(orientation="vertical", size_hint_y=None, height=0, **keywords)
         self._fill, self._filled = fill, False
         self.row = ListRow(f"[b]{title}[/b]", summary, on_tap=self.toggle)
         self.row.remove_widget(self.row.value)
         self.chevron = Chevron()
         self.row.add_widget(self.chevron)
         self.body = BoxLayout(
-            orientation="vertical", size_hint_y=None, spacing=space(5), padding=(0, space(4), 0, space(6))
+            orientation="vertical", size_hint_y=None, height=0, spacing=space(5), padding=(0, space(4), 0, space(6))
         )
         self.body.bind(minimum_height=self.body.setter("height"))
         self.add_widget(self.row)
@@ -133,7 +135,7 @@ class Side(Layout):
     """Fields side by side where each has at least `least_sp` of width, under each other where not; tops aligned."""
 
     def __init__(self, *fields: Widget, least_sp: float = 150, **keywords: Any) -> None:
-        super().__init__(size_hint_y=None, **keywords)
+        super().__init__(size_hint_y=None, height=0, **keywords)
         self._least = least_sp
         self.bind(pos=self._trigger_layout, width=self._trigger_layout, children=self._trigger_layout)
         for field in fields:
@@ -161,7 +163,7 @@ class Stack(BoxLayout):
     """Things under each other, as high as they are."""
 
     def __init__(self, *things: Widget, gap: float = 4, **keywords: Any) -> None:
-        super().__init__(orientation="vertical", size_hint_y=None, spacing=space(gap), **keywords)
+        super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(gap), **keywords)
         for thing in things:
             self.add_widget(thing)
         self.bind(minimum_height=self.setter("height"))

@@ -80,7 +80,7 @@ class StepTab(Tappable):
         if upright:
             self.add_widget(self.title)
         else:
-            words = BoxLayout(orientation="vertical", size_hint_y=None, pos_hint={"center_y": 0.5})
+            words = BoxLayout(orientation="vertical", size_hint_y=None, height=0, pos_hint={"center_y": 0.5})
             words.bind(minimum_height=words.setter("height"))
             words.add_widget(self.title)
             words.add_widget(self.detail)
@@ -120,7 +120,7 @@ class StepBar(BoxLayout):
     current = StringProperty("")
 
     def __init__(self, steps: Sequence[tuple[str, str]], upright: bool, on_step: Callable[[str], None]) -> None:
-        super().__init__(orientation="vertical", size_hint_y=None)
+        super().__init__(orientation="vertical", size_hint_y=None, height=0)
         self.tabs = {name: StepTab(name, title, upright, lambda n=name: on_step(n)) for name, title in steps}
         if upright:
             self._scroll = ScrollView(do_scroll_y=False, size_hint_y=None, bar_width=0)

@@ -21,7 +21,8 @@ class Text(Label):
         keywords.setdefault("halign", "left")
         keywords.setdefault("valign", "middle")
         keywords.setdefault("markup", True)
-        keywords.setdefault("size_hint_y", None)
+        if keywords.setdefault("size_hint_y", None) is None:
+            keywords.setdefault("height", 0)
         super().__init__(
             text=text,
             role=role,

@@ -1,0 +1,134 @@
+"""The app: starts with a frame on screen at once, then reads what it needs; shows the cases, or one open case."""
+
+from __future__ import annotations
+
+import gc
+from pathlib import Path
+from typing import Any
+
+from kivy.app import App
+from kivy.clock import Clock
+from kivy.core.window import Window
+from kivy.uix.boxlayout import BoxLayout
+
+from ui.theme import theme
+from ui.widgets.notices import paint_ground
+from ui.widgets.text import Text
+
+TITLE = "Oxygen and altitude planner"
+
+
+class Root(BoxLayout):
+    """Holds what is shown: the list of cases or an open case."""
+
+    def show(self, widget: Any) -> None:
+        """Show this and nothing else."""
+        self.clear_widgets()
+        self.add_widget(widget)
+
+
+class PlannerApp(App):  # type: ignore[misc]
+    """Opens on the list of cases, or on the case file given, or on the demo case."""
+
+    title = TITLE
+
+    def __init__(self, *, data_folder: Path | None = None, case_file: Path | None = None, demo: bool = False,
+                 planner: Any = "planner.plan", **keywords: Any) -> None:  # fmt: skip
+        super().__init__(**keywords)
+        self.data_folder, self.case_file, self.demo, self.planner = data_folder, case_file, demo, planner
+        self.library: Any = None
+        self.session: Any = None
+        self.shell: Any = None
+
+    def load_kv(self, filename: str | None = None) -> bool:
+        """There is no kv file of the app's name to look for."""
+        return False
+
+    def build(self) -> Root:
+        """The ground and the name; the rest follows after the first frame."""
+        Window.clearcolor = theme.ground
+        Window.bind(on_key_down=self._on_key)
+        root = Root()
+        first = BoxLayout(padding=24)
+        paint_ground(first, theme.ground)
+        first.add_widget(Text(f"[b]{TITLE}[/b]", role="title", pos_hint={"top": 1}))
+        root.show(first)
+        Clock.schedule_once(self._begin, 0)
+        return root
+
+    def _begin(self, _dt: float) -> None:
+        from ui.library import Library
+        from ui.session import Session
+
+        self.library = Library(self.data_folder)
+        self.session = Session(planner=self._planner(), saver=self.library.save)
+        gc.freeze()  # what is imported stays; the collector need not walk it while a finger drags
+        self.show_cases()
+        if self.case_file is not None:
+            self.cases.import_file(self.case_file)
+        elif self.demo:
+            self.cases.open_demo()
+
+    def _planner(self) -> Any:
+        if self.planner != "planner.plan":
+            return self.planner
+        from planner import plan
+
+        return plan
+
+    # -- what is shown
+
+    def show_cases(self) -> None:
+        """The list of cases."""
+        from ui.screens.cases import CasesPage
+
+        self._drop_shell()
+        if self.session is not None:
+            self.session.close()
+        self.cases = CasesPage(self.library, self.open_case)
+        self.root.show(self.cases)
+
+    def open_case(self, case_id: str, case: Any, step: str = "patient") -> None:
+        """One case, at a step."""
+        from ui.shell import Shell
+
+        self._drop_shell()
+        self.session.open(case, case_id)
+        self.shell = Shell(self.session, self.show_cases, step)
+        self.root.show(self.shell)
+
+    def use_theme(self, name: str) -> None:
+        """Build what is shown again in the light or the dark theme."""
+        from ui.shell import Shell
+
+        theme.use(name)
+        Window.clearcolor = theme.ground
+        if self.shell is None:
+            self.show_cases()
+            return
+        step, before = self.shell.step, self.shell._before
+        self._drop_shell()
+        self.shell = Shell(self.session, self.show_cases, step)
+        self.shell._before = before
+        self.root.show(self.shell)
+
+    def _drop_shell(self) -> None:
+        if self.shell is not None:
+            self.shell.close()
+            self.shell = None
+
+    def on_pause(self) -> bool:
+        """Save when the system puts the app away."""
+        self.on_stop()
+        return True
+
+    def on_stop(self) -> None:
+        """Save what is not saved yet."""
+        if self.session is not None:
+            self.session.close()
+        Window.unbind(on_key_down=self._on_key)
+
+    def _on_key(self, _window: Any, key: int, _scancode: int, _text: str | None, modifiers: list[str]) -> bool:
+        if self.shell is not None:
+            return bool(self.shell.on_key(key, list(modifiers)))
+        return key == 27  # Escape on the list of cases does not close the app

@@ -1,0 +1,109 @@
+"""The list of cases: open one, start one, open a demo, import a file. An empty start explains itself."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+from kivy.core.window import Window
+from kivy.uix.boxlayout import BoxLayout
+
+from planner.case import Case
+from planner.errors import PlannerError
+from ui.theme import theme
+from ui.widgets.buttons import PlainButton, PrimaryButton
+from ui.widgets.notices import CautionStrip, Notice, paint_ground
+from ui.widgets.page import Page
+from ui.widgets.rows import Fold, ListRow, Stack
+from ui.widgets.text import Text, plain
+
+DEMOS = (
+    ("copd_layover", "COPD, flights with a layover"),
+    ("fibrosis_mountain_hotel", "Lung fibrosis, a hotel in the mountains"),
+    ("neuromuscular_car_and_plane", "Neuromuscular disease, by car and plane"),
+)
+EXPLAINED = (
+    "A person with lung disease wants to travel. Enter who travels and the trip from door to door. The planner shows "
+    "the air on the way, what the blood is likely to do, what the guideline says, and what to carry, and writes it "
+    "down for the record, the airline, the supplier and the traveller."
+)
+PRIVATE = "Everything stays on this device. The app never goes online."
+
+
+class CasesPage(BoxLayout):
+    """Outside of any case. `open_case(case_id, case)` opens one."""
+
+    def __init__(self, library: Any, open_case: Callable[[str, Case], None]) -> None:
+        super().__init__(orientation="vertical")
+        paint_ground(self, theme.ground)
+        self.library, self.open_case = library, open_case
+        self.content = Stack(gap=5)
+        self.add_widget(Page(self.content))
+        self.add_widget(CautionStrip())
+        Window.bind(on_drop_file=self._dropped)
+        self._fill()
+
+    def on_parent(self, _: Any, parent: Any) -> None:
+        """Stop taking dropped files once this page is left."""
+        if parent is None:
+            Window.unbind(on_drop_file=self._dropped)
+
+    def _fill(self) -> None:
+        rows = self.library.rows()
+        self.content.add_widget(Text("[b]Cases[/b]" if rows else "[b]Oxygen and altitude planner[/b]", role="title"))
+        self.fault = Stack()
+        self.content.add_widget(self.fault)
+        if not rows:
+            self.content.add_widget(Text(EXPLAINED))
+            self.content.add_widget(Text(PRIVATE, role="label", tone="muted"))
+        else:
+            listed = Stack(gap=0)
+            for row in rows:
+                listed.add_widget(ListRow(row.title, row.detail, row.when, lambda r=row: self._open(r.case_id)))
+            self.content.add_widget(listed)
+        self.content.add_widget(PrimaryButton("New case", self.new_case))
+        self.content.add_widget(PlainButton("Open a demo", self.open_demo))
+        folds = Stack(gap=0)
+        folds.add_widget(Fold("Other demos", "Three invented people and trips", self._fill_demos))
+        folds.add_widget(Fold("Import a case", "From a file on this device", self._fill_import))
+        self.content.add_widget(folds)
+
+    def _fill_demos(self, body: BoxLayout) -> None:
+        for name, words in DEMOS:
+            body.add_widget(PlainButton(words, lambda n=name: self.open_demo(n)))
+
+    def _fill_import(self, body: BoxLayout) -> None:
+        from ui.widgets.entries import TextEntry
+
+        body.add_widget(Text("Drop a case file on this window, or write where it is.", role="body"))
+        self.path = TextEntry("File", longest=1000)
+        body.add_widget(self.path)
+        body.add_widget(PlainButton("Import this file", lambda: self.import_file(Path(self.path.value).expanduser())))
+
+    def new_case(self) -> None:
+        """Start an empty case."""
+        self.open_case(self.library.new_id(), Case())
+
+    def open_demo(self, name: str = DEMOS[0][0]) -> None:
+        """Open a demo as a case of one's own: it can be changed freely."""
+        self._try(lambda: self.open_case(self.library.new_id(), self.library.demo(name)))
+
+    def import_file(self, path: Path) -> None:
+        """Read a case file and open it; a fault is said here and nothing is lost."""
+        self._try(lambda: self.open_case(self.library.new_id(), self.library.read_file(path)))
+
+    def _open(self, case_id: str) -> None:
+        self._try(lambda: self.open_case(case_id, self.library.read(case_id)))
+
+    def _dropped(self, _window: Any, path: bytes, *_: Any) -> None:
+        self.import_file(Path(path.decode("utf-8", "surrogateescape")))
+
+    def _try(self, act: Callable[[], None]) -> None:
+        self.fault.clear_widgets()
+        try:
+            act()
+        except PlannerError as error:
+            self.fault.add_widget(Notice(plain(str(error)), "stop", title="Not opened."))
+        except OSError as error:
+            self.fault.add_widget(Notice(plain(f"{error.filename}: {error.strerror}."), "stop", title="Not opened."))

@@ -1,0 +1,148 @@
+"""The frame of an open case: who it is and the state of the plan, the steps, the work, the caution strip.
+
+Upright on a phone: header, steps along the top, work below. From 900 dp two panes: steps left, work right.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Any
+
+from kivy.clock import Clock
+from kivy.core.window import Window
+from kivy.metrics import dp
+from kivy.uix.boxlayout import BoxLayout
+from kivy.uix.widget import Widget
+
+from ui.progress import step_states
+from ui.screens import STEPS, screen_class
+from ui.theme import MARGIN_DP, WIDE_FROM_DP, space, theme
+from ui.widgets.buttons import QuietButton
+from ui.widgets.icons import IconButton
+from ui.widgets.notices import CautionStrip, paint_ground
+from ui.widgets.page import Page
+from ui.widgets.stepbar import StepBar
+from ui.widgets.text import Text, plain
+
+SIDE_DP = 268
+
+
+class Shell(BoxLayout):
+    """Shows one step of the open case at a time. `leave` goes back to the list of cases."""
+
+    def __init__(self, session: Any, leave: Callable[[], None], step: str = "patient") -> None:
+        super().__init__()
+        self.session, self.leave = session, leave
+        self.step, self._before = step, "patient"
+        self.screen: Any = None
+        self._show_again = Clock.create_trigger(self._show, -1)
+        paint_ground(self, theme.ground)
+        self._build()
+        names = ("revision", "plan", "stale", "said", "working_on")
+        self._bindings = {name: lambda *_: self._show_again() for name in names}
+        session.bind(**self._bindings)
+
+    @property
+    def wide(self) -> bool:
+        """True where there is room for two panes."""
+        return bool(Window.width >= dp(WIDE_FROM_DP))
+
+    def close(self) -> None:
+        """Stop listening to the session."""
+        self.session.unbind(**self._bindings)
+
+    # -- frame
+
+    def _build(self) -> None:
+        self.clear_widgets()
+        self._built_wide = self.wide
+        steps = [(step.name, step.title) for step in STEPS]
+        self.bar = StepBar(steps, not self.wide, self.go)
+        self.who = Text("", role="body", pos_hint={"center_y": 0.5})
+        self.units = QuietButton("", lambda: self.go("display"), pos_hint={"center_y": 0.5})
+        self.undo = IconButton("undo", "Undo", self.session.undo, pos_hint={"center_y": 0.5})
+        back = IconButton("back", "All cases", self.leave, pos_hint={"center_y": 0.5})
+        header = BoxLayout(size_hint_y=None, height=0, padding=(space(1.5), space(1), space(2), 0))
+        header.bind(minimum_height=header.setter("height"))
+        for widget in (back, self.who, self.undo, self.units):
+            header.add_widget(widget)
+        self.said = Text("", role="label", tone="caution")
+        said = BoxLayout(size_hint_y=None, height=0, padding=(dp(MARGIN_DP), 0))
+        said.add_widget(self.said)
+        said.bind(minimum_height=said.setter("height"))
+        self.work = BoxLayout()
+        self.strip = CautionStrip()
+        if self.wide:
+            self.orientation = "horizontal"
+            side = BoxLayout(orientation="vertical", size_hint_x=None, width=dp(SIDE_DP))
+            for widget in (header, said, self.bar, Widget()):
+                side.add_widget(widget)
+            edge = Widget(size_hint_x=None, width=max(1, dp(1)))
+            paint_ground(edge, theme.line)
+            right = BoxLayout(orientation="vertical")
+            right.add_widget(self.work)
+            right.add_widget(self.strip)
+            for widget in (side, edge, right):
+                self.add_widget(widget)
+        else:
+            self.orientation = "vertical"
+            for widget in (header, said, self.bar, self.work, self.strip):
+                self.add_widget(widget)
+        self._open_step()
+
+    def on_size(self, *_: Any) -> None:
+        """Change between one and two panes when the window does."""
+        if self.screen is not None and self.wide != self._built_wide:
+            Clock.schedule_once(lambda _dt: self._build(), 0)
+
+    # -- steps
+
+    def go(self, step: str) -> None:
+        """Show another step."""
+        if self.screen is not None and step == self.step:
+            step = self._before if step == "display" else step
+        if step != self.step:
+            self._before, self.step = self.step, step
+        self._open_step()
+
+    def _open_step(self) -> None:
+        self.work.clear_widgets()
+        self.bar.current = self.step
+        self.screen = screen_class(self.step)(self.session, self.go)
+        self.page = Page(self.screen)
+        self.work.add_widget(self.page)
+        self._show_frame()
+
+    def _show(self, *_: Any) -> None:
+        self.screen.show()
+        self._show_frame()
+
+    def _show_frame(self) -> None:
+        case, plan = self.session.case, self.session.plan
+        state = plan.state if plan is not None and not self.session.stale else "Draft"
+        name = plain(case.patient.initials or case.patient.reference or "New case")
+        self.who.text = f"[b]{name}[/b] · {state}"
+        self.units.text = f"{case.display.pressure} {case.display.altitude}"
+        self.undo.disabled = not self.session.can_undo
+        self.said.text = plain(self.session.said)
+        self.bar.say(step_states(self.session))
+
+    # -- keys
+
+    def on_key(self, key: int, modifiers: list[str]) -> bool:
+        """Ctrl+Z and Ctrl+Y undo and redo, Alt+1 to Alt+6 show a step, Escape goes back."""
+        if "ctrl" in modifiers and key in (ord("z"), ord("y")):
+            (self.session.undo if key == ord("z") else self.session.redo)()
+            return True
+        if "alt" in modifiers and 0 <= key - ord("1") < len(STEPS):
+            self.go(STEPS[key - ord("1")].name)
+            return True
+        if key == 27:
+            if self.screen.escape():
+                return True
+            if self.step == "display":
+                self.go(self._before)
+            else:
+                self.leave()
+            return True
+        return False

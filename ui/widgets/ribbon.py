@@ -1,0 +1,231 @@
+"""The trip ribbon: drag along it, move along it by arrow keys, zoom by + and − or by its buttons, and read the moment.
+
+It shows what `lay` lays out (planner.charts.ribbon) for its size, and asks `tell` for the line of reading above it.
+What does not move is painted once; a drag repaints only the scrub line, its ring and the line of text.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Any
+
+from kivy.clock import Clock
+from kivy.graphics import Rectangle, StencilPop, StencilPush, StencilUnUse, StencilUse
+from kivy.graphics.instructions import InstructionGroup
+from kivy.metrics import dp, sp
+from kivy.properties import NumericProperty
+from kivy.uix.boxlayout import BoxLayout
+from kivy.uix.widget import Widget
+
+from ui.painter import measure, paint, paint_items
+from ui.theme import space, theme
+from ui.widgets.buttons import QuietButton
+from ui.widgets.reach import Reachable
+from ui.widgets.text import Text
+
+LEFT, RIGHT, HOME, END = 276, 275, 278, 279
+MOST_ZOOM = 8.0
+Lay = Callable[..., Any]  # (width=, height=, text_size=, measure=) -> planner.charts.ribbon.Ribbon
+Tell = Callable[[Any], str]  # planner.charts.ribbon.Reading -> sentence with markup
+
+
+class RibbonPlot(Reachable, Widget):  # type: ignore[misc]
+    """The drawing itself."""
+
+    takes_drags = True  # a page hands touches here over at once, instead of waiting to see whether it should scroll
+    minute = NumericProperty(0.0)
+    zoom = NumericProperty(1.0)
+
+    def __init__(self, on_minute: Callable[[], None], **keywords: Any) -> None:
+        super().__init__(**keywords)
+        self.on_minute = on_minute
+        self.lay: Lay | None = None
+        self.ribbon: Any = None
+        self._offset = 0.0
+        self._still, self._moving = InstructionGroup(), InstructionGroup()
+        with self.canvas:
+            StencilPush()
+            self._window = Rectangle()
+            StencilUse()
+            self.canvas.add(self._still)
+            self.canvas.add(self._moving)
+            StencilUnUse()
+            self._window_again = Rectangle()
+            StencilPop()
+        self._again = Clock.create_trigger(self._lay_out, -1)
+        self.bind(pos=self._again, size=self._again, zoom=self._again, minute=self._moved)
+
+    def show(self, lay: Lay | None) -> None:
+        """Show another layout, from the next frame on."""
+        self.lay = lay
+        self._again()
+
+    def _lay_out(self, *_: Any) -> None:
+        if self.lay is None or self.width < dp(80) or self.height < dp(40):
+            self.ribbon = None
+            self._still.clear()
+            self._moving.clear()
+            return
+        self.ribbon = self.lay(
+            width=self.width * self.zoom, height=self.height, text_size=theme.size("small"), measure=measure
+        )
+        for window in (self._window, self._window_again):
+            window.pos, window.size = self.pos, self.size
+        self._keep_in_view()
+        self._paint()
+
+    def _paint(self) -> None:
+        paint(self._still, self.ribbon.drawing, self.x - self._offset, self.y)
+        self._paint_scrub()
+        self.on_minute()
+
+    def _paint_scrub(self) -> None:
+        paint_items(self._moving, self.ribbon.scrub(self.minute), self.x - self._offset, self.y)
+
+    def _moved(self, *_: Any) -> None:
+        if self.ribbon is None:
+            return
+        if self._keep_in_view():
+            self._paint()
+        else:
+            self._paint_scrub()
+            self.on_minute()
+
+    def _keep_in_view(self) -> bool:
+        """Slide the zoomed drawing so that the scrub line stays in view; True if it slid."""
+        before = self._offset
+        here = self.ribbon.scale.at(self.minute)
+        margin = self.width * 0.12 if self.zoom > 1 else 0
+        low, high = here - self.width + margin, here - margin
+        self._offset = min(max(self._offset, low), high)
+        self._offset = min(max(self._offset, 0.0), self.width * (self.zoom - 1))
+        return abs(before - self._offset) > 0.5
+
+    def _to_minute(self, x: float) -> None:
+        if self.ribbon is not None:
+            self.minute = self.ribbon.minute_at(x - self.x + self._offset)
+
+    def on_touch_down(self, touch: Any) -> bool:
+        """Take the touch and read there."""
+        if not self.collide_point(*touch.pos) or self.ribbon is None:
+            return bool(super().on_touch_down(touch))
+        super().on_touch_down(touch)
+        touch.grab(self)
+        self._to_minute(touch.x)
+        return True
+
+    def on_touch_move(self, touch: Any) -> bool:
+        """Read where the finger is."""
+        if touch.grab_current is self:
+            self._to_minute(touch.x)
+            return True
+        return bool(super().on_touch_move(touch))
+
+    def on_touch_up(self, touch: Any) -> bool:
+        """Let go."""
+        if touch.grab_current is self:
+            touch.ungrab(self)
+            return True
+        return bool(super().on_touch_up(touch))
+
+    def keyboard_on_key_down(self, window: Any, keycode: tuple[int, str], text: str, modifiers: list[str]) -> bool:
+        """Arrows move by a hundredth of the drawing, with Shift by a part; + and − zoom."""
+        if self.ribbon is None:
+            return bool(super().keyboard_on_key_down(window, keycode, text, modifiers))
+        key = keycode[0]
+        if key in (LEFT, RIGHT):
+            sign = 1 if key == RIGHT else -1
+            if "shift" in modifiers:
+                self.to_part(self.ribbon.part_at(self.minute) + sign)
+            else:
+                step = self.width * self.zoom / 100
+                self.minute = self.ribbon.minute_at(self.ribbon.scale.at(self.minute) + sign * step)
+            return True
+        if key in (HOME, END):
+            self.minute = float(self.ribbon.scale.minutes[0 if key == HOME else -1])
+            return True
+        if text in ("+", "=", "-"):
+            self.zoom_by(1 / 1.5 if text == "-" else 1.5)
+            return True
+        return bool(super().keyboard_on_key_down(window, keycode, text, modifiers))
+
+    def to_part(self, index: int) -> None:
+        """Read in the middle of a part."""
+        edges = self.ribbon.scale.minutes
+        if 0 <= index < len(edges) - 1:
+            self.minute = float((edges[index] + edges[index + 1]) / 2)
+
+    def zoom_by(self, factor: float) -> None:
+        """Zoom about the scrub line."""
+        self.zoom = min(MOST_ZOOM, max(1.0, self.zoom * factor))
+
+
+class RibbonView(BoxLayout):
+    """Ribbon with its line of reading above and its zoom below. `show(lay, tell, minute)`; `on_minute(minute)`."""
+
+    def __init__(self, on_minute: Callable[[float], None] | None = None, *, height_sp: float = 150) -> None:
+        super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(1))
+        self._tell: Tell | None = None
+        self._on_minute = on_minute
+        self.reading = Text("", role="body")
+        self.plot = RibbonPlot(self._moved, size_hint_y=None, height=sp(height_sp))
+        self.add_widget(self.reading)
+        self.add_widget(self.plot)
+        self._buttons = BoxLayout(size_hint_y=None, height=0, spacing=space(1))
+        self._hint = Text("Drag along it to read a moment.", role="small", tone="muted", pos_hint={"center_y": 0.5})
+        self._less = QuietButton("−", lambda: self.plot.zoom_by(1 / 1.5), pos_hint={"center_y": 0.5})
+        self._more = QuietButton("+", lambda: self.plot.zoom_by(1.5), pos_hint={"center_y": 0.5})
+        for widget in (self._hint, self._less, self._more):
+            self._buttons.add_widget(widget)
+        self._buttons.bind(minimum_height=self._buttons.setter("height"))
+        self.add_widget(self._buttons)
+        self.bind(minimum_height=self.setter("height"))
+        self.plot.bind(zoom=self._zoomed)
+        self._zoomed()
+
+    def show(self, lay: Lay | None, tell: Tell, minute: float | None = None) -> None:
+        """Show a ribbon; the moment that is read stays unless another is given."""
+        self._tell = tell
+        if minute is not None:
+            self.plot.minute = minute
+        self.plot.show(lay)
+
+    def _zoomed(self, *_: Any) -> None:
+        self._less.disabled = self.plot.zoom <= 1.0
+        self._more.disabled = self.plot.zoom >= MOST_ZOOM
+
+    def _moved(self) -> None:
+        if self._tell is not None and self.plot.ribbon is not None:
+            reading = self.plot.ribbon.read_at(self.plot.minute)
+            self.reading.text = self._tell(reading)
+            if self._on_minute is not None:
+                self._on_minute(reading.minute)
+
+
+class DrawingView(Widget):
+    """Any other drawing of planner.charts, as high as it needs. lay(width, text_size, measure) -> Drawing."""
+
+    def __init__(self, lay: Callable[..., Any] | None = None, **keywords: Any) -> None:
+        super().__init__(size_hint_y=None, height=0, **keywords)
+        self._lay = lay
+        self.drawing: Any = None
+        self._group = InstructionGroup()
+        self.canvas.add(self._group)
+        self._again = Clock.create_trigger(self._lay_out, -1)
+        self.bind(pos=self._again, width=self._again)
+
+    def show(self, lay: Callable[..., Any] | None) -> None:
+        """Show another drawing."""
+        self._lay = lay
+        self._again()
+
+    def _lay_out(self, *_: Any) -> None:
+        if self._lay is None or self.width < dp(40):
+            self._group.clear()
+            return
+        self.drawing = self._lay(width=self.width, text_size=theme.size("label"), measure=measure)
+        self.height = self.drawing.height
+        paint(self._group, self.drawing, self.x, self.y)
+
+
+__all__ = ["DrawingView", "RibbonPlot", "RibbonView"]
