@@ -157,6 +157,14 @@ def test_with_carbon_dioxide_risk_a_proposed_flow_never_comes_without_the_chance
     )
 
 
+def test_without_carbon_dioxide_risk_there_is_no_ceiling_unless_one_is_chosen():
+    assert one(MODERATE, at(2438.4), ["cannula"], NO_RISK).curves[0].chance_above_ceiling is None
+    assert with_decision(MODERATE, at(2438.4), DEVICES["cannula"], 2.0, NO_RISK).chance_above_ceiling is None
+    chosen = one(MODERATE, at(2438.4), ["cannula"], Target(0.88, 0.98, 0.9, "no"))
+    assert (np.diff(chosen.curves[0].chance_above_ceiling) >= 0.0).all()
+    assert chosen.curves[0].chance_above_ceiling[-1] > 0.0
+
+
 def test_a_pulse_device_is_proposed_by_its_setting():
     found = one(MODERATE, at(2438.4), ["pulse_concentrator"], NO_RISK)
     (curve,) = found.curves
