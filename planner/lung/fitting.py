@@ -180,15 +180,16 @@ def fit_log_sd(
     shape = np.broadcast_shapes(target.shape, *(one.shape for one in given))
     low, high = np.zeros(shape), np.full(shape, HIGHEST_LOG_SD)
     share = np.linspace(0.0, 1.0, 41)
-    for _ in range(3):
+    for finer in range(3):
         net = low + (high - low) * share
         po2 = exchange(given[0], given[1], given[2], net, given[3], nodes=40, **extra).po2_mmhg
         above = po2 > target  # False where below the model's range
         count = above.sum(axis=-1, keepdims=True)
-        if (count == 0).any():
+        if finer == 0 and (count == 0).any():
             raise InputError("pao2_mmhg", "This PaO2 is above what a lung without any unevenness has in this air.")
-        if (count == share.size).any():
+        if finer == 0 and (count == share.size).any():
             raise InputError("pao2_mmhg", "Below model range: this PaO2 is lower than any unevenness explains.")
+        count = np.clip(count, 1, share.size - 1)  # a target on a node may fall either side of it
         low, high = np.take_along_axis(net, count - 1, -1), np.take_along_axis(net, count, -1)
         at_low, at_high = np.take_along_axis(po2, count - 1, -1), np.take_along_axis(po2, count, -1)
     if np.isnan(at_high).any():

@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from planner.air.ranges import Array
+from planner.errors import InputError
 from planner.lung.blood_shift import SaturationCurve
 from planner.lung.gas_exchange import LOWEST_PO2_MMHG
 from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic
@@ -22,6 +23,7 @@ def po2_over_log_sd(reading: LungReading, fio2: Array, pco2_mmhg: Array, shunt: 
     """Arterial PO2 the reading would show, shape (draws, LOG_SDS), for each draw's fraction, PCO2 and shunt.
 
     Solved for a few nodes that span the draws, read by polynomials in between; NaN below the model's range.
+    Raises InputError where even an even lung is below it.
     """
     dry = reading.barometric_mmhg - 47.0
     shunt_nodes = _span(shunt, SHUNT_NODES, 0.005)
@@ -30,6 +32,12 @@ def po2_over_log_sd(reading: LungReading, fio2: Array, pco2_mmhg: Array, shunt: 
     fractions, carbon = np.meshgrid(fio2_nodes, pco2_nodes, indexing="ij")
     content = contents(body, LOG_SD_NODES, shunt_nodes, fractions * dry, np.full(fractions.shape, dry), carbon)
     content = extended(content, LOG_SD_NODES, axis=0, downward=False)
+    if np.isnan(content).any():
+        raise InputError(
+            "readings",
+            f"Below model range: breathing {100 * reading.fio2:.3g} % oxygen at {reading.barometric_mmhg:.0f} mmHg with "
+            f"an arterial PCO2 up to {pco2_mmhg.max():.0f} mmHg leaves too little oxygen for any lung.",
+        )
     weights = (
         lagrange(shunt, shunt_nodes)[:, :, None, None]
         * lagrange(fio2, fio2_nodes)[:, None, :, None]

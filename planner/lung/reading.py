@@ -25,6 +25,7 @@ SKIN_BIAS = {"light": (0.0, 0.0), "medium": (0.005, 0.005), "dark": (0.015, 0.01
 # An oximeter counts nine tenths of carboxyhaemoglobin as oxygenated (Barker SJ, Tremper KK, Anesthesiology
 # 1987;66:677, from memory).
 COUNTED_CARBOXY = 0.9
+COUNTED_CARBOXY_SPREAD = 0.1  # planning assumption
 NOTABLE_CARBOXY = 0.03
 # An old gas did not predict altitude, one taken within 2 h did (Schwartz JS et al., Ann Intern Med 1984;100:473).
 # Added SD: planning assumptions.
@@ -112,7 +113,7 @@ def spo2_sd(reading: LungReading, person: Person | None) -> float:
     parts = [SPO2_SD]
     if person is not None:
         parts.append(SKIN_BIAS[person.skin][1])
-        parts.append(0.5 * (person.carboxyhaemoglobin_fraction or 0.0))
+        parts.append(COUNTED_CARBOXY_SPREAD * (person.carboxyhaemoglobin_fraction or 0.0))
     parts += _state_parts(reading, STALE_SD_SATURATION, UNSTABLE_SD_SATURATION, CHALLENGE_SD_SATURATION)
     return _together(parts)
 

@@ -121,7 +121,7 @@ class Response:
             inspired = _inspired_of_air(alveolar, carbon)
             fraction = _air_fraction(inspired)
         content = contents(self.body, self._log_sd_nodes, self._shunt_nodes, inspired, inspired / fraction, carbon)
-        content = extended(content, logs, axis=-1, downward=True)
+        content = np.nan_to_num(extended(content, logs, axis=-1, downward=True), nan=0.0)  # no answer anywhere: below
         fine = np.linspace(logs[0], logs[-1], steps)
         flat = content.reshape(-1, nodes) @ local_cubic(fine, logs).T
         per_draw = self._weights @ flat.reshape(self._weights.shape[1], -1)
