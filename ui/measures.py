@@ -6,7 +6,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from dataclasses import dataclass
 
-THIN_SPACE = "\u2009"
+THIN_SPACE = "\u202f"  # narrow, not broken over lines
 
 
 def _same(value: float) -> float:

@@ -34,10 +34,7 @@ class Step(NamedTuple):
     where: str
 
 
-STEPS = (
-    Step("patient", "Patient", "ui.screens.patient:PatientScreen"),
-    # trip
-)
+STEPS = (Step("patient", "Patient", "ui.screens.patient:PatientScreen"),)
 PAGES = (Step("display", "Display", "ui.screens.display:DisplayScreen"),)  # reached from elsewhere than the bar
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Any
 
-from kivy.graphics import Color, Line, RoundedRectangle
+from kivy.graphics import Color, SmoothLine, SmoothRoundedRectangle
 from kivy.metrics import dp
 from kivy.properties import BooleanProperty
 from kivy.uix.behaviors import ButtonBehavior
@@ -38,9 +38,9 @@ class PlainButton(ButtonBehavior, Reachable, Label):  # type: ignore[misc]
         )
         with self.canvas.before:
             self._ground = Color(0, 0, 0, 0)
-            self._shape = RoundedRectangle(radius=[dp(8)])
+            self._shape = SmoothRoundedRectangle(radius=[dp(8)])
             self._edge = Color(0, 0, 0, 0)
-            self._outline = Line(width=1)
+            self._outline = SmoothLine(width=1)
         self.bind(
             pos=self._place,
             size=self._place,

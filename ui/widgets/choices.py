@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from typing import Any
 
-from kivy.graphics import Color, Line, RoundedRectangle
+from kivy.graphics import Color, SmoothLine, SmoothRoundedRectangle
 from kivy.metrics import dp
 from kivy.properties import BooleanProperty, StringProperty
 from kivy.uix.behaviors import ButtonBehavior
@@ -37,9 +37,9 @@ class Chip(ButtonBehavior, Reachable, Label):  # type: ignore[misc]
         )
         with self.canvas.before:
             self._ground = Color(0, 0, 0, 0)
-            self._shape = RoundedRectangle(radius=[dp(8)])
+            self._shape = SmoothRoundedRectangle(radius=[dp(8)])
             self._edge = Color(*theme.edge)
-            self._outline = Line(width=1)
+            self._outline = SmoothLine(width=1)
         self.bind(pos=self._place, size=self._place, texture_size=self._fit, chosen=self._paint, state=self._paint)
         self._paint()
 

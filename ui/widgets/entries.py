@@ -5,20 +5,23 @@ An entry keeps what was typed when it is wrong and gives nothing to on_value the
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable
 from datetime import date
 from typing import Any
 
 from kivy.metrics import sp
 from kivy.properties import StringProperty
-from kivy.uix.anchorlayout import AnchorLayout
 from kivy.uix.boxlayout import BoxLayout
+from kivy.uix.widget import Widget
 
 from ui.measures import Measure, plain_measure
-from ui.theme import space
+from ui.theme import space, theme
 from ui.widgets.buttons import PlainButton
 from ui.widgets.text import Fixed, Text, plain
 from ui.widgets.typing import Line, NumberLine, date_text, parse_date, parse_number
+
+_THOUSANDS = re.compile(r"-?[0-9]{1,3}[.][0-9]{3}")  # a comma typed as a thousands mark has become a decimal point
 
 
 class Entry(BoxLayout):
@@ -45,11 +48,12 @@ class Entry(BoxLayout):
         row.add_widget(line)
         self.unit = Fixed(unit, role="body", tone="muted", halign="right")
         if unit:
-            holder = AnchorLayout(size_hint_x=None, anchor_x="right", anchor_y="bottom")
-            holder.padding = (0, 0, 0, line.padding[3] + sp(1))
+            holder = BoxLayout(orientation="vertical", size_hint_x=None)
+            holder.add_widget(Widget())
             holder.add_widget(self.unit)
+            holder.add_widget(Widget(size_hint_y=None, height=(line.height - 1.26 * theme.size("value")) * 0.4 + sp(1)))
             self.unit.bind(width=lambda _, width: setattr(holder, "width", width))
-            holder.width = self.unit.width
+            self.unit.bind(width=lambda _, width: line.make_room(width + space(1)))
             row.add_widget(holder)
         self.add_widget(row)
         self.fault_text = Text("", role="label", tone="stop")
@@ -162,6 +166,12 @@ class NumberEntry(Entry):
         if number is None:
             self.value = None
             self._accept(None)
+            return
+        if self.measure.decimals == 0 and _THOUSANDS.fullmatch(text.strip()):
+            whole = text.strip().replace(".", "")
+            self._say_fault(
+                f"{text.strip()} could be {number:g} or {whole}. Write {whole} without a mark if that is meant."
+            )
             return
         stored = self.measure.stored(number)
         if not self._allowed(stored):

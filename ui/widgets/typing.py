@@ -44,6 +44,7 @@ class Line(TextInput):  # type: ignore[misc]
             **keywords,
         )
         self.wrong = False
+        self.unit_width = 0.0  # the rule runs on under the unit
         with self.canvas.after:
             self._colour = Color(*theme.ink)
             self._rule = Rectangle()
@@ -57,13 +58,18 @@ class Line(TextInput):  # type: ignore[misc]
 
     def _place(self, *_: Any) -> None:
         thick = dp(3) if self.focus else dp(1.5)
-        self._rule.pos, self._rule.size = self.pos, (self.width, thick)
+        self._rule.pos, self._rule.size = self.pos, (self.width + self.unit_width, thick)
         self._colour.rgba = theme.stop if self.wrong else theme.data if self.focus else theme.ink
 
     def _on_focus(self, _: Any, focused: bool) -> None:
         self._place()
         if focused and keyboard_in_use():
             scroll_into_view(self)
+
+    def make_room(self, width: float) -> None:
+        """Run the rule on under a unit of this width."""
+        self.unit_width = width
+        self._place()
 
     def mark(self, wrong: bool) -> None:
         """Show in the rule that what stands here is not accepted."""
