@@ -12,7 +12,7 @@ from planner.air.ranges import Array
 
 DIFFUSION_DIAGNOSES = frozenset({"interstitial", "pulmonary_vascular"})
 # Oxygen diffusing capacity, mL/min/mmHg: median 16, coefficient of variation 0.25; sized on the restrictive group of
-# Christensen CC et al. (Monaldi Arch Chest Dis 2002, from memory: 10.4 to 6.5 kPa), which needs 14 to 15, and on the
+# Christensen CC et al. (Eur Respir J 2002;20:300: 10.4 to 6.5 kPa), which needs 14 to 15, and on the
 # small share at rest at sea level (Agusti AG et al., Am Rev Respir Dis 1991;143:219: 19 % of the gradient).
 CAPACITY_MEDIAN = 16.0
 CAPACITY_VARIATION = 0.25

@@ -24,6 +24,8 @@ STRUCTURAL_SD_MMHG = 3.0
 REFERENCE_FALL_MMHG = ventilation.REFERENCE_FALL_MMHG
 ANCHORED_SHARE = 0.7  # of that error between and beyond two anchors, over the distance to the nearest; assumption
 
+MOST_DEPRESSION = 0.4
+HIGHEST_PCO2_MMHG = 120.0
 LEAST_MMHG = 25.0  # an arterial PO2 below is "below model range"
 BLOCK = 125  # draws worked together; their arrays stay in the processor's cache
 WALKING_STRAIN = 2.0  # of the share that diffusion takes: 19 % of the gradient at rest, 40 % on exercise (Agusti 1991)
@@ -31,7 +33,7 @@ CURVE_POINTS = 16
 CURVE_START_MMHG = 40.0
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Arterial:
     """Arterial blood of every draw at every point: arrays (draws, points), pressures in mmHg.
 
@@ -46,7 +48,7 @@ class Arterial:
     below_range: NDArray[np.bool_]
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class FittedLung:
     """Many lungs that agree with what was measured. Arrays have shape (draws,)."""
 
@@ -66,7 +68,7 @@ class FittedLung:
     base_inspired_mmhg: float
     anchors_mmhg: tuple[float, ...]  # inspired PO2 of the readings that tie the model down
     widened: tuple[str, ...]
-    _responses: dict[str, Response] = field(default_factory=dict, repr=False, compare=False)
+    _responses: dict[tuple[Activity, bool], Response] = field(default_factory=dict, repr=False)
 
     def arterial(
         self,
@@ -81,10 +83,12 @@ class FittedLung:
 
         inspired_po2_mmhg: scalar, (points,) or (draws, points), 20 to 760, added oxygen included; barometric_mmhg and
         hours_at_altitude (since arrival, 0 is acute): scalar or (points,). ventilation_depression: share of alveolar
-        ventilation lost beyond sleep, 0 to 0.5. Raises InputError outside.
+        ventilation lost beyond sleep, 0 to 0.4. Raises InputError outside.
         """
         inspired, dry, hours = self._checked(inspired_po2_mmhg, barometric_mmhg, hours_at_altitude)
-        depression = require_within("ventilation_depression", "Lost ventilation", ventilation_depression, 0.0, 0.5)
+        depression = require_within(
+            "ventilation_depression", "Lost ventilation", ventilation_depression, 0.0, MOST_DEPRESSION
+        )
         shape = (self.log_sd.size, inspired.shape[1])
         po2, saturation, pco2 = np.empty(shape), np.empty(shape), np.empty(shape)
         for start in range(0, shape[0], BLOCK):
@@ -107,7 +111,9 @@ class FittedLung:
         if activity == "asleep":
             pco2 = pco2 + self.sleep_rise_mmhg[rows, None]
         pco2 = pco2 / (1.0 - depression)
-        po2 = self._response(activity).arterial_po2_mmhg(inspired, dry, pco2, rows.start)
+        po2 = self._response(activity, bool((depression > 0.0).any())).arterial_po2_mmhg(
+            inspired, dry, pco2, rows.start
+        )
         po2 += self._model_error_mmhg(inspired, rows)
         if self.diffusing_capacity is not None:
             strain = WALKING_STRAIN if activity == "walking" else 1.0
@@ -138,9 +144,9 @@ class FittedLung:
             raise InputError("inspired_po2_mmhg", f"{inspired.shape[0]} rows were given for {self.log_sd.size} draws.")
         return inspired, dry, hours
 
-    def _response(self, activity: Activity) -> Response:
-        """The solved table for one activity, made when first asked for."""
-        if activity not in self._responses:
+    def _response(self, activity: Activity, depressed: bool = False) -> Response:
+        """The solved table for one activity, made when first asked for; a wider one where ventilation is lost."""
+        if (activity, depressed) not in self._responses:
             body, log_sd = self.body, self.log_sd
             rise = float(self.sleep_rise_mmhg.max()) if activity == "asleep" else 0.0
             if activity == "walking":
@@ -153,8 +159,12 @@ class FittedLung:
             if activity == "asleep":
                 log_sd = log_sd * ventilation.SLEEP_LOG_SD_FACTOR
             lowest, highest = max(0.6 * float(self.paco2_mmhg.min()), 12.0), float(self.paco2_mmhg.max()) + 4.0 + rise
-            self._responses[activity] = Response(body, np.minimum(log_sd, HIGHEST_LOG_SD), self.shunt, lowest, highest)
-        return self._responses[activity]
+            if depressed:
+                highest = min(highest / (1.0 - MOST_DEPRESSION), HIGHEST_PCO2_MMHG)
+            self._responses[activity, depressed] = Response(
+                body, np.minimum(log_sd, HIGHEST_LOG_SD), self.shunt, lowest, highest
+            )
+        return self._responses[activity, depressed]
 
     def _pco2_mmhg(self, inspired: Array, hours: Array, rows: slice) -> Array:
         """Arterial PCO2 awake, (draws, points): acute response, its spread, and what days have added."""

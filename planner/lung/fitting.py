@@ -56,6 +56,7 @@ LOG_SD_PRIOR = (0.8, 0.45)
 # PaCO2 where it was not measured, mean and SD; planning assumptions.
 PACO2_PRIOR_MMHG = (39.5, 3.5)
 PACO2_BOUNDED_PRIOR_MMHG = (46.0, 6.0)
+PACO2_BETWEEN = 2.0  # a second reading's PaCO2 counts with this many of its SD: days differ; planning assumption
 EXPECTED_FALL_MMHG = 1.8  # mean of the published falls of PaCO2, sea level to about 8000 ft; see ventilation
 
 
@@ -107,7 +108,8 @@ def fit_lung(readings: Sequence[LungReading], person: Person, *, draws: int = 10
     sleep = np.maximum(ventilation.SLEEP_RISE_MMHG + ventilation.SLEEP_RISE_SPREAD_MMHG * prior.normal(), 0.0)
     acclimatised = np.maximum(1.0 + ventilation.ACCLIMATISED_SPREAD * prior.normal(), 0.0)
 
-    rest_pco2 = _rest_pco2(ordered, person, carbon_z)
+    rest_source = next((one for one in ordered if one.paco2_mmhg is not None and not one.challenge), None)
+    rest_pco2 = _rest_pco2(rest_source, person, carbon_z)
     body = _body(ordered, person)
     curve = SaturationCurve(body.haemoglobin_g_dl, body.base_excess_mmol_l)
     told = np.zeros((draws, LOG_SDS.size))
@@ -124,8 +126,8 @@ def fit_lung(readings: Sequence[LungReading], person: Person, *, draws: int = 10
             fall_mmhg = base.inspired_po2_mmhg - reading.inspired_po2_mmhg
             po2 = po2 - diffusion.diffusion_fall_mmhg(capacity, np.array(fall_mmhg))[:, None]
         told += log_likelihood(reading, person, po2, pco2, curve)
-        if reading is not base and reading.paco2_mmhg is not None:
-            told -= (0.5 * ((pco2 - reading.paco2_mmhg) / (2.0 * paco2_sd_mmhg(reading))) ** 2)[:, None]
+        if reading is not rest_source and reading.paco2_mmhg is not None:
+            told -= (0.5 * ((pco2 - reading.paco2_mmhg) / (PACO2_BETWEEN * paco2_sd_mmhg(reading))) ** 2)[:, None]
     best = told.max()
     if best < -0.5 * UNLIKELY_SD**2 * len(ordered):
         raise InputError("readings", _unexplained(ordered))
@@ -265,12 +267,10 @@ def _spread_mmhg(fitted: FittedLung, condition: Condition) -> float:
     return float(high - low)
 
 
-def _rest_pco2(ordered: Sequence[LungReading], person: Person, z: Array) -> Array:
-    """Arterial PCO2 at rest: as measured with the base reading or another on the ground, else the usual range."""
-    measured = [one for one in ordered if one.paco2_mmhg is not None and not one.challenge]
-    if measured:
-        assert measured[0].paco2_mmhg is not None
-        return np.clip(measured[0].paco2_mmhg + paco2_sd_mmhg(measured[0]) * z, 12.0, 115.0)
+def _rest_pco2(source: LungReading | None, person: Person, z: Array) -> Array:
+    """Arterial PCO2 at rest: as measured on the ground, else the usual range."""
+    if source is not None and source.paco2_mmhg is not None:
+        return np.clip(source.paco2_mmhg + paco2_sd_mmhg(source) * z, 12.0, 115.0)
     mean, sd = PACO2_PRIOR_MMHG if person.can_hyperventilate else PACO2_BOUNDED_PRIOR_MMHG
     return np.clip(mean + sd * z, 20.0, 115.0)
 

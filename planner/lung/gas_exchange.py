@@ -49,7 +49,7 @@ BELOW_RANGE = (
 )
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Exchange:
     """What the lung gives, one entry a sample. Where below_range, the numbers are NaN and must not be used."""
 

@@ -35,8 +35,8 @@ def po2_over_log_sd(reading: LungReading, fio2: Array, pco2_mmhg: Array, shunt: 
     if np.isnan(content).any():
         raise InputError(
             "readings",
-            f"Below model range: breathing {100 * reading.fio2:.3g} % oxygen at {reading.barometric_mmhg:.0f} mmHg with "
-            f"an arterial PCO2 up to {pco2_mmhg.max():.0f} mmHg leaves too little oxygen for any lung.",
+            f"Below model range: breathing {100 * reading.fio2:.3g} % oxygen at {reading.barometric_mmhg:.0f} mmHg "
+            f"with an arterial PCO2 up to {pco2_mmhg.max():.0f} mmHg leaves too little oxygen for any lung.",
         )
     weights = (
         lagrange(shunt, shunt_nodes)[:, :, None, None]

@@ -31,6 +31,7 @@ NOTABLE_CARBOXY = 0.03
 # Added SD: planning assumptions.
 STALE_DAYS = 42.0
 STALE_SD_MMHG, STALE_SD_SATURATION = 4.0, 0.015
+STALE_PCO2_SD_MMHG, UNSTABLE_PCO2_SD_MMHG, CHALLENGE_PCO2_SD_MMHG = 2.0, 3.0, 1.0
 UNSTABLE_SD_MMHG, UNSTABLE_SD_SATURATION = 6.0, 0.02
 # A short test by mask: the quotient runs high and masks leak; 0.90 instead of 0.82 is +2.8 mmHg. Planning assumption.
 CHALLENGE_SD_MMHG, CHALLENGE_SD_SATURATION = 2.0, 0.01
@@ -105,7 +106,10 @@ def pao2_sd_mmhg(reading: LungReading) -> float:
 
 def paco2_sd_mmhg(reading: LungReading) -> float:
     """SD of a measured PaCO2 around what it stands for."""
-    return _together([PACO2_SD_MMHG] + ([CAPILLARY_PCO2_SD_MMHG] if reading.sample == "capillary" else []))
+    parts = [PACO2_SD_MMHG]
+    if reading.sample == "capillary":
+        parts.append(CAPILLARY_PCO2_SD_MMHG)
+    return _together(parts + _state_parts(reading, STALE_PCO2_SD_MMHG, UNSTABLE_PCO2_SD_MMHG, CHALLENGE_PCO2_SD_MMHG))
 
 
 def spo2_sd(reading: LungReading, person: Person | None) -> float:

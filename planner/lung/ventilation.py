@@ -39,7 +39,7 @@ ACCLIMATISED_SPREAD = 0.3  # of the exponent, relative; planning assumption
 ACCLIMATISATION_H = 36.0  # time constant; planning assumption
 
 # Sleep: PaCO2 rises 3 to 5 mmHg and mixing worsens; textbook values, sized so that SpO2 falls by 5 points at altitude
-# (92 % at 490 m to 86 % at 2048 m in COPD asleep; Latshang TD et al., 2019, from memory).
+# (92 % at 490 m to 86 % at 2048 m in COPD asleep; Tan L et al., JAMA Netw Open 2020;3:e207940).
 SLEEP_RISE_MMHG = 4.0
 SLEEP_RISE_SPREAD_MMHG = 2.0
 SLEEP_LOG_SD_FACTOR = 1.1
@@ -47,10 +47,10 @@ SLEEP_LOG_SD_FACTOR = 1.1
 # Slow walking: 7 to 10 mL/kg/min of oxygen (from memory), about twice that of rest, without extra breathing.
 WALKING_UPTAKE_FACTOR = 2.2
 WALKING_OUTPUT_FACTOR = 1.45
-# What the measured falls go beyond that, mean and SD in mmHg. COPD 49.5 to 38.6 (Naughton MT et al., 1995), 51 to 41
-# (Kelly PT et al., Respirology 2009), 51.5 to 46.8 (Graham WG, Houston CS, JAMA 1978;240:1491); restrictive 6.5 to
-# 5.1 kPa at 20 W (Christensen CC et al., Monaldi Arch Chest Dis 2002, from memory): falls of 5 to 11, of which uptake
-# explains 2 to 4.
+# What the measured falls go beyond that, mean and SD in mmHg. COPD 49.5 to 38.6 (Naughton MT et al., Am J Respir Crit
+# Care Med 1995;152:1956), 51 to 41 (Kelly PT et al., Aviat Space Environ Med 2009;80:102), 51.5 to 46.8 (Graham WG,
+# Houston CS, JAMA 1978;240:1491); restrictive 6.5 to 5.1 kPa at 20 W (Christensen CC et al., Eur Respir J 2002;20:300):
+# falls of 5 to 11, of which uptake explains 2 to 4. Taken as the same at any altitude: planning assumption.
 WALKING_EXTRA_MMHG = (5.0, 3.0)
 WALKING_EXTRA_INTERSTITIAL_MMHG = (6.0, 4.0)
 
