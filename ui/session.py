@@ -46,6 +46,7 @@ class Session(EventDispatcher):
         self._last_edit = ("", 0.0)
         self._saver = saver
         self._save_due: Any = None
+        self._laid_out: tuple[Any, Any] = (None, None)
         self._worker = PlanWorker(planner, self._planned) if planner is not None else None
 
     # -- opening and closing
@@ -81,6 +82,16 @@ class Session(EventDispatcher):
     def shown_plan(self) -> Any:
         """The plan of this very case, or None while it is being worked out."""
         return None if self.stale else self.plan
+
+    @property
+    def timeline(self) -> Any:
+        """The trip in time and air of the case as it is now (planner.trip.itinerary.Timeline); never stale."""
+        rests_on = (self.case.trip, self.case.policy)
+        if self._laid_out[0] != rests_on:
+            from planner.trip.itinerary import lay_out
+
+            self._laid_out = (rests_on, lay_out(*rests_on))
+        return self._laid_out[1]
 
     # -- editing
 
