@@ -1,0 +1,1 @@
+"""What is kept and exchanged: case files, the store of versions, secrecy, exchange."""
