@@ -5,7 +5,7 @@ A flow is never shown without its device, and the setting of a pulse device is n
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from math import isfinite
 from typing import Any, Literal, cast, get_args
@@ -23,6 +23,7 @@ Meter = Literal["mass", "gauge_orifice", "open_tube", "ambient_volume"]
 
 ACTIVITIES: tuple[Activity, ...] = get_args(Activity)
 PART_KINDS = ("home", "wait", "road", "rail", "ship", "walk", "flight", "layover", "stay")
+USUAL_IDS = ("cannula", "airline", "pulse_conserver", "pulse_concentrator")
 LEAST_FLOW_L_MIN, MOST_FLOW_L_MIN = 0.1, 15.0
 MOST_SETTING = 10.0
 MOST_BOLUS_ML = 200.0
@@ -73,6 +74,12 @@ class Device:
 def load_devices() -> dict[str, Device]:
     """Every device by id: the packaged classes, then the service's own. Raises ProfileError for a faulty entry."""
     return {device_id: read_device(row) for device_id, row in read_entries(PROFILE).items()}
+
+
+def shortlist(devices: Mapping[str, Device], used_ids: Iterable[str] = ()) -> tuple[Device, ...]:
+    """Devices worth trying, in the order of preference: those used or decided already, then the usual ones."""
+    wanted = dict.fromkeys((*used_ids, *USUAL_IDS))
+    return tuple(devices[device_id] for device_id in wanted if device_id in devices)
 
 
 def require_amount(device: Device, amount: float) -> None:

@@ -2,7 +2,7 @@
 
 import pytest
 
-from planner.delivery.devices import load_devices, read_device, refusal, require_allowed, require_amount
+from planner.delivery.devices import load_devices, read_device, refusal, require_allowed, require_amount, shortlist
 from planner.errors import InputError, ProfileError
 
 PULSE = {
@@ -36,6 +36,13 @@ def test_a_device_names_its_amount_with_the_device():
     devices = load_devices()
     assert devices["cannula"].amount_text(2.0) == "2 L/min by nasal cannula"
     assert devices["pulse_conserver"].amount_text(3.0) == "setting 3 by pulse device on a cylinder, fixed bolus"
+
+
+def test_the_shortlist_starts_with_what_is_used_at_home_and_names_each_device_once():
+    devices = load_devices()
+    ids = [device.id for device in shortlist(devices, ["venturi_24", "cannula", "gone"])]
+    assert ids == ["venturi_24", "cannula", "airline", "pulse_conserver", "pulse_concentrator"]
+    assert shortlist(devices)[0].id == "cannula"
 
 
 def test_a_pulse_device_is_not_used_asleep_and_the_reason_is_said():
