@@ -1,0 +1,165 @@
+"""What happened after the trip beside what was predicted, over a service's own cases. Few cases prove little."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+from dataclasses import dataclass, field
+from pathlib import Path
+
+from planner import Case, plan
+from planner.batch.agreement import Agreement, Pair, agreement, widened
+from planner.batch.lines import read_lines
+from planner.case.confirmation import PartOutcome
+from planner.errors import PlannerError
+from planner.records.reading import read_case
+from planner.results import PartPlan
+
+OXIMETER_SD_PERCENT = 2.0  # as most pulse oximeters reach (from memory); ISO 80601-2-61 allows A_rms 4 points
+ENOUGH_PAIRS = 30
+
+
+@dataclass(frozen=True)
+class BadLine:
+    """A line that holds no case, and why."""
+
+    number: int
+    reason: str
+
+
+@dataclass
+class Outcomes:
+    """Predicted and measured of all cases that have an outcome."""
+
+    cases: int = 0
+    without_outcome: int = 0
+    bad: list[BadLine] = field(default_factory=list)
+    on_air: list[Pair] = field(default_factory=list)
+    on_oxygen: list[Pair] = field(default_factory=list)
+    not_comparable: int = 0
+    ran_out: int = 0
+    ran_out_foreseen: int = 0
+    lasted: int = 0
+    lasted_but_feared: int = 0
+    symptoms: int = 0
+    late_min: list[float] = field(default_factory=list)
+
+
+def outcomes_report(cases: Iterable[Case | BadLine]) -> str:
+    """The report as text: agreement of SpO2 on air and on oxygen, run-outs, symptoms, delays, and the warning."""
+    return report_text(gather_outcomes(cases))
+
+
+def read_cases(path: Path) -> Iterator[Case | BadLine]:
+    """The cases of a file with one JSON case a line, streamed; a line that cannot be read is a BadLine."""
+    for line in read_lines(path):
+        if line.text is None:
+            yield BadLine(line.number, "The line is longer than a case may be.")
+            continue
+        try:
+            yield read_case(line.text)
+        except PlannerError as error:
+            yield BadLine(line.number, str(error))
+
+
+def gather_outcomes(cases: Iterable[Case | BadLine]) -> Outcomes:
+    """Plan every case that has an outcome, and set what was predicted beside what was measured."""
+    found = Outcomes()
+    for case in cases:
+        if isinstance(case, BadLine):
+            found.bad.append(case)
+        elif case.outcome is None or not case.outcome.parts:
+            found.without_outcome += 1
+        else:
+            _add(found, case)
+    return found
+
+
+def report_text(found: Outcomes) -> str:
+    """The report as plain text, whole sentences and a unit beside every number."""
+    lines = [
+        "Predicted against measured, own cases. Estimate only. Confirm with prescriber.",
+        f"{found.cases} cases with an outcome; {found.without_outcome} without one were left out.",
+    ]
+    lines += [f"Line {one.number} was left out: {one.reason}" for one in found.bad]
+    lines.append("")
+    lines += _agreement_lines("Usual SpO2 on air", agreement(found.on_air))
+    lines += _agreement_lines("Usual SpO2 on the decided oxygen", agreement(found.on_oxygen))
+    if found.not_comparable:
+        lines.append(f"{found.not_comparable} recorded parts have no SpO2 or no prediction to set beside it.")
+    lines.append(
+        f"Run-outs: {found.ran_out} recorded, {found.ran_out_foreseen} of them foreseen as more likely than accepted. "
+        f"In {found.lasted} parts the oxygen lasted; in {found.lasted_but_feared} of them a run-out had been foreseen."
+    )
+    lines.append(f"Symptoms were recorded in {found.symptoms} parts.")
+    if found.late_min:
+        ordered = sorted(found.late_min)
+        lines.append(
+            f"Delays were recorded in {len(ordered)} parts: median {ordered[len(ordered) // 2]:.0f} min, "
+            f"longest {ordered[-1]:.0f} min."
+        )
+    lines.append("")
+    pairs = len(found.on_air) + len(found.on_oxygen)
+    if pairs < ENOUGH_PAIRS:
+        lines.append(
+            f"Few cases prove little: {pairs} comparisons are fewer than the {ENOUGH_PAIRS} that begin to tell."
+        )
+    lines.append("Recorded outcomes are a chosen few: those who did badly or well are recorded more often.")
+    return "\n".join(lines)
+
+
+def _add(found: Outcomes, case: Case) -> None:
+    assert case.outcome is not None
+    found.cases += 1
+    result = plan(case)
+    by_id = {part.span.part_id: part for part in result.parts}
+    for recorded in case.outcome.parts:
+        part = by_id.get(recorded.part_id)
+        pair = None if part is None else _spo2_pair(part, recorded)
+        if pair is None:
+            found.not_comparable += 1
+        elif recorded.on_oxygen:
+            found.on_oxygen.append(pair)
+        else:
+            found.on_air.append(pair)
+        found.symptoms += bool(recorded.symptoms.strip())
+        if recorded.late_min is not None:
+            found.late_min.append(recorded.late_min)
+
+
+def _spo2_pair(part: PartPlan, recorded: PartOutcome) -> Pair | None:
+    """Usual SpO2 of a part against the prediction for the activity most of it was spent in, in per cent."""
+    if recorded.usual_spo2_percent is None or recorded.on_oxygen is None:
+        return None
+    activity = max(part.span.shares, key=lambda one: part.span.shares[one])
+    if recorded.on_oxygen:
+        expected = next((one.expected for one in part.decided if one.activity == activity), None)
+        if expected is None:
+            return None
+        band = (expected.spo2_median, expected.spo2_low, expected.spo2_high)
+    else:
+        activities = part.forecast.activities if part.forecast is not None else ()
+        forecast = next((one for one in activities if one.activity == activity), None)
+        if forecast is None or forecast.spo2_median is None or forecast.spo2_low is None or forecast.spo2_high is None:
+            return None
+        band = (forecast.spo2_median, forecast.spo2_low, forecast.spo2_high)
+    median, low, high = (100.0 * one for one in band)
+    return Pair(median, *widened(median, low, high, OXIMETER_SD_PERCENT), recorded.usual_spo2_percent)
+
+
+def _agreement_lines(title: str, found: Agreement) -> list[str]:
+    if found.bias is None or found.share_inside is None:
+        return [f"{title}: no comparison."]
+    said = [
+        f"{title}: {found.count} comparisons.",
+        f"  Bias (predicted less measured): {found.bias:+.1f} points.",
+    ]
+    if found.lower_limit is not None and found.upper_limit is not None:
+        said.append(f"  Limits of agreement (95 %): {found.lower_limit:+.1f} to {found.upper_limit:+.1f} points.")
+    else:
+        said.append("  Limits of agreement: too few comparisons.")
+    said.append(
+        f"  Inside the 90 % band, oximeter error included: {found.inside} of {found.count}, "
+        f"{100 * found.share_inside:.0f} % (95 % interval {100 * (found.inside_low or 0.0):.0f} to "
+        f"{100 * (found.inside_high or 0.0):.0f} %)."
+    )
+    return said
