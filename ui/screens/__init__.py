@@ -34,7 +34,10 @@ class Step(NamedTuple):
     where: str
 
 
-STEPS = (Step("patient", "Patient", "ui.screens.patient:PatientScreen"),)
+STEPS = (
+    Step("patient", "Patient", "ui.screens.patient:PatientScreen"),
+    Step("trip", "Trip", "ui.screens.trip:TripScreen"),
+)
 PAGES = (Step("display", "Display", "ui.screens.display:DisplayScreen"),)  # reached from elsewhere than the bar
 
 

@@ -1,4 +1,4 @@
-"""The trip ribbon of the open case, the same on every step; a step gives the layer it lays on it and the words it adds."""
+"""The trip ribbon of the open case, the same on every step; a step gives its layer and the words it adds."""
 
 from __future__ import annotations
 
@@ -38,7 +38,7 @@ class RibbonOfTrip(RibbonView):
         *,
         layer: Callable[[], Layer | None] | None = None,
         tell: Callable[[Reading], str] | None = None,
-        height_sp: float = 156,
+        height_sp: float = 190,
     ) -> None:
         super().__init__(self._keep_minute, height_sp=height_sp)
         self.session, self.layer, self.tell = session, layer, tell

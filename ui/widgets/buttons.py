@@ -75,7 +75,8 @@ class PlainButton(ButtonBehavior, Reachable, Label):  # type: ignore[misc]
         tone = theme.colour(self.tone)
         down = self.state == "down"
         if self.disabled:
-            self._ground.rgba, self._edge.rgba, self.disabled_color = (0, 0, 0, 0), theme.line, theme.muted
+            self._ground.rgba, self.disabled_color = (0, 0, 0, 0), theme.muted
+            self._edge.rgba = theme.line if self.outlined else (0, 0, 0, 0)
         elif self.filled:
             self._ground.rgba = (*tone[:3], 0.82 if down else 1.0)
             self._edge.rgba = (0, 0, 0, 0)

@@ -160,25 +160,35 @@ class RibbonPlot(Reachable, Widget):  # type: ignore[misc]
         self.zoom = min(MOST_ZOOM, max(1.0, self.zoom * factor))
 
 
-class RibbonView(BoxLayout):
-    """Ribbon with its line of reading above and its zoom below. `show(lay, tell, minute)`; `on_minute(minute)`."""
+class SteadyText(Text):
+    """Keeps the height it once needed at this width, so that what is under it stands still while a finger drags."""
 
-    def __init__(self, on_minute: Callable[[float], None] | None = None, *, height_sp: float = 150) -> None:
-        super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(1))
+    def _wrap(self, *arguments: Any) -> None:
+        self._most = 0.0
+        super()._wrap(*arguments)
+
+    def _grow(self, *_: Any) -> None:
+        self._most = max(self._most, self.texture_size[1])
+        self.height = self._most
+
+
+class RibbonView(BoxLayout):
+    """Ribbon with its line of reading and its zoom above it. `show(lay, tell, minute)`; `on_minute(minute)`."""
+
+    def __init__(self, on_minute: Callable[[float], None] | None = None, *, height_sp: float = 190) -> None:
+        super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(2))
         self._tell: Tell | None = None
         self._on_minute = on_minute
-        self.reading = Text("", role="body")
+        self.reading = SteadyText("", role="body", pos_hint={"top": 1}, valign="top")
         self.plot = RibbonPlot(self._moved, size_hint_y=None, height=sp(height_sp))
-        self.add_widget(self.reading)
+        top = BoxLayout(size_hint_y=None, height=0)
+        self._less = QuietButton("−", lambda: self.plot.zoom_by(1 / 1.5), role="lead", pos_hint={"top": 1})
+        self._more = QuietButton("+", lambda: self.plot.zoom_by(1.5), role="lead", pos_hint={"top": 1})
+        for widget in (self.reading, self._less, self._more):
+            top.add_widget(widget)
+        top.bind(minimum_height=top.setter("height"))
+        self.add_widget(top)
         self.add_widget(self.plot)
-        self._buttons = BoxLayout(size_hint_y=None, height=0, spacing=space(1))
-        self._hint = Text("Drag along it to read a moment.", role="small", tone="muted", pos_hint={"center_y": 0.5})
-        self._less = QuietButton("−", lambda: self.plot.zoom_by(1 / 1.5), pos_hint={"center_y": 0.5})
-        self._more = QuietButton("+", lambda: self.plot.zoom_by(1.5), pos_hint={"center_y": 0.5})
-        for widget in (self._hint, self._less, self._more):
-            self._buttons.add_widget(widget)
-        self._buttons.bind(minimum_height=self._buttons.setter("height"))
-        self.add_widget(self._buttons)
         self.bind(minimum_height=self.setter("height"))
         self.plot.bind(zoom=self._zoomed)
         self._zoomed()

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable
-from datetime import date
+from datetime import date, time
 from typing import Any
 
 from kivy.core.window import Window
@@ -17,6 +17,9 @@ from ui.widgets.reach import keyboard_in_use, scroll_into_view
 
 _PARTIAL_NUMBER = re.compile(r"-?[0-9]{0,6}([.][0-9]{0,4})?")
 _WHOLE_NUMBER = re.compile(r"-?[0-9]+([.][0-9]*)?|-?[.][0-9]+")
+_DURATION = re.compile(
+    r"(?:(\d+(?:[.]\d*)?) ?d(?:ays?)?)? ?(?:(\d+(?:[.]\d*)?) ?h(?:ours?)?)? ?(?:(\d+(?:[.]\d*)?) ?(?:m|min|minutes)?)?"
+)
 _MONTHS = ["jan", "feb", "mar", "apr", "may", "jun", "jul", "aug", "sep", "oct", "nov", "dec"]
 
 
@@ -131,6 +134,33 @@ def parse_date(text: str, today: Callable[[], date] = date.today) -> date | None
         return date(year, month, day)
     except ValueError:
         raise ValueError(f"{text.strip()} is not a day of the calendar.") from None
+
+
+def parse_duration(text: str) -> float | None:
+    """Minutes from 3 h 20, 3:20, 3.5 h, 45 min, 4 d, 1 d 6 h; a bare number is hours. None when empty."""
+    trimmed = text.strip().lower().replace(",", ".")
+    if not trimmed:
+        return None
+    if match := re.fullmatch(r"(\d{1,4}):([0-5]\d)", trimmed):
+        return int(match[1]) * 60.0 + int(match[2])
+    if re.fullmatch(r"\d+([.]\d*)?", trimmed):
+        return float(trimmed) * 60.0
+    found = re.fullmatch(_DURATION, trimmed)
+    if not found or not any(found.groups()):
+        raise ValueError("Write hours and minutes, for example 3 h 20, 45 min or 4 d.")
+    days, hours, minutes = (float(group) if group else 0.0 for group in found.groups())
+    return days * 1440.0 + hours * 60.0 + minutes
+
+
+def parse_time(text: str) -> time | None:
+    """A time of day from 7:30, 07.30, 0730 or 7; None when empty."""
+    trimmed = text.strip()
+    if not trimmed:
+        return None
+    match = re.fullmatch(r"(\d{1,2})(?:[:. ]?(\d{2}))?", trimmed)
+    if match is None or int(match[1]) > 23 or int(match[2] or 0) > 59:
+        raise ValueError("Write hours and minutes of the day, for example 7:30.")
+    return time(int(match[1]), int(match[2] or 0))
 
 
 def date_text(value: date) -> str:
