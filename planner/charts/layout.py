@@ -30,6 +30,7 @@ Role = Literal[
 Anchor = Literal["left", "middle", "right"]
 Dash = Literal["solid", "dashed", "dotted"]
 Shape = Literal["dot", "ring", "diamond", "cross"]
+STRAIGHT = 1e-3  # square units of the drawing; a bend smaller than this cannot be seen
 Measure = Callable[[str, float], float]
 """Width of a text at a font size."""
 
@@ -156,6 +157,20 @@ def finite_runs(*arrays: Array) -> list[slice]:
     good = np.logical_and.reduce([np.isfinite(array) for array in arrays])
     edges = np.flatnonzero(np.diff(np.concatenate([[0], good.astype(np.int8), [0]])))
     return [slice(int(a), int(b)) for a, b in zip(edges[::2], edges[1::2], strict=True) if b - a >= 2]
+
+
+def without_straight_points(x: Array, *curves: Array) -> NDArray[np.intp]:
+    """Indices of the points that a drawing needs: those within a straight stretch of every curve are left out."""
+    if len(x) < 3:
+        return np.arange(len(x))
+    needed = np.ones(len(x), dtype=bool)
+    bends = []
+    for y in curves:
+        before, after = np.diff(x)[:-1], np.diff(x)[1:]
+        rise, next_rise = np.diff(y)[:-1], np.diff(y)[1:]
+        bends.append(np.abs(before * next_rise - after * rise) > STRAIGHT)
+    needed[1:-1] = np.logical_or.reduce(bends)
+    return np.flatnonzero(needed)
 
 
 def wrap(text: str, size: float, width: float, measure: Measure) -> list[str]:

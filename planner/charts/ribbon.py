@@ -29,6 +29,7 @@ from planner.charts.layout import (
     fitting,
     nice_ticks,
     rule,
+    without_straight_points,
 )
 from planner.charts.timescale import LONG_MIN, TimeScale, time_scale
 
@@ -219,7 +220,7 @@ def _ticks(layer: Layer, axis: Axis) -> list[tuple[float, str]]:
 
 def _silhouette(scale: TimeScale, minutes: Array, altitude_m: Array, axis: Axis) -> list[Item]:
     x, y = scale.of(minutes), axis.of(altitude_m)
-    return [Band(x[run], np.full(run.stop - run.start, axis.start), y[run], "silhouette") for run in finite_runs(y)]
+    return [_band(x[run], np.full(run.stop - run.start, axis.start), y[run], "silhouette") for run in finite_runs(y)]
 
 
 def _unknown(
@@ -250,7 +251,7 @@ def _heights(
     last_right = -np.inf
     for part in parts:
         end = part.start_min + part.duration_min
-        inside = altitude_m[(minutes >= part.start_min) & (minutes <= end)]
+        inside = altitude_m[(minutes > part.start_min) & (minutes < end)]
         if not np.isfinite(inside).any():
             continue
         peak = float(np.nanmax(inside))
@@ -272,7 +273,7 @@ def _layer(
     x = scale.of(layer.minutes)
     if layer.low is not None and layer.high is not None:
         low, high = axis.of(layer.low), axis.of(layer.high)
-        items += [Band(x[run], low[run], high[run], "data_soft") for run in finite_runs(low, high)]
+        items += [_band(x[run], low[run], high[run], "data_soft") for run in finite_runs(low, high)]
     if layer.stress is not None:
         items += _line(x, axis.of(layer.stress), layer.stepped, right, "stop", 1.4, "dotted")
     items += _line(x, axis.of(layer.median), layer.stepped, right, "data", 1.8)
@@ -288,7 +289,13 @@ def _layer(
 def _line(x: Array, y: Array, stepped: bool, end: float, role: Role, width: float, dash: Dash = "solid") -> list[Item]:
     if stepped:
         x, y = np.append(np.repeat(x, 2)[1:], end), np.repeat(y, 2)
-    return [Polyline(np.column_stack([x[run], y[run]]), role, width, dash) for run in finite_runs(y)]
+    points = [np.column_stack([x[run], y[run]]) for run in finite_runs(y)]
+    return [Polyline(p[without_straight_points(p[:, 0], p[:, 1])], role, width, dash) for p in points]
+
+
+def _band(x: Array, low: Array, high: Array, role: Role) -> Band:
+    keep = without_straight_points(x, low, high)
+    return Band(x[keep], low[keep], high[keep], role)
 
 
 def _part_axis(

@@ -89,9 +89,9 @@ class Flow:
         self.gap(self.size * 0.4)
 
     def heading(self, text: str, *, with_height: float = 0.0) -> None:
-        """A section heading, kept together with at least three lines, or this height, of what follows."""
+        """A section heading, kept together with at least six lines, or this height, of what follows."""
         size = self.size * 1.25
-        self.keep(size * 3.0 + max(with_height, 3 * self.size * LEADING))
+        self.keep(size * 3.0 + max(with_height, 6 * self.size * LEADING))
         self.gap(size * 0.9)
         self._runs([(text, True)], size, "ink")
         self.gap(size * 0.25)

@@ -45,13 +45,12 @@ class Quantities:
         mm = f"{self.texts.number(mmhg, 0)} mmHg"
         return f"{kpa} ({mm})" if self.display.pressure == "kPa" else f"{mm} ({kpa})"
 
-    def pressure_range(self, low: float | None, high: float | None) -> str:
-        """Such as "5.8 to 7.5 kPa"."""
+    def pressure_spread(self, value: float, low: float | None, high: float | None) -> str:
+        """Such as "6.6 kPa (5.8 to 7.5)"."""
         if low is None or high is None:
-            return self.unknown
-        return self.texts.say(
-            "numbers.range", low=self.pressure_number(low), high=self.pressure_number(high), unit=self.display.pressure
-        )
+            return self.pressure(value)
+        ends = {"low": self.pressure_number(low), "high": self.pressure_number(high)}
+        return self.texts.say("numbers.spread", value=self.pressure(value), **ends)
 
     def altitude(self, m: float) -> str:
         """Such as "8,000 ft"."""
@@ -93,12 +92,12 @@ class Quantities:
         """A saturation fraction as a percentage."""
         return self.percent(fraction * PERCENT)
 
-    def saturation_range(self, low: float | None, high: float | None) -> str:
-        """Such as "79 to 90 %"."""
+    def saturation_spread(self, value: float, low: float | None, high: float | None) -> str:
+        """Such as "85 % (79 to 90)", from fractions."""
         if low is None or high is None:
-            return self.unknown
-        numbers = {"low": self.texts.number(low * PERCENT), "high": self.texts.number(high * PERCENT)}
-        return self.texts.say("numbers.range", unit="%", **numbers)
+            return self.saturation(value)
+        ends = {"low": self.texts.number(low * PERCENT), "high": self.texts.number(high * PERCENT)}
+        return self.texts.say("numbers.spread", value=self.saturation(value), **ends)
 
     def chance(self, share: float) -> str:
         """A probability as "3 in 10", "1 in 70", or less or more than what can be told."""

@@ -3,7 +3,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from planner.charts.layout import Axis, Band, finite_runs, fitting, nice_ticks, wrap
+from planner.charts.layout import Axis, Band, finite_runs, fitting, nice_ticks, without_straight_points, wrap
 
 
 def measure(text, size):
@@ -55,3 +55,16 @@ def test_an_axis_maps_its_ends_and_keeps_readings_within():
 def test_a_band_outline_runs_along_the_low_side_and_back_along_the_high_side():
     band = Band(np.array([0.0, 1.0]), np.array([2.0, 3.0]), np.array([4.0, 5.0]), "data_soft")
     assert band.outline().tolist() == [[0, 2], [1, 3], [1, 5], [0, 4]]
+
+
+def test_points_within_straight_stretches_go_and_the_line_stays_the_same():
+    x = np.linspace(0.0, 100.0, 101)
+    y = np.interp(x, [0.0, 30.0, 60.0, 100.0], [0.0, 50.0, 50.0, 5.0])
+    kept = without_straight_points(x, y)
+    assert kept.tolist() == [0, 30, 60, 100]
+    assert np.allclose(np.interp(x, x[kept], y[kept]), y)
+
+
+def test_an_upright_step_keeps_both_its_ends():
+    x, y = np.array([0.0, 1.0, 1.0, 2.0]), np.array([5.0, 5.0, 9.0, 9.0])
+    assert without_straight_points(x, y).tolist() == [0, 1, 2, 3]
