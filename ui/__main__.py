@@ -35,7 +35,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
     if chosen.pictures is not None:
         from ui.pictures import write_pictures
 
-        return write_pictures(chosen.pictures, data_folder)
+        return write_pictures(chosen.pictures)
     from ui.app import PlannerApp
 
     PlannerApp(data_folder=data_folder, case_file=chosen.case, demo=chosen.demo).run()
@@ -50,7 +50,9 @@ def _parser() -> argparse.ArgumentParser:
     parser.add_argument("case", nargs="?", type=Path, metavar="CASE.json", help="a case file to import and open")
     parser.add_argument("--demo", action="store_true", help="open on the demo case")
     parser.add_argument("--data", type=Path, metavar="FOLDER", help="where cases are kept (default: your data folder)")
-    parser.add_argument("--pictures", type=Path, metavar="FOLDER", help="write a picture of each screen of the demo case")
+    parser.add_argument(
+        "--pictures", type=Path, metavar="FOLDER", help="write a picture of each screen of the demo case"
+    )
     return parser
 
 

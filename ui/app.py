@@ -61,7 +61,8 @@ class PlannerApp(App):  # type: ignore[misc]
         from ui.session import Session
 
         self.library = Library(self.data_folder)
-        self.session = Session(planner=self._planner(), saver=self.library.save)
+        planner, memory = self._planner()
+        self.session = Session(planner=planner, memory=memory, saver=self.library.save)
         gc.freeze()  # what is imported stays; the collector need not walk it while a finger drags
         self.show_cases()
         if self.case_file is not None:
@@ -69,12 +70,12 @@ class PlannerApp(App):  # type: ignore[misc]
         elif self.demo:
             self.cases.open_demo()
 
-    def _planner(self) -> Any:
+    def _planner(self) -> tuple[Any, Any]:
         if self.planner != "planner.plan":
-            return self.planner
-        from planner import plan
+            return self.planner, None
+        from planner.planning import StageMemory, plan
 
-        return plan
+        return plan, StageMemory()
 
     # -- what is shown
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import tempfile
 from collections.abc import Callable
 from pathlib import Path
 from typing import Any
@@ -53,13 +54,14 @@ class _Pictures:
         self.written.append(path)
 
 
-def write_pictures(folder: Path, data_folder: Path) -> int:
-    """Write the pictures; exit status 0."""
+def write_pictures(folder: Path) -> int:
+    """Write the pictures, of a case list that is thrown away; exit status 0."""
     folder.mkdir(parents=True, exist_ok=True)
-    app: Any = PlannerApp(data_folder=data_folder, keep=False)
-    pictures = _Pictures(app, folder)
-    app.bind(on_start=lambda _app: Clock.schedule_once(pictures.begin, 0.5))
-    app.run()
+    with tempfile.TemporaryDirectory() as kept:
+        app: Any = PlannerApp(data_folder=Path(kept))
+        pictures = _Pictures(app, folder)
+        app.bind(on_start=lambda _app: Clock.schedule_once(pictures.begin, 0.5))
+        app.run()
     for path in pictures.written:
         print(path)
     return 0

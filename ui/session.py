@@ -35,7 +35,12 @@ class Session(EventDispatcher):
     said = StringProperty("")  # the last thing the app has to say: undone, saved, could not be saved
 
     def __init__(
-        self, *, planner: Planner | None = None, saver: Callable[[str, Case], None] | None = None, **keywords: Any
+        self,
+        *,
+        planner: Planner | None = None,
+        memory: Any = None,
+        saver: Callable[[str, Case], None] | None = None,
+        **keywords: Any,
     ) -> None:
         super().__init__(**keywords)
         self.case_id = ""
@@ -47,7 +52,7 @@ class Session(EventDispatcher):
         self._saver = saver
         self._save_due: Any = None
         self._laid_out: tuple[Any, Any] = (None, None)
-        self._worker = PlanWorker(planner, self._planned) if planner is not None else None
+        self._worker = PlanWorker(planner, self._planned, memory) if planner is not None else None
 
     # -- opening and closing
 

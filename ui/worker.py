@@ -15,9 +15,9 @@ Deliver = Callable[[Any, Any, str, str], None]  # case, plan or None, what is be
 class PlanWorker:
     """One thread that answers the last case asked for: first through titration, then with the kit."""
 
-    def __init__(self, planner: Planner, deliver: Deliver) -> None:
+    def __init__(self, planner: Planner, deliver: Deliver, memory: Any = None) -> None:
         self._planner, self._deliver = planner, deliver
-        self._memory: Any = None
+        self._memory = memory  # of the stages; only the thread touches it
         self._wanted: Any = None
         self._turn = 0
         self._changed = threading.Condition()
@@ -40,9 +40,6 @@ class PlanWorker:
             self._turn += 1
 
     def _run(self) -> None:
-        from planner.planning import StageMemory
-
-        self._memory = StageMemory()
         while True:
             with self._changed:
                 while self._wanted is None:

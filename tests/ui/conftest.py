@@ -20,3 +20,69 @@ from kivy.config import Config  # noqa: E402
 Config.set("graphics", "width", "1280")
 Config.set("graphics", "height", "1280")
 Config.set("graphics", "maxfps", "0")  # no sleeping between frames
+
+import pytest  # noqa: E402
+
+
+@pytest.fixture
+def opened(tmp_path):
+    """Opens the app: opened(size, font_scale, planner=...) gives its driver; closed afterwards."""
+    from tests.ui.driver import Driver
+    from ui.app import PlannerApp
+
+    drivers = []
+
+    def open_app(size=(390, 844), font_scale=1.0, **keywords):
+        keywords.setdefault("planner", None)
+        driver = Driver(PlannerApp(data_folder=tmp_path / "data", **keywords), size, font_scale)
+        drivers.append(driver)
+        return driver
+
+    yield open_app
+    for driver in drivers:
+        driver.close()
+
+
+@pytest.fixture
+def demo(opened):
+    """The demo case open on its first step."""
+    driver = opened()
+    driver.app.cases.open_demo()
+    driver.frames(6)
+    return driver
+
+
+@pytest.fixture
+def new_case(opened):
+    """An empty case open on its first step."""
+    driver = opened()
+    driver.tap("New case")
+    return driver
+
+
+@pytest.fixture
+def bench():
+    """Shows one widget alone: bench(widget) gives a driver."""
+    from kivy.app import App
+    from kivy.uix.boxlayout import BoxLayout
+
+    from tests.ui.driver import Driver
+    from ui.theme import theme
+    from ui.widgets.notices import paint_ground
+
+    drivers = []
+
+    def show(widget, size=(390, 844), font_scale=1.0):
+        class Bench(App):
+            def build(self):
+                root = BoxLayout(orientation="vertical", padding=20)
+                paint_ground(root, theme.ground)
+                root.add_widget(widget)
+                return root
+
+        drivers.append(Driver(Bench(), size, font_scale))
+        return drivers[-1]
+
+    yield show
+    for driver in drivers:
+        driver.close()

@@ -25,8 +25,9 @@ _THOUSANDS = re.compile(r"-?[0-9]{1,3}[.][0-9]{3}")  # a comma typed as a thousa
 
 
 class Entry(BoxLayout):
-    """What all entries share: label, line, unit, hint, fault."""
+    """What all entries share: label, line, unit, hint, fault. Subclasses set `value` before."""
 
+    value: Any = None
     label = StringProperty()
     fault = StringProperty()
 
@@ -43,6 +44,8 @@ class Entry(BoxLayout):
         super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(0.5), label=label)
         self.input, self.on_value, self.on_fault = line, on_value, on_fault
         self._showing = False
+        self._begun_at: Any = self.value
+        self._held = ""  # said when the person leaves: it may be the beginning of something right
         self.add_widget(Text(label, role="label", tone="muted"))
         row = BoxLayout(size_hint_y=None, height=line.height, spacing=space(1))
         row.add_widget(line)
@@ -65,10 +68,15 @@ class Entry(BoxLayout):
 
     def _typed(self, _: Any, text: str) -> None:
         if not self._showing:
+            self._held = ""
             self._read(text)
 
     def _left(self, _: Any, focused: bool) -> None:
-        if not focused:
+        if focused:
+            self._begun_at = self.value
+        else:
+            if self._held:
+                self._say_fault(self._held)
             self.leave()
 
     def leave(self) -> None:
@@ -78,6 +86,7 @@ class Entry(BoxLayout):
         raise NotImplementedError
 
     def _accept(self, value: Any) -> None:
+        self.value = value
         self._say_fault("")
         if self.on_value is not None:
             self.on_value(value)
@@ -89,9 +98,27 @@ class Entry(BoxLayout):
         if self.on_fault is not None:
             self.on_fault(sentence)
 
+    def hold(self, sentence: str) -> None:
+        """Like refuse, but said only when the person leaves the line."""
+        self.refuse(sentence)
+        self._say_fault("")
+        if self.input.focus:
+            self._held = sentence
+        else:
+            self._say_fault(sentence)
+
+    def stands(self, value: Any) -> bool:
+        """True if what was typed wrongly is to stay for correction: nothing else came from elsewhere."""
+        return bool(self.fault or self._held) and value == self.value
+
     def refuse(self, sentence: str) -> None:
-        """Say why an accepted value was refused further on."""
+        """Say why what was typed is not taken. The value goes back to what it was before the person began to type:
+        the beginning of a wrong number is not a value."""
         self._say_fault(sentence)
+        if self.value != self._begun_at:
+            self.value = self._begun_at
+            if self.on_value is not None:
+                self.on_value(self.value)
 
     def _put(self, text: str) -> None:
         self._showing = True
@@ -130,13 +157,15 @@ class NumberEntry(Entry):
 
     def show(self, value: float | None) -> None:
         """Show a value that came from elsewhere; what is being typed and means the same is left alone."""
+        if self.stands(value):
+            return  # what was typed wrongly stays to be corrected
         self.value = value
         try:
             typed = parse_number(self.input.text)
         except ValueError:
             typed = None
         same = value is not None and typed is not None and abs(self.measure.stored(typed) - value) < 1e-9
-        if not same and not (value is None and (self.fault or not self.input.text)):
+        if not same and not (value is None and not self.input.text):
             self._put("" if value is None else self.measure.typed(value))
             self._say_fault("")
         self._say_hint()
@@ -161,24 +190,24 @@ class NumberEntry(Entry):
         try:
             number = parse_number(text)
         except ValueError as error:
-            self._say_fault(str(error))
+            self.hold(str(error))
             return
         if number is None:
-            self.value = None
             self._accept(None)
             return
         if self.measure.decimals == 0 and _THOUSANDS.fullmatch(text.strip()):
             whole = text.strip().replace(".", "")
-            self._say_fault(
+            self.refuse(
                 f"{text.strip()} could be {number:g} or {whole}. Write {whole} without a mark if that is meant."
             )
             return
         stored = self.measure.stored(number)
         if not self._allowed(stored):
-            self._say_fault(f"{self._range_text()} can be used here; {text.strip()} {self.measure.unit} was typed.")
+            sentence = f"{self._range_text()} can be used here; {text.strip()} {self.measure.unit} was typed."
+            begins = self.low is not None and 0 <= stored < self.low and self.measure.other is None
+            (self.hold if begins else self.refuse)(sentence)
             self._ask(number, inside=False)
             return
-        self.value = stored
         self._accept(stored)
         self._ask(number, inside=True)
         self._say_hint()
@@ -213,7 +242,6 @@ class NumberEntry(Entry):
 
     def _take_other(self, stored: float) -> None:
         self._drop_question()
-        self.value = stored
         self._put(self.measure.typed(stored))
         self._accept(stored)
         self._say_hint()
@@ -248,6 +276,8 @@ class DateEntry(Entry):
 
     def show(self, value: date | None) -> None:
         """Show a date that came from elsewhere."""
+        if self.stands(value):
+            return
         try:
             same = parse_date(self.input.text, self._today) == value
         except ValueError:
@@ -266,12 +296,11 @@ class DateEntry(Entry):
         try:
             value = parse_date(text, self._today)
         except ValueError as error:
-            self._say_fault(str(error))
+            self.hold(str(error))
             return
         if value is not None and self.latest is not None and value > self.latest:
-            self._say_fault(f"{date_text(value)} is after {date_text(self.latest)}, the latest that can be used here.")
+            self.refuse(f"{date_text(value)} is after {date_text(self.latest)}, the latest that can be used here.")
             return
-        self.value = value
         self._accept(value)
 
 
@@ -291,7 +320,6 @@ class TextEntry(Entry):
 
     def _read(self, text: str) -> None:
         if len(text) > self.longest:
-            self._say_fault(f"At most {self.longest} letters fit here; {len(text)} were typed.")
+            self.refuse(f"At most {self.longest} letters fit here; {len(text)} were typed.")
             return
-        self.value = text
         self._accept(text)

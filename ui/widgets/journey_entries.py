@@ -24,12 +24,14 @@ class DurationEntry(Entry):
 
     def show(self, value: float | None) -> None:
         """Show a length that came from elsewhere."""
+        if self.stands(value):
+            return
         try:
             same = parse_duration(self.input.text) == value
         except ValueError:
             same = False
         self.value = value
-        if not same and not (self.input.focus and self.fault):
+        if not same:
             self._put("" if value is None else hours_minutes(value))
             self._say_fault("")
 
@@ -42,12 +44,11 @@ class DurationEntry(Entry):
         try:
             value = parse_duration(text)
         except ValueError as error:
-            self._say_fault(str(error))
+            self.hold(str(error))
             return
         if value is None or not 0 < value <= self.high:
-            self._say_fault(f"A length above 0 and up to {hours_minutes(self.high)} can be used here.")
+            self.refuse(f"A length above 0 and up to {hours_minutes(self.high)} can be used here.")
             return
-        self.value = value
         self._accept(value)
 
 
@@ -61,6 +62,8 @@ class TimeEntry(Entry):
 
     def show(self, value: time | None) -> None:
         """Show a time that came from elsewhere."""
+        if self.stands(value):
+            return
         try:
             same = parse_time(self.input.text) == value
         except ValueError:
@@ -74,9 +77,8 @@ class TimeEntry(Entry):
         try:
             value = parse_time(text)
         except ValueError as error:
-            self._say_fault(str(error))
+            self.hold(str(error))
             return
-        self.value = value
         self._accept(value)
 
 
@@ -108,7 +110,6 @@ class SearchEntry(Entry):
     def _read(self, text: str) -> None:
         self.found.clear_widgets()
         if not text.strip():
-            self.value = None
             self._accept(None)
             return
         rows = self._search(text)
@@ -118,7 +119,6 @@ class SearchEntry(Entry):
 
     def _choose(self, key: str) -> None:
         self.found.clear_widgets()
-        self.value = key
         self.input.focus = False
         self._put(self._text_of(key))
         self._accept(key)

@@ -51,7 +51,7 @@ class Line(TextInput):  # type: ignore[misc]
         with self.canvas.after:
             self._colour = Color(*theme.ink)
             self._rule = Rectangle()
-        self.bind(pos=self._place, size=self._place, focus=self._on_focus, line_height=self._centre)
+        self.bind(pos=self._place, size=self._place, focus=self._focus_seen, line_height=self._centre)
         self._centre()
         self._place()
 
@@ -64,7 +64,7 @@ class Line(TextInput):  # type: ignore[misc]
         self._rule.pos, self._rule.size = self.pos, (self.width + self.unit_width, thick)
         self._colour.rgba = theme.stop if self.wrong else theme.data if self.focus else theme.ink
 
-    def _on_focus(self, _: Any, focused: bool) -> None:
+    def _focus_seen(self, _: Any, focused: bool) -> None:
         self._place()
         if focused and keyboard_in_use():
             scroll_into_view(self)
