@@ -1,0 +1,1 @@
+"""What guidelines say: pathways as data, cautions with intervals, the hypoxic challenge test."""
