@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from functools import cached_property
 
 import numpy as np
@@ -16,7 +16,7 @@ from planner.lung.alveolar import carbon_dioxide_factor
 from planner.lung.blood_shift import SaturationCurve
 from planner.lung.gas_exchange import HIGHEST_LOG_SD
 from planner.lung.reading import Activity, Person
-from planner.lung.response import AIR, RESPIRATORY_QUOTIENT, Body, Response
+from planner.lung.response import AIR, RESPIRATORY_QUOTIENT, Body, Response, SolvedLungs
 
 # The model's own error for one person, SD per fall of inspired PO2: with the other spreads it makes the residual SD
 # of 3.6 to 5 mmHg of published predictions from a ground gas (Edvardsen 2013, Kelly 2009, Dillard 1989).
@@ -25,7 +25,8 @@ REFERENCE_FALL_MMHG = ventilation.REFERENCE_FALL_MMHG
 ANCHORED_SHARE = 0.7  # of that error between and beyond two anchors, over the distance to the nearest; assumption
 
 MOST_DEPRESSION = 0.4
-HIGHEST_PCO2_MMHG = 120.0
+LOWEST_PCO2_MMHG, HIGHEST_PCO2_MMHG = 12.0, 120.0
+LOWEST_PCO2_SHARE, PCO2_MARGIN_MMHG = 0.6, 4.0  # how far from that at rest the tables reach
 LEAST_MMHG = 25.0  # an arterial PO2 below is "below model range"
 BLOCK = 125  # draws worked together; their arrays stay in the processor's cache
 WALKING_STRAIN = 2.0  # of the share that diffusion takes: 19 % of the gradient at rest, 40 % on exercise (Agusti 1991)
@@ -68,6 +69,7 @@ class FittedLung:
     base_inspired_mmhg: float
     anchors_mmhg: tuple[float, ...]  # inspired PO2 of the readings that tie the model down
     widened: tuple[str, ...]
+    _solved: dict[tuple[bool, bool], SolvedLungs] = field(default_factory=dict, repr=False)
     _responses: dict[tuple[Activity, bool], Response] = field(default_factory=dict, repr=False)
 
     def arterial(
@@ -145,26 +147,36 @@ class FittedLung:
         return inspired, dry, hours
 
     def _response(self, activity: Activity, depressed: bool = False) -> Response:
-        """The solved table for one activity, made when first asked for; a wider one where ventilation is lost."""
+        """The table for one activity, made when first asked for; a wider one where ventilation is lost."""
         if (activity, depressed) not in self._responses:
-            body, log_sd = self.body, self.log_sd
-            rise = float(self.sleep_rise_mmhg.max()) if activity == "asleep" else 0.0
-            if activity == "walking":
-                body = Body(
-                    body.haemoglobin_g_dl,
-                    body.base_excess_mmol_l,
-                    body.oxygen_uptake_l_min * ventilation.WALKING_UPTAKE_FACTOR,
-                    body.cardiac_output_l_min * ventilation.WALKING_OUTPUT_FACTOR,
-                )
-            if activity == "asleep":
-                log_sd = log_sd * ventilation.SLEEP_LOG_SD_FACTOR
-            lowest, highest = max(0.6 * float(self.paco2_mmhg.min()), 12.0), float(self.paco2_mmhg.max()) + 4.0 + rise
-            if depressed:
-                highest = min(highest / (1.0 - MOST_DEPRESSION), HIGHEST_PCO2_MMHG)
-            self._responses[activity, depressed] = Response(
-                body, np.minimum(log_sd, HIGHEST_LOG_SD), self.shunt, lowest, highest
-            )
+            worse = ventilation.SLEEP_LOG_SD_FACTOR if activity == "asleep" else 1.0
+            log_sd = np.minimum(self.log_sd * worse, HIGHEST_LOG_SD)
+            solved = self._solved_lungs(activity == "walking", depressed)
+            self._responses[activity, depressed] = Response(solved, log_sd, self.shunt)
         return self._responses[activity, depressed]
+
+    def _solved_lungs(self, walking: bool, depressed: bool) -> SolvedLungs:
+        """Solved lungs that span the draws: one set for rest and sleep, another for walking."""
+        if (walking, depressed) not in self._solved:
+            body, worse, rise = self.body, ventilation.SLEEP_LOG_SD_FACTOR, float(self.sleep_rise_mmhg.max())
+            if walking:
+                worse, rise = 1.0, 0.0
+                body = replace(
+                    body,
+                    oxygen_uptake_l_min=body.oxygen_uptake_l_min * ventilation.WALKING_UPTAKE_FACTOR,
+                    cardiac_output_l_min=body.cardiac_output_l_min * ventilation.WALKING_OUTPUT_FACTOR,
+                )
+            lowest = max(LOWEST_PCO2_SHARE * float(self.paco2_mmhg.min()), LOWEST_PCO2_MMHG)
+            highest = float(self.paco2_mmhg.max()) + PCO2_MARGIN_MMHG + rise
+            if depressed:
+                highest /= 1.0 - MOST_DEPRESSION
+            self._solved[walking, depressed] = SolvedLungs(
+                body,
+                (float(self.log_sd.min()), min(worse * float(self.log_sd.max()), HIGHEST_LOG_SD)),
+                (float(self.shunt.min()), float(self.shunt.max())),
+                (lowest, min(highest, HIGHEST_PCO2_MMHG)),
+            )
+        return self._solved[walking, depressed]
 
     def _pco2_mmhg(self, inspired: Array, hours: Array, rows: slice) -> Array:
         """Arterial PCO2 awake, (draws, points): acute response, its spread, and what days have added."""

@@ -10,6 +10,7 @@ solution: at most 0.35 mmHg on air between 30 and 100 mmHg of arterial PO2, and 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
@@ -23,6 +24,7 @@ RESPIRATORY_QUOTIENT = 0.82  # at rest, 0.80 to 0.83; textbook value
 AIR = 0.2093
 TABLE_NODES = ((1.15, 14), (np.inf, 24))  # up to this log SD, so many units of a lung in the table
 AIR_NODES, RICH_NODES = 9, 14  # of the alveolar PO2
+AIR_STEPS, RICH_STEPS = 40, 56  # read straight between these
 LOG_SD_NODES = ((0.8, 5), (np.inf, 7))  # up to this width of the draws, so many
 SHUNT_NODES = 3
 GREATEST_DRY_MMHG = 760.0  # ground pressure of 807 mmHg, the Dead Sea
@@ -50,8 +52,19 @@ class Body:
 
 
 @dataclass(frozen=True)
-class _Branch:
-    """Oxygen pressure over (draw, fraction place, power of carbon dioxide, log alveolar PO2)."""
+class Solved:
+    """Oxygen content over (log SD and shunt nodes, place of fraction x PCO2 x fine log alveolar PO2)."""
+
+    content: Array
+    places: int
+    log_first: float
+    per_log: float
+    steps: int
+
+
+@dataclass(frozen=True)
+class Branch:
+    """Oxygen pressure over (draw, place of fraction, power of carbon dioxide, fine log alveolar PO2)."""
 
     po2: Array
     log_first: float
@@ -59,29 +72,70 @@ class _Branch:
     steps: int
 
 
-class Response:
-    """The lungs of all draws of one body, ready to be asked for the arterial PO2 of any air.
+class SolvedLungs:
+    """Solved lungs of one body at nodes that span what will be asked; each part is solved when first needed.
 
-    log_sd, shunt: shape (draws,). lowest_pco2_mmhg, highest_pco2_mmhg: the arterial PCO2 it may be asked for.
+    The spans are (least, most) of the log SD, the shunt and the arterial PCO2 (mmHg).
     """
 
     def __init__(
-        self, body: Body, log_sd: Array, shunt: Array, lowest_pco2_mmhg: float, highest_pco2_mmhg: float
+        self,
+        body: Body,
+        log_sd_span: tuple[float, float],
+        shunt_span: tuple[float, float],
+        pco2_span_mmhg: tuple[float, float],
     ) -> None:
         self.body = body
-        self.draws = log_sd.size
-        width = max(float(np.ptp(log_sd)), 0.02)
+        width = max(log_sd_span[1] - log_sd_span[0], 0.02)
         count = next(count for most, count in LOG_SD_NODES if width <= most)
-        self._log_sd_nodes = end_nodes(log_sd.min(), log_sd.min() + width, count)
-        self._shunt_nodes = end_nodes(shunt.min(), max(shunt.max(), shunt.min() + 0.005), SHUNT_NODES)
-        by_log_sd = lagrange(log_sd, self._log_sd_nodes)
-        by_shunt = lagrange(shunt, self._shunt_nodes)
+        self.log_sd_nodes = end_nodes(log_sd_span[0], log_sd_span[0] + width, count)
+        self.shunt_nodes = end_nodes(shunt_span[0], max(shunt_span[1], shunt_span[0] + 0.005), SHUNT_NODES)
+        self.pco2_middle_mmhg = 0.5 * (pco2_span_mmhg[0] + pco2_span_mmhg[1])
+        self.pco2_half_mmhg = 0.5 * (pco2_span_mmhg[1] - pco2_span_mmhg[0])
+        self.curve = ContentCurve(body.haemoglobin_g_dl)
+
+    @cached_property
+    def air(self) -> Solved:
+        """Breathing air, at any pressure."""
+        logs, (_, carbon, alveolar) = self._grid(AIR_ALVEOLAR_MMHG, AIR_NODES, (0.0,))
+        inspired = _inspired_of_air(alveolar, carbon)
+        return self._solve(logs, inspired, _air_fraction(inspired), carbon, AIR_STEPS)
+
+    @cached_property
+    def rich(self) -> Solved:
+        """Breathing oxygen or a hypoxic mixture, at any pressure."""
+        logs, (place, carbon, alveolar) = self._grid(MOST_ALVEOLAR_MMHG, RICH_NODES, FRACTION_PLACES)
+        least, most = _fraction_ends(alveolar, carbon)
+        fraction = least + place * (most - least)
+        inspired: Array = alveolar + carbon * carbon_dioxide_factor(fraction, RESPIRATORY_QUOTIENT)
+        return self._solve(logs, inspired, fraction, carbon, RICH_STEPS)
+
+    def _grid(self, most_alveolar: float, nodes: int, places: tuple[float, ...]) -> tuple[Array, list[Array]]:
+        logs = np.linspace(np.log(LEAST_ALVEOLAR_MMHG), np.log(most_alveolar), nodes)
+        pco2 = self.pco2_middle_mmhg + self.pco2_half_mmhg * PCO2_PLACES
+        return logs, list(np.meshgrid(np.array(places), pco2, np.exp(logs), indexing="ij"))
+
+    def _solve(self, logs: Array, inspired: Array, fraction: Array, carbon: Array, steps: int) -> Solved:
+        content = contents(self.body, self.log_sd_nodes, self.shunt_nodes, inspired, inspired / fraction, carbon)
+        content = np.nan_to_num(extended(content, logs, axis=-1, downward=True), nan=0.0)  # no answer anywhere: below
+        fine = np.linspace(logs[0], logs[-1], steps)
+        flat = content.reshape(-1, logs.size) @ local_cubic(fine, logs).T
+        lungs = self.log_sd_nodes.size * self.shunt_nodes.size
+        per_log = (steps - 1) / float(logs[-1] - logs[0])
+        return Solved(flat.reshape(lungs, -1), carbon.shape[0], float(logs[0]), per_log, steps)
+
+
+class Response:
+    """The lungs of all draws of one body, ready to be asked for the arterial PO2 of any air.
+
+    log_sd, shunt: shape (draws,), within the spans of the solved lungs.
+    """
+
+    def __init__(self, solved: SolvedLungs, log_sd: Array, shunt: Array) -> None:
+        self.solved = solved
+        self.draws = log_sd.size
+        by_log_sd, by_shunt = lagrange(log_sd, solved.log_sd_nodes), lagrange(shunt, solved.shunt_nodes)
         self._weights = (by_log_sd[:, :, None] * by_shunt[:, None, :]).reshape(self.draws, -1)
-        self.lowest_pco2_mmhg, self.highest_pco2_mmhg = lowest_pco2_mmhg, highest_pco2_mmhg
-        self._pco2_mid = 0.5 * (lowest_pco2_mmhg + highest_pco2_mmhg)
-        self._pco2_half = 0.5 * (highest_pco2_mmhg - lowest_pco2_mmhg)
-        self._air = self._branch(AIR_ALVEOLAR_MMHG, nodes=AIR_NODES, steps=40, places=np.array([0.0]), rich=False)
-        self._rich: _Branch | None = None
 
     def arterial_po2_mmhg(self, inspired_mmhg: Array, dry_mmhg: Array, pco2_mmhg: Array, first_draw: int = 0) -> Array:
         """Arterial PO2 of the draws from first_draw on, as many as pco2_mmhg (draws, points) has rows.
@@ -97,10 +151,6 @@ class Response:
         result = np.empty(alveolar.shape)
         if by_air.any():
             result[:, by_air] = self._read(self._air, alveolar[:, by_air], pco2_mmhg[:, by_air], None, first_draw)
-        if self._rich is None:
-            self._rich = self._branch(
-                MOST_ALVEOLAR_MMHG, nodes=RICH_NODES, steps=56, places=np.array(FRACTION_PLACES), rich=True
-            )
         other = ~by_air
         alveolar, pco2 = alveolar[:, other], pco2_mmhg[:, other]
         least, most = _fraction_ends(alveolar, pco2)
@@ -108,32 +158,26 @@ class Response:
         result[:, other] = self._read(self._rich, alveolar, pco2, place, first_draw)
         return result
 
-    def _branch(self, most_alveolar: float, nodes: int, steps: int, places: Array, rich: bool) -> _Branch:
-        logs = np.linspace(np.log(LEAST_ALVEOLAR_MMHG), np.log(most_alveolar), nodes)
-        pco2 = self._pco2_mid + self._pco2_half * PCO2_PLACES
-        grid = np.meshgrid(places, pco2, np.exp(logs), indexing="ij")
-        place, carbon, alveolar = grid
-        if rich:
-            least, most = _fraction_ends(alveolar, carbon)
-            fraction = least + place * (most - least)
-            inspired: Array = alveolar + carbon * carbon_dioxide_factor(fraction, RESPIRATORY_QUOTIENT)
-        else:
-            inspired = _inspired_of_air(alveolar, carbon)
-            fraction = _air_fraction(inspired)
-        content = contents(self.body, self._log_sd_nodes, self._shunt_nodes, inspired, inspired / fraction, carbon)
-        content = np.nan_to_num(extended(content, logs, axis=-1, downward=True), nan=0.0)  # no answer anywhere: below
-        fine = np.linspace(logs[0], logs[-1], steps)
-        flat = content.reshape(-1, nodes) @ local_cubic(fine, logs).T
-        per_draw = self._weights @ flat.reshape(self._weights.shape[1], -1)
-        po2 = ContentCurve(self.body.haemoglobin_g_dl).po2_mmhg(per_draw).reshape(self.draws, places.size, -1, steps)
-        powers = np.einsum("kc,dpcs->dpks", TO_POWERS, po2)
-        return _Branch(powers, float(logs[0]), (steps - 1) / float(logs[-1] - logs[0]), steps)
+    @cached_property
+    def _air(self) -> Branch:
+        return self._branch(self.solved.air)
 
-    def _read(self, branch: _Branch, alveolar: Array, pco2: Array, place: Array | None, first: int) -> Array:
+    @cached_property
+    def _rich(self) -> Branch:
+        return self._branch(self.solved.rich)
+
+    def _branch(self, solved: Solved) -> Branch:
+        """The table of each draw from the solved lungs around it."""
+        content = self._weights @ solved.content
+        po2 = self.solved.curve.po2_mmhg(content).reshape(self.draws, solved.places, -1, solved.steps)
+        powers = np.einsum("kc,dpcs->dpks", TO_POWERS, po2)
+        return Branch(powers, solved.log_first, solved.per_log, solved.steps)
+
+    def _read(self, branch: Branch, alveolar: Array, pco2: Array, place: Array | None, first: int) -> Array:
         where = (np.log(np.maximum(alveolar, 1.0)) - branch.log_first) * branch.per_log
         index = np.clip(where.astype(np.int64), 0, branch.steps - 2)
         beyond = np.clip(where - index, -4.0, 1.0)
-        u = (pco2 - self._pco2_mid) / self._pco2_half
+        u = (pco2 - self.solved.pco2_middle_mmhg) / self.solved.pco2_half_mmhg
         start = np.arange(first, first + alveolar.shape[0])[:, None] * branch.po2[0].size + index
         table = branch.po2.reshape(-1)
 

@@ -6,7 +6,7 @@ import pytest
 from planner.lung import blood
 from planner.lung.draws import Draws
 from planner.lung.gas_exchange import CONVERGED_NODES, exchange
-from planner.lung.response import RESPIRATORY_QUOTIENT, Body, ContentCurve, Response
+from planner.lung.response import RESPIRATORY_QUOTIENT, Body, ContentCurve, Response, SolvedLungs
 
 # log SD mean and SD, PaCO2 mean and SD, body: a gas at rest, oximetry alone, severe with carbon dioxide retained,
 # walking.
@@ -23,7 +23,10 @@ def lung(name):
     draws = Draws(150, 7)
     log_sd, shunt = np.clip(mean + spread * draws.normal(), 0.03, 1.9), draws.beta(1.5, 50.0)
     rest = pco2 + pco2_spread * draws.normal()
-    return log_sd, shunt, rest, body, Response(body, log_sd, shunt, 0.6 * rest.min(), rest.max() + 4.0)
+    solved = SolvedLungs(
+        body, (log_sd.min(), log_sd.max()), (shunt.min(), shunt.max()), (0.6 * rest.min(), rest.max() + 4.0)
+    )
+    return log_sd, shunt, rest, body, Response(solved, log_sd, shunt)
 
 
 def converged(log_sd, shunt, body, inspired, dry, pco2):
