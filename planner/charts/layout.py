@@ -161,16 +161,16 @@ def finite_runs(*arrays: Array) -> list[slice]:
 
 def without_straight_points(x: Array, *curves: Array) -> NDArray[np.intp]:
     """Indices of the points that a drawing needs: those within a straight stretch of every curve are left out."""
-    if len(x) < 3:
-        return np.arange(len(x))
-    needed = np.ones(len(x), dtype=bool)
+    moves = np.logical_or.reduce([np.diff(values) != 0.0 for values in (x, *curves)])
+    places = np.flatnonzero(np.concatenate([[True], moves]))  # a point repeated in the same place is one point
+    if len(places) < 3:
+        return places
+    step = np.diff(x[places])
     bends = []
     for y in curves:
-        before, after = np.diff(x)[:-1], np.diff(x)[1:]
-        rise, next_rise = np.diff(y)[:-1], np.diff(y)[1:]
-        bends.append(np.abs(before * next_rise - after * rise) > STRAIGHT)
-    needed[1:-1] = np.logical_or.reduce(bends)
-    return np.flatnonzero(needed)
+        rise = np.diff(y[places])
+        bends.append(np.abs(step[:-1] * rise[1:] - step[1:] * rise[:-1]) > STRAIGHT)
+    return places[np.concatenate([[True], np.logical_or.reduce(bends), [True]])]
 
 
 def wrap(text: str, size: float, width: float, measure: Measure) -> list[str]:

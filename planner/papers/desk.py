@@ -56,10 +56,14 @@ class Desk:
         """At rest, walking or asleep."""
         return self.say(f"words.activity.{activity}")
 
+    def device(self, device_id: str | None) -> str:
+        """A delivery device by name; one that no profile knows by its id."""
+        known = self.devices.get(device_id or "")
+        return (known.name[0].lower() + known.name[1:]) if known else device_id or self.quantities.unknown
+
     def oxygen(self, device_id: str | None, flow_l_min: float | None, setting: float | None) -> str:
         """A flow or a setting with its device: never one without the other."""
-        known = self.devices.get(device_id or "")
-        device = (known.name[0].lower() + known.name[1:]) if known else device_id
+        device = self.device(device_id)
         if flow_l_min is not None:
             return self.say("oxygen.flow", flow=self.quantities.flow(flow_l_min), device=device)
         if setting is not None:

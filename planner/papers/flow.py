@@ -17,6 +17,7 @@ from planner.papers.sheet import Panel, moved
 LEADING = 1.32
 CELL_GAP = 8.0
 ROW_PAD = 3.0
+TIGHT_PAD = 0.8
 Align = Literal["left", "right"]
 
 
@@ -135,9 +136,14 @@ class Flow:
             self._add(moved(item, self.panel.left, self._y))
         self.gap(self.size * 0.6)
 
-    def pairs(self, rows: Sequence[tuple[str, str]], *, share: float = 0.34) -> None:
-        """Names at the left, values at the right, without rules: short facts."""
-        self.table([Column("", share), Column("", 1.0 - share)], [Row(row) for row in rows], ruled=False)
+    def pairs(self, rows: Sequence[tuple[str, str]], *, share: float = 0.34, lined: bool = False) -> None:
+        """Names at the left, values at the right: short facts. lined: rules below, for values written by hand."""
+        self.table(
+            [Column("", share), Column("", 1.0 - share)],
+            [Row(row) for row in rows],
+            ruled=lined,
+            pad=ROW_PAD if lined else TIGHT_PAD,
+        )
 
     def blanks(self, labels: Sequence[str], *, columns: int = 2) -> None:
         """Lines to write on, each with its words below."""
@@ -155,7 +161,15 @@ class Flow:
                     self._place(runs, left, self._y - self.size * (0.7 + row), self.size * 0.85, "muted")
             self._y -= max(map(len, lines)) * self.size + 2.0
 
-    def table(self, columns: Sequence[Column], rows: Sequence[Row], *, ruled: bool = True, scale: float = 0.92) -> None:
+    def table(
+        self,
+        columns: Sequence[Column],
+        rows: Sequence[Row],
+        *,
+        ruled: bool = True,
+        scale: float = 0.92,
+        pad: float = ROW_PAD,
+    ) -> None:
         """A table; cells wrap, rows stay whole where they fit, headings come again on each page."""
         size = self.size * scale
         widths = [self.panel.width * column.share / sum(c.share for c in columns) for column in columns]
@@ -165,7 +179,7 @@ class Flow:
 
         def head() -> None:
             if has_head:
-                self._cells(columns, widths, rooms, heads, size * 0.9, "muted")
+                self._cells(columns, widths, rooms, heads, size * 0.9, "muted", ROW_PAD)
                 self._rule("muted")
 
         first = self._row_cells(columns, rows[0], size, rooms) if rows else []
@@ -173,17 +187,18 @@ class Flow:
         head()
         for row in rows:
             cells = self._row_cells(columns, row, size, rooms)
+            role: Role = "muted" if row.grey else "ink"
             while True:
-                height = max(map(len, cells)) * size * LEADING + 2 * ROW_PAD
+                height = max(map(len, cells)) * size * LEADING + 2 * pad
                 if height <= self.room():
                     break
                 if height > self.panel.height * 0.5 and self.room() > self.panel.height * 0.25:
-                    fits = int((self.room() - 2 * ROW_PAD) / (size * LEADING))
-                    self._cells(columns, widths, rooms, [c[:fits] for c in cells], size, "muted" if row.grey else "ink")
+                    fits = int((self.room() - 2 * pad) / (size * LEADING))
+                    self._cells(columns, widths, rooms, [c[:fits] for c in cells], size, role, pad)
                     cells = [c[fits:] for c in cells]
                 self.break_panel()
                 head()
-            self._cells(columns, widths, rooms, cells, size, "muted" if row.grey else "ink")
+            self._cells(columns, widths, rooms, cells, size, role, pad)
             if ruled:
                 self._rule("grid")
         self.gap(self.size * 0.5)
@@ -196,17 +211,17 @@ class Flow:
 
     def _cells(
         self, columns: Sequence[Column], widths: list[float], rooms: list[float], cells: Sequence[list[list[Run]]],
-        size: float, role: Role,
+        size: float, role: Role, pad: float,
     ) -> None:  # fmt: skip
         left = self.panel.left
         lines = max(map(len, cells))
         for column, width, room, cell in zip(columns, widths, rooms, cells, strict=True):
             for number, runs in enumerate(cell):
-                y = self._y - ROW_PAD - (number + 0.5) * size * LEADING
+                y = self._y - pad - (number + 0.5) * size * LEADING
                 spare = room - sum(fonts.width(text, size, bold) for text, bold in runs)
                 self._place(runs, left + (spare if column.align == "right" else 0.0), y, size, role)
             left += width
-        self._y -= lines * size * LEADING + 2 * ROW_PAD
+        self._y -= lines * size * LEADING + 2 * pad
 
     def _rule(self, role: Role) -> None:
         self._add(rule(self.panel.left, self._y, self.panel.left + self.panel.width, self._y, role, 0.6))

@@ -118,7 +118,7 @@ def _dose(flow: Flow, desk: Desk) -> None:
     chart = lay_dose(
         DoseSeries(curve.amounts, *(a * PERCENT for a in (curve.spo2_median, curve.spo2_low, curve.spo2_high))),
         target_low=risk.target_low_percent,
-        target_high=risk.target_high_percent,
+        target_high=risk.target_high_percent if risk.ceiling else None,
         target_text=target_text(desk),
         amount_label=desk.say(
             "decided.dose_amount_flow" if curve.unit == "L/min" else "decided.dose_amount_setting", device=device

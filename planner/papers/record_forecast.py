@@ -9,6 +9,7 @@ import numpy as np
 
 from planner.charts.forecast import ForecastRow, Threshold, lay_forecast
 from planner.charts.layout import Drawing
+from planner.evidence.forecast import LIKELY
 from planner.papers import fonts
 from planner.papers.desk import Desk
 from planner.papers.flow import Column, Flow, Row
@@ -64,10 +65,10 @@ def write_forecast(flow: Flow, desk: Desk) -> None:
     say = desk.say
     flow.heading(say("record.forecast"))
     for note in desk.plan.baseline.notes:
-        flow.paragraph(note.text)
+        (flow.note if note.test else flow.paragraph)(note.text)
     if desk.plan.lung_refusal:
         flow.note(say("forecast.lung_refusal", reason=desk.plan.lung_refusal))
-    flow.paragraph(say("forecast.limits"), scale=0.9, role="muted")
+    flow.paragraph(say("forecast.limits", likely=desk.quantities.chance(LIKELY)), scale=0.9, role="muted")
     for parts, activity in _groups(desk.plan.parts):
         names = ", ".join(dict.fromkeys(desk.part_name(part.span.part_id) for part in parts))
         height = height_text(desk, parts[0].span.part_id)
@@ -86,7 +87,7 @@ def write_methods(flow: Flow, desk: Desk) -> None:
     """Each method once: people it was made from, formula and source; then what it was given here."""
     say = desk.say
     seen: dict[str, PredictorResult] = {}
-    for part in desk.plan.parts:
+    for part in sorted(desk.plan.parts, key=_air):
         for activity in part.forecast.activities if part.forecast else ():
             for predictor in activity.predictors:
                 if predictor.predictor_id not in seen or (
@@ -104,7 +105,9 @@ def write_methods(flow: Flow, desk: Desk) -> None:
     ]
     rows = []
     for predictor in seen.values():
-        inputs = [say("forecast.inputs_value", name=name, value=value) for name, value in predictor.inputs]
+        inputs = [
+            say("forecast.inputs_value", name=_named(desk, name), value=value) for name, value in predictor.inputs
+        ]
         method = f"{predictor.label}\n{predictor.source}"
         if not predictor.applies:
             inputs.append(say("forecast.not_applied", reasons=" ".join(predictor.reasons)))
@@ -133,17 +136,17 @@ def spo2_text(desk: Desk, activity: ActivityForecast) -> str:
     """SpO2 of the fitted lung with its spread, or that there is none."""
     if activity.below_model_range:
         return desk.say("forecast.below_range")
-    if activity.spo2_median is None:
+    if activity.spo2 is None:
         return desk.quantities.unknown
-    return desk.quantities.saturation_spread(activity.spo2_median, activity.spo2_low, activity.spo2_high)
+    return desk.quantities.saturation_spread(activity.spo2.median, activity.spo2.low, activity.spo2.high)
 
 
 def pao2_text(desk: Desk, activity: ActivityForecast) -> str:
     """PaO2 of the fitted lung with its spread, or that there is none."""
-    if activity.below_model_range or activity.pao2_median_mmhg is None:
+    if activity.below_model_range or activity.pao2_mmhg is None:
         return desk.quantities.unknown
-    low, high = activity.pao2_low_mmhg, activity.pao2_high_mmhg
-    return desk.quantities.pressure_spread(activity.pao2_median_mmhg, low, high)
+    middle = activity.pao2_mmhg
+    return desk.quantities.pressure_spread(middle.median, middle.low, middle.high)
 
 
 def decided_text(desk: Desk, part: PartPlan, activity: str) -> str:
@@ -170,16 +173,16 @@ def _chart_row(desk: Desk, predictor: PredictorResult) -> ForecastRow:
     ]
     value, low, high = shown
     text = desk.say("numbers.not_worked_out") if predictor.pao2_mmhg is None else q.pressure_number(predictor.pao2_mmhg)
-    sublabel = predictor.sublabel
+    sublabel = predictor.detail
     if not predictor.applies and predictor.reasons:
-        sublabel = " ".join(predictor.reasons)
+        sublabel = "\n".join([predictor.detail, " ".join(predictor.reasons)])
     kind = KINDS.get(predictor.predictor_id, "predicted") if predictor.applies else "not applicable"
     return ForecastRow(predictor.label, sublabel, value, low, high, text, kind)  # type: ignore[arg-type]
 
 
 def _groups(parts: Sequence[PartPlan]) -> list[tuple[list[PartPlan], ActivityForecast]]:
     """The parts with thin air, and always the one with the thinnest; those with the same answers at rest together."""
-    inspired = [part.span.lowest_inspired_po2_mmhg or np.inf for part in parts]
+    inspired = [_air(part) for part in parts]
     thin = [part for part, air in zip(parts, inspired, strict=True) if air <= max(THIN_AIR_MMHG, min(inspired))]
     groups: dict[tuple[object, ...], tuple[list[PartPlan], ActivityForecast]] = {}
     for part in thin:
@@ -192,3 +195,13 @@ def _groups(parts: Sequence[PartPlan]) -> list[tuple[list[PartPlan], ActivityFor
             )
             groups.setdefault(key, ([], activity))[0].append(part)
     return list(groups.values())
+
+
+def _named(desk: Desk, name: str) -> str:
+    """A measurement's name in words, where the catalogue has words for it."""
+    return desk.say(f"inputs.{name}") if desk.texts.knows(f"inputs.{name}") else name
+
+
+def _air(part: PartPlan) -> float:
+    """Inspired PO2 at the worst moment; the parts where it is not known come last."""
+    return part.span.lowest_inspired_po2_mmhg or np.inf

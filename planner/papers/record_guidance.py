@@ -2,16 +2,22 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
 
 from planner.air.atmosphere import station_pressure_mmhg
 from planner.case.measurements import Challenge
 from planner.charts.challenge import Phase, lay_challenge
 from planner.charts.layout import Drawing
+from planner.guidance.challenge import read_challenge
 from planner.papers import fonts
 from planner.papers.desk import Desk, capital
 from planner.papers.flow import Column, Flow, Row
 from planner.papers.record_inputs import gas_values
+
+if TYPE_CHECKING:
+    from planner.guidance.pathway import Step
 
 CHALLENGE_PT = 150.0
 TEXT_PT = 7.5
@@ -29,12 +35,12 @@ def write_carbon_dioxide(flow: Flow, desk: Desk) -> None:
 
 
 def target_text(desk: Desk) -> str:
-    """The SpO2 target in words."""
+    """The SpO2 target in words; its top only where carbon dioxide sets one."""
     risk, percent = desk.plan.carbon_dioxide, desk.quantities.percent
-    if risk.target_high_percent is None:
+    if not risk.ceiling:
         return desk.say("co2.target_low", low=percent(risk.target_low_percent))
-    high = percent(risk.target_high_percent)
-    return desk.say("co2.target", low=desk.texts.number(risk.target_low_percent), high=high)
+    low, high = desk.texts.number(risk.target_low_percent), percent(risk.target_high_percent)
+    return desk.say("co2.target", low=low, high=high)
 
 
 def write_pathways(flow: Flow, desk: Desk) -> None:
@@ -52,16 +58,13 @@ def write_pathways(flow: Flow, desk: Desk) -> None:
     for pathway in desk.plan.pathways:
         flow.lead(say("pathway.title", title=pathway.title, version=pathway.version))
         flow.paragraph(pathway.source, scale=0.85, role="muted")
-        steps = [Row((step.question, step.answer, step.fact_text, step.source)) for step in pathway.steps]
+        steps = [Row((step.question, step.answer, step.fact_text, _sourced(desk, step))) for step in pathway.steps]
         if steps:
             flow.table(columns, steps)
-        for advice in pathway.advice:
-            flow.paragraph(say("pathway.advice", text=advice.text))
-        if pathway.test_advised:
-            flow.note(say("pathway.test_advised"))
-        if pathway.missing:
-            questions = " ".join(missing.question for missing in pathway.missing)
-            flow.paragraph(say("pathway.missing", questions=questions))
+        if pathway.advice is not None:
+            flow.note(pathway.advice.text, lead=say("pathway.advice"), role="data")
+        if pathway.missing is not None:
+            flow.note(pathway.missing.question, lead=say("pathway.missing"))
 
 
 def write_cautions(flow: Flow, desk: Desk) -> None:
@@ -99,6 +102,10 @@ def write_challenges(flow: Flow, desk: Desk) -> None:
         flow.paragraph(say("challenge.none"))
     for test in tests:
         flow.paragraph(challenge_summary(desk, test))
+        reading = read_challenge(test, desk.case.policy)
+        flow.paragraph(" ".join(filter(None, [reading.band_text, reading.acidosis_text])), lead=reading.headline)
+        for warning in (*reading.warnings, *reading.asks):
+            flow.note(warning)
         if test.ended_early:
             flow.note(say("challenge.ended_early", why=test.ended_why or desk.quantities.unknown))
         if len(test.rows) >= 2:
@@ -134,6 +141,11 @@ def challenge_summary(desk: Desk, test: Challenge) -> str:
         duration=q.unknown if test.duration_min is None else q.duration(test.duration_min),
         method=desk.say(f"challenge.method.{test.method or 'unknown'}"),
     )
+
+
+def _sourced(desk: Desk, step: Step) -> str:
+    """The source of a rule; one that was remembered and not seen says so."""
+    return step.source if step.seen else desk.say("pathway.from_memory", source=step.source)
 
 
 def _chart(desk: Desk, test: Challenge, width: float) -> Drawing:

@@ -58,10 +58,10 @@ def write_measured(flow: Flow, desk: Desk) -> None:
     flow.table(columns, rows)
 
 
-def write_prescribed(flow: Flow, desk: Desk) -> None:
-    """Today's prescription: each line a device with its flow or its setting."""
+def write_prescribed(flow: Flow, desk: Desk, *, small: bool = False) -> None:
+    """Today's prescription: each line a device with its flow or its setting. small: under a small heading."""
     say, prescription = desk.say, desk.case.prescription
-    flow.heading(say("record.prescribed"))
+    (flow.lead if small else flow.heading)(say("record.prescribed"))
     uses = {True: "prescribed.yes", False: "prescribed.no", None: "prescribed.not_known"}
     flow.paragraph(say(uses[prescription.uses_oxygen]))
     rows = [

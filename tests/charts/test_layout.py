@@ -68,3 +68,8 @@ def test_points_within_straight_stretches_go_and_the_line_stays_the_same():
 def test_an_upright_step_keeps_both_its_ends():
     x, y = np.array([0.0, 1.0, 1.0, 2.0]), np.array([5.0, 5.0, 9.0, 9.0])
     assert without_straight_points(x, y).tolist() == [0, 1, 2, 3]
+
+
+def test_a_corner_given_twice_where_two_parts_meet_stays_a_corner():
+    x, y = np.array([0.0, 10.0, 10.0, 20.0]), np.array([8.0, 1.0, 1.0, 1.0])
+    assert without_straight_points(x, y).tolist() == [0, 1, 3]
