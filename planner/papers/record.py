@@ -127,7 +127,7 @@ def _sources(flow: Flow, desk: Desk) -> None:
         for activity in part.forecast.activities if part.forecast else ():
             found.update(dict.fromkeys(predictor.source for predictor in activity.predictors))
     found.update(dict.fromkeys(pathway.source for pathway in plan.pathways))
-    found.update(dict.fromkeys(finding.source for finding in plan.cautions if not finding.asked))
+    found.update(dict.fromkeys(finding.source for finding in plan.cautions))
     used = {decision.device_id for decision in desk.case.decisions}
     found.update(dict.fromkeys(device.source for key, device in desk.devices.items() if key in used))
     found.update(dict.fromkeys(line.source for line in plan.trace))

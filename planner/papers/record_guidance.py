@@ -10,6 +10,7 @@ from planner.air.atmosphere import station_pressure_mmhg
 from planner.case.measurements import Challenge
 from planner.charts.challenge import Phase, lay_challenge
 from planner.charts.layout import Drawing
+from planner.guidance.cautions import open_questions
 from planner.guidance.challenge import read_challenge
 from planner.papers import fonts
 from planner.papers.desk import Desk, capital
@@ -71,8 +72,8 @@ def write_cautions(flow: Flow, desk: Desk) -> None:
     """What forbids, delays or needs a specialist; then what nobody answered."""
     say = desk.say
     flow.heading(say("record.cautions"))
-    found = [finding for finding in desk.plan.cautions if not finding.asked]
-    open_questions = [finding for finding in desk.plan.cautions if finding.asked]
+    found = desk.plan.cautions
+    not_answered = open_questions(desk.case, desk.plan.timeline)
     if not found:
         flow.paragraph(say("cautions.none"))
     else:
@@ -88,8 +89,8 @@ def write_cautions(flow: Flow, desk: Desk) -> None:
             text = f"{finding.text}\n{finding.source}"
             rows.append(Row((finding.title, say(f"words.level.{finding.level}"), text, until)))
         flow.table(columns, rows)
-    if open_questions:
-        titles = "; ".join(finding.title for finding in open_questions)
+    if not_answered:
+        titles = "; ".join(condition.name for condition in not_answered)
         flow.paragraph(say("cautions.not_asked_line", titles=titles), scale=0.9, role="muted")
 
 
