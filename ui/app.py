@@ -9,10 +9,13 @@ from typing import Any
 from kivy.app import App
 from kivy.clock import Clock
 from kivy.core.window import Window
+from kivy.uix.behaviors import FocusBehavior
 from kivy.uix.boxlayout import BoxLayout
+from kivy.uix.textinput import TextInput
 
 from ui.theme import theme
 from ui.widgets.notices import paint_ground
+from ui.widgets.reach import ESCAPE, TAB
 from ui.widgets.text import Text
 
 TITLE = "Oxygen and altitude planner"
@@ -129,7 +132,17 @@ class PlannerApp(App):  # type: ignore[misc]
             self.session.close()
         Window.unbind(on_key_down=self._on_key)
 
+    def _focused(self, kind: type) -> Any:
+        return next((widget for widget in self.root.walk() if isinstance(widget, kind) and widget.focus), None)
+
     def _on_key(self, _window: Any, key: int, _scancode: int, _text: str | None, modifiers: list[str]) -> bool:
+        if key == TAB and self._focused(FocusBehavior) is None:
+            first = next((w for w in self.root.walk() if isinstance(w, FocusBehavior) and not w.disabled), None)
+            if first is not None:
+                first.focus = True
+            return True
+        if key == ESCAPE and self._focused(TextInput) is not None:
+            return False  # the line that is typed on leaves the focus first
         if self.shell is not None:
             return bool(self.shell.on_key(key, list(modifiers)))
-        return key == 27  # Escape on the list of cases does not close the app
+        return key == ESCAPE  # Escape on the list of cases does not close the app

@@ -17,7 +17,7 @@ from kivy.metrics import Metrics
 from kivy.uix.behaviors import FocusBehavior
 from kivy.uix.widget import Widget
 
-BACKSPACE, TAB, ENTER, ESCAPE, UP, DOWN, RIGHT, LEFT = 8, 9, 13, 27, 273, 274, 275, 276
+BACKSPACE, TAB, ENTER, ESCAPE, UP, DOWN, RIGHT, LEFT, END = 8, 9, 13, 27, 273, 274, 275, 276, 279
 
 
 class Touch(MotionEvent):
@@ -122,6 +122,7 @@ class Driver:
     def fill(self, field: Any, text: str) -> None:
         """Tap a field, clear it and type."""
         self.tap(field.input)
+        self.key(END)
         self.key(BACKSPACE, times=len(field.input.text))
         self.type(text)
 

@@ -7,7 +7,8 @@ from typing import Any
 
 from planner.case import measurements as m
 from ui import measures
-from ui.screens.form import Form, Live, model_limits, today
+from ui.screens import form as forms
+from ui.screens.form import Form, Live, model_limits
 from ui.widgets.choices import Choice
 from ui.widgets.entries import DateEntry, NumberEntry
 from ui.widgets.rows import Side
@@ -75,7 +76,7 @@ def measure_of(field: Field, display: Any) -> measures.Measure:
 def newest(case: Any, kind: str) -> int | None:
     """Index of the newest measurement of a kind, at rest where it says so; None if there is none."""
     found = [
-        (measurement.taken_on or today().min, index)
+        (measurement.taken_on or forms.today().min, index)
         for index, measurement in enumerate(case.measurements)
         if measurement.kind == kind and getattr(measurement, "activity", "rest") == "rest"
     ]
@@ -146,7 +147,11 @@ class Measured:
     def taken_on(self) -> DateEntry:
         """When it was taken."""
         entry = DateEntry(
-            "Taken on", self.get("taken_on"), latest=today(), today=today, **self._keywords(("taken_on",), "date")
+            "Taken on",
+            self.get("taken_on"),
+            latest=forms.today(),
+            today=forms.today,
+            **self._keywords(("taken_on",), "date"),
         )
         return self.form.keep(entry, lambda: self.get("taken_on"))  # type: ignore[no-any-return]
 
