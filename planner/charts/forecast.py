@@ -63,15 +63,16 @@ def lay_forecast(
     unit: str,
     tick_text: Callable[[float], str] = "{:g}".format,
     least_row: float = 0.0,
+    label_share: float = LABEL_SHARE,
 ) -> Drawing:
     """Lay the rows out below each other; the drawing's height follows from them.
 
     title stands at the upper left (what is shown, for which part), unit over the column of values. least_row: smallest
-    row height. Long labels wrap; nothing is cut.
+    row height; label_share: of the width, for the words. Long labels wrap; nothing is cut.
     """
     small = text_size * 0.82
     values_width = max([measure(row.value_text, text_size * 1.06) for row in rows] + [measure(unit, small)]) + 2.0
-    label_width = width * LABEL_SHARE
+    label_width = width * label_share
     plot = (label_width + GAP, width - values_width - GAP)
     axis = _axis(rows, thresholds, plot)
 

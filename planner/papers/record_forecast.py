@@ -20,6 +20,7 @@ if TYPE_CHECKING:
     from planner.results import PartPlan
 
 CHART_TEXT_PT = 8.5
+LABEL_SHARE = 0.5
 THIN_AIR_MMHG = 124.0  # inspired PO2 at about 1,500 m: what lies below is in the table of all parts only
 KINDS = {"challenge": "measured"}
 
@@ -129,6 +130,7 @@ def forecast_chart(desk: Desk, activity: ActivityForecast, width: float) -> Draw
         title=desk.say("forecast.chart_title"),
         unit=desk.say("forecast.chart_unit", unit=q.display.pressure),
         tick_text=lambda value: desk.texts.number(value, 1),
+        label_share=LABEL_SHARE,
     )
 
 
@@ -175,7 +177,7 @@ def _chart_row(desk: Desk, predictor: PredictorResult) -> ForecastRow:
     text = desk.say("numbers.not_worked_out") if predictor.pao2_mmhg is None else q.pressure_number(predictor.pao2_mmhg)
     sublabel = predictor.detail
     if not predictor.applies and predictor.reasons:
-        sublabel = "\n".join([predictor.detail, " ".join(predictor.reasons)])
+        sublabel = desk.say("forecast.row_reason", detail=predictor.detail, reason=predictor.reasons[0])
     kind = KINDS.get(predictor.predictor_id, "predicted") if predictor.applies else "not applicable"
     return ForecastRow(predictor.label, sublabel, value, low, high, text, kind)  # type: ignore[arg-type]
 
