@@ -176,6 +176,23 @@ def test_a_part_is_opened_changed_moved_doubled_and_removed(demo):
     assert len(case(driver).trip.parts) == len(names)
 
 
+def test_the_open_part_is_lengthened_by_dragging_its_end_as_one_step_to_undo(demo):
+    driver = demo
+    driver.app.shell.go("trip")
+    driver.frames(6)
+    before = case(driver)
+    driver.tap("3 · Flight 1")
+    plot = driver.app.shell.screen.ribbon.plot
+    driver.bring(plot)
+    x, y = plot.to_window(plot._handle_x(), plot.y + plot.height * 0.45 + 14)
+    driver.drag((x, y), (x + 12, y), steps=6)
+    minutes = case(driver).trip.parts[2].duration_min
+    assert 180 <= minutes <= 300
+    assert minutes % 5 == 0
+    driver.app.session.undo()
+    assert case(driver) == before
+
+
 def test_removing_a_part_takes_its_decisions_with_it_and_undo_brings_both_back(demo):
     driver = demo
     driver.app.shell.go("trip")

@@ -36,6 +36,7 @@ class TripScreen(Screen):
         """Ribbon, parts, what can be added, when and where it starts."""
         self.edits = TripEdits(self.session)
         self.ribbon = RibbonOfTrip(self.session, layer=self._layer, tell=self._tell)
+        self.ribbon.plot.on_lengthen = self._lengthen
         self.empty = Live(self.session, lambda: not self.session.case.trip.parts, self._fill_empty)
         self.unknown = Stack(gap=2)
         self.parts = Live(self.session, self._signature, self._fill_parts, gap=0)
@@ -47,6 +48,8 @@ class TripScreen(Screen):
 
     def refresh(self) -> None:
         """Show the trip as it is."""
+        ids = [part.part_id for part in self.session.case.trip.parts]
+        self.ribbon.plot.handle_part = ids.index(self.open_part) if self.open_part is not None else None
         self.ribbon.show_case()
         self.empty.show()
         self.parts.show()
@@ -84,6 +87,10 @@ class TripScreen(Screen):
             return ""
         shown = measures.pressure(self.session.case.display.pressure)
         return f"inspired PO₂ {strong(shown.with_unit(value))}"
+
+    def _lengthen(self, index: int, minutes: float) -> None:
+        refused = self.session.set(f"trip.parts.{index}.duration_min", minutes, "how long a part is")
+        self.session.said = refused
 
     # -- parts
 

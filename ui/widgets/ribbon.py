@@ -10,7 +10,7 @@ from collections.abc import Callable
 from typing import Any
 
 from kivy.clock import Clock
-from kivy.graphics import Rectangle, StencilPop, StencilPush, StencilUnUse, StencilUse
+from kivy.graphics import Color, Line, Rectangle, RoundedRectangle, StencilPop, StencilPush, StencilUnUse, StencilUse
 from kivy.graphics.instructions import InstructionGroup
 from kivy.metrics import dp, sp
 from kivy.properties import NumericProperty
@@ -41,6 +41,9 @@ class RibbonPlot(Reachable, Widget):  # type: ignore[misc]
         self.on_minute = on_minute
         self.lay: Lay | None = None
         self.ribbon: Any = None
+        self.handle_part: int | None = None  # the part whose end can be dragged
+        self.on_lengthen: Callable[[int, float], None] | None = None
+        self._lengthening: tuple[float, float, float] | None = None  # x and minutes at the start, minutes per pixel
         self._offset = 0.0
         self._still, self._moving = InstructionGroup(), InstructionGroup()
         with self.canvas:
@@ -81,6 +84,38 @@ class RibbonPlot(Reachable, Widget):  # type: ignore[misc]
 
     def _paint_scrub(self) -> None:
         paint_items(self._moving, self.ribbon.scrub(self.minute), self.x - self._offset, self.y)
+        end = self._handle_x()
+        if end is not None:
+            base = self.y + self.height * 0.45
+            self._moving.add(Color(*theme.data))
+            self._moving.add(RoundedRectangle(pos=(end - dp(5), base), size=(dp(10), dp(28)), radius=[dp(5)]))
+            self._moving.add(Color(*theme.on_data))
+            for side in (-dp(1.5), dp(1.5)):
+                self._moving.add(Line(points=[end + side, base + dp(9), end + side, base + dp(19)], width=dp(0.6)))
+
+    def _handle_x(self) -> float | None:
+        edges = self.ribbon.scale.minutes if self.ribbon is not None else ()
+        if self.handle_part is None or self.handle_part >= len(edges) - 1:
+            return None
+        return float(self.x - self._offset + self.ribbon.scale.at(edges[self.handle_part + 1]))
+
+    def _grip(self, touch: Any) -> bool:
+        """Take hold of the handle if the touch is on it."""
+        end = self._handle_x()
+        if end is None or abs(touch.x - end) > dp(24) or abs(touch.y - self.y - self.height * 0.45 - dp(14)) > dp(26):
+            return False
+        edges, scale = self.ribbon.scale.minutes, self.ribbon.scale
+        start_min, end_min = float(edges[self.handle_part]), float(edges[self.handle_part + 1])
+        width = max(scale.at(end_min) - scale.at(start_min), 1.0)
+        self._lengthening = (touch.x, end_min - start_min, (end_min - start_min) / width)
+        return True
+
+    def _lengthen(self, x: float) -> None:
+        begun_x, minutes, per_pixel = self._lengthening or (x, 0.0, 0.0)
+        step = 60.0 if minutes > 1440 else 5.0
+        wanted = max(step, step * round((minutes + (x - begun_x) * per_pixel) / step))
+        if self.on_lengthen is not None and self.handle_part is not None:
+            self.on_lengthen(self.handle_part, wanted)
 
     def _moved(self, *_: Any) -> None:
         if self.ribbon is None:
@@ -111,13 +146,14 @@ class RibbonPlot(Reachable, Widget):  # type: ignore[misc]
             return bool(super().on_touch_down(touch))
         super().on_touch_down(touch)
         touch.grab(self)
-        self._to_minute(touch.x)
+        if not self._grip(touch):
+            self._to_minute(touch.x)
         return True
 
     def on_touch_move(self, touch: Any) -> bool:
         """Read where the finger is."""
         if touch.grab_current is self:
-            self._to_minute(touch.x)
+            (self._lengthen if self._lengthening is not None else self._to_minute)(touch.x)
             return True
         return bool(super().on_touch_move(touch))
 
@@ -125,6 +161,7 @@ class RibbonPlot(Reachable, Widget):  # type: ignore[misc]
         """Let go."""
         if touch.grab_current is self:
             touch.ungrab(self)
+            self._lengthening = None
             return True
         return bool(super().on_touch_up(touch))
 
