@@ -19,3 +19,11 @@ def cylinders_text(desk: Desk) -> str:
 
 def turn_back_rows(desk: Desk) -> list[tuple[str, str]]:
     return []
+
+
+def write_items(flow, desk):
+    pass
+
+
+def write_endurance(flow, desk):
+    pass
