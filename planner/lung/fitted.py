@@ -119,7 +119,7 @@ class FittedLung:
         po2 += self._model_error_mmhg(inspired, rows)
         if self.diffusing_capacity is not None:
             strain = WALKING_STRAIN if activity == "walking" else 1.0
-            fall = self.base_inspired_mmhg - inspired
+            fall = min(self.base_inspired_mmhg, ventilation.SEA_LEVEL_INSPIRED_MMHG) - inspired
             po2 -= strain * diffusion.diffusion_fall_mmhg(self.diffusing_capacity[rows, None], fall)
         if activity == "walking":
             po2 -= self.walking_extra_mmhg[rows, None]
@@ -181,20 +181,21 @@ class FittedLung:
     def _pco2_mmhg(self, inspired: Array, hours: Array, rows: slice) -> Array:
         """Arterial PCO2 awake, (draws, points): acute response, its spread, and what days have added."""
         rest = self.paco2_mmhg[rows, None]
-        fall = (self.base_inspired_mmhg - inspired) / REFERENCE_FALL_MMHG
-        distance = np.clip(fall, 0.0, ventilation.MOST_SPREAD_DISTANCE)
+        distance = ventilation.share_of_reference_fall(self.base_inspired_mmhg, inspired)
         spread = ventilation.FALL_SPREAD_MMHG * self.fall_z[rows, None] * distance
         if not self.person.can_hyperventilate:
             return rest + np.maximum(spread, -ventilation.BOUNDED_FALL_MMHG)
         acute = self._acute_curve_at(inspired, rows) + spread
-        ratio = inspired / self.base_inspired_mmhg
+        ratio = inspired / min(self.base_inspired_mmhg, ventilation.SEA_LEVEL_INSPIRED_MMHG)
         target = ventilation.acclimatised_pco2_mmhg(rest, ratio, self.acclimatised_exponent[rows, None])
         return acute + ventilation.acclimatised_share(hours) * np.minimum(target - acute, 0.0)
 
     @cached_property
     def _acute_curve(self) -> Array:
         """Acute PCO2 over inspired PO2 from 40 mmHg to that of the first reading, (draws, CURVE_POINTS)."""
-        inspired = np.linspace(CURVE_START_MMHG, self.base_inspired_mmhg, CURVE_POINTS)[None]
+        inspired = _unstretched(
+            np.linspace(CURVE_START_MMHG, float(_stretched(self.base_inspired_mmhg)), CURVE_POINTS)
+        )[None]
         dry = inspired[0] / np.maximum(AIR, inspired[0] / 760.0)
         response = self._response("rest")
 
@@ -210,8 +211,8 @@ class FittedLung:
 
     def _acute_curve_at(self, inspired: Array, rows: slice) -> Array:
         curve = self._acute_curve[rows]
-        step = (self.base_inspired_mmhg - CURVE_START_MMHG) / (CURVE_POINTS - 1)
-        where = np.clip((inspired - CURVE_START_MMHG) / step, 0.0, CURVE_POINTS - 1.000001)
+        step = (float(_stretched(self.base_inspired_mmhg)) - CURVE_START_MMHG) / (CURVE_POINTS - 1)
+        where = np.clip((_stretched(inspired) - CURVE_START_MMHG) / step, 0.0, CURVE_POINTS - 1.000001)
         index = where.astype(np.int64)
         share = where - index
         if inspired.shape[0] == 1:
@@ -223,9 +224,27 @@ class FittedLung:
 
     def _model_error_mmhg(self, inspired: Array, rows: slice) -> Array:
         """The model's own error of each draw: it grows with the distance from where the lung was measured."""
-        distance = (self.base_inspired_mmhg - inspired) / REFERENCE_FALL_MMHG
-        error = STRUCTURAL_SD_MMHG * self.structural_z[rows, None] * distance
+        error = STRUCTURAL_SD_MMHG * self.structural_z[rows, None] * model_distance(self.base_inspired_mmhg, inspired)
         if len(self.anchors_mmhg) > 1:
-            nearest = np.min([np.abs(inspired - anchor) for anchor in self.anchors_mmhg], axis=0) / REFERENCE_FALL_MMHG
+            nearest = np.min([np.abs(model_distance(anchor, inspired)) for anchor in self.anchors_mmhg], axis=0)
             error = error + ANCHORED_SHARE * STRUCTURAL_SD_MMHG * self.anchored_z[rows, None] * nearest
         return error
+
+
+def model_distance(base_inspired_mmhg: float, inspired_mmhg: FloatOrArray) -> FloatOrArray:
+    """How far this air is from that of a reading, in falls of 41 mmHg of inspired PO2; negative where it is richer.
+
+    Beyond air at sea level the distance grows with the logarithm: there blood changes little. Planning assumption.
+    """
+    return (_stretched(base_inspired_mmhg) - _stretched(inspired_mmhg)) / REFERENCE_FALL_MMHG
+
+
+def _stretched(inspired_mmhg: FloatOrArray) -> FloatOrArray:
+    """Inspired PO2, above that of air at sea level on a logarithmic scale that joins smoothly."""
+    sea_level = ventilation.SEA_LEVEL_INSPIRED_MMHG
+    return np.minimum(inspired_mmhg, sea_level) + sea_level * np.log(np.maximum(inspired_mmhg / sea_level, 1.0))
+
+
+def _unstretched(stretched_mmhg: Array) -> Array:
+    sea_level = ventilation.SEA_LEVEL_INSPIRED_MMHG
+    return np.minimum(stretched_mmhg, sea_level) * np.exp(np.maximum(stretched_mmhg / sea_level - 1.0, 0.0))

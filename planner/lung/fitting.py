@@ -18,7 +18,7 @@ from planner.errors import InputError
 from planner.lung import blood, diffusion, ventilation
 from planner.lung.blood_shift import SaturationCurve
 from planner.lung.draws import Draws, resampled
-from planner.lung.fitted import REFERENCE_FALL_MMHG, STRUCTURAL_SD_MMHG, Arterial, FittedLung
+from planner.lung.fitted import STRUCTURAL_SD_MMHG, Arterial, FittedLung, model_distance
 from planner.lung.gas_exchange import HIGHEST_LOG_SD, exchange
 from planner.lung.likelihood import LOG_SDS, UNLIKELY_SD, log_likelihood, po2_over_log_sd
 from planner.lung.reading import (
@@ -114,16 +114,17 @@ def fit_lung(readings: Sequence[LungReading], person: Person, *, draws: int = 10
     curve = SaturationCurve(body.haemoglobin_g_dl, body.base_excess_mmol_l)
     told = np.zeros((draws, LOG_SDS.size))
     for reading in ordered:
-        distance = (base.inspired_po2_mmhg - reading.inspired_po2_mmhg) / REFERENCE_FALL_MMHG
+        distance = ventilation.share_of_reference_fall(base.inspired_po2_mmhg, reading.inspired_po2_mmhg)
         pco2 = rest_pco2
         if person.can_hyperventilate:
             fall = EXPECTED_FALL_MMHG * np.sqrt(gain / ventilation.HYPOXIC_GAIN_L_MIN) * distance
-            pco2 = rest_pco2 - np.where(distance > 0.0, fall - ventilation.FALL_SPREAD_MMHG * fall_z * distance, 0.0)
+            pco2 = rest_pco2 - fall + ventilation.FALL_SPREAD_MMHG * fall_z * distance
         fio2 = np.clip(reading.fio2 + reading.fio2_spread * prior.normal(), 0.1, 1.0)
         po2 = po2_over_log_sd(reading, fio2, pco2, shunt, body)
-        po2 = po2 + (STRUCTURAL_SD_MMHG * structural_z * distance)[:, None]
+        away = model_distance(base.inspired_po2_mmhg, reading.inspired_po2_mmhg)
+        po2 = po2 + (STRUCTURAL_SD_MMHG * structural_z * away)[:, None]
         if has_capacity:
-            fall_mmhg = base.inspired_po2_mmhg - reading.inspired_po2_mmhg
+            fall_mmhg = min(base.inspired_po2_mmhg, ventilation.SEA_LEVEL_INSPIRED_MMHG) - reading.inspired_po2_mmhg
             po2 = po2 - diffusion.diffusion_fall_mmhg(capacity, np.array(fall_mmhg))[:, None]
         told += log_likelihood(reading, person, po2, pco2, curve)
         if reading is not rest_source and reading.paco2_mmhg is not None:

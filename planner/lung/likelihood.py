@@ -32,11 +32,12 @@ def po2_over_log_sd(reading: LungReading, fio2: Array, pco2_mmhg: Array, shunt: 
     fractions, carbon = np.meshgrid(fio2_nodes, pco2_nodes, indexing="ij")
     content = contents(body, LOG_SD_NODES, shunt_nodes, fractions * dry, np.full(fractions.shape, dry), carbon)
     content = extended(content, LOG_SD_NODES, axis=0, downward=False)
+    content = extended(content, pco2_nodes, axis=-1, downward=False)
     if np.isnan(content).any():
         raise InputError(
             "readings",
             f"Below model range: breathing {100 * reading.fio2:.3g} % oxygen at {reading.barometric_mmhg:.0f} mmHg "
-            f"with an arterial PCO2 up to {pco2_mmhg.max():.0f} mmHg leaves too little oxygen for any lung.",
+            f"with an arterial PCO2 of {np.median(pco2_mmhg):.0f} mmHg leaves too little oxygen for any lung.",
         )
     weights = (
         lagrange(shunt, shunt_nodes)[:, :, None, None]

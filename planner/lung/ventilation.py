@@ -27,6 +27,7 @@ CARBON_OUTPUT_L_MIN = 0.205  # at rest; 0.25 L/min oxygen uptake and a quotient 
 # it makes the SD of 2 mmHg between the published groups named above.
 FALL_SPREAD_MMHG = 1.5
 REFERENCE_FALL_MMHG = 41.0
+SEA_LEVEL_INSPIRED_MMHG = 149.23  # air at 760 mmHg; more oxygen than that changes breathing no further
 MOST_SPREAD_DISTANCE = 1.5
 # A person who cannot breathe more: no response, and never more than 1 mmHg lower. Planning assumption.
 BOUNDED_FALL_MMHG = 1.0
@@ -85,6 +86,15 @@ def acute_pco2_mmhg(
         low, at_low = np.where(above, low, middle), np.where(above, at_low, value)
     span = at_high - at_low
     return np.where(span > 0.0, low - at_low * (high - low) / np.where(span > 0.0, span, 1.0), high)
+
+
+def share_of_reference_fall(base_inspired_mmhg: float, inspired_mmhg: FloatOrArray) -> FloatOrArray:
+    """How far below the base (at most air at sea level) the inspired PO2 is, in falls of 41 mmHg; 0 above it.
+
+    Counted to 1.5 falls (about 3800 m), where the published falls end. Planning assumption.
+    """
+    fall = (min(base_inspired_mmhg, SEA_LEVEL_INSPIRED_MMHG) - inspired_mmhg) / REFERENCE_FALL_MMHG
+    return np.clip(fall, 0.0, MOST_SPREAD_DISTANCE)
 
 
 def acclimatised_share(hours_at_altitude: FloatOrArray) -> FloatOrArray:

@@ -6,6 +6,7 @@ import numpy as np
 import pytest
 
 from planner.errors import InputError
+from planner.lung.fitted import model_distance
 from planner.lung.fitting import LungReading, Person, fit_lung
 from planner.lung.gas_exchange import exchange
 
@@ -26,7 +27,7 @@ def test_each_draw_is_the_solved_lung_of_its_own_numbers(copd):
     # At the pressure where it was measured there is no error of the model between; on air and on oxygen by 35 %.
     for inspired, barometric in ((149.23, 760.0), (0.35 * 713.0, 760.0)):
         ours = copd.arterial(inspired, barometric)
-        error = copd.structural_z * 3.0 * (149.2309 - inspired) / 41.0
+        error = copd.structural_z * 3.0 * model_distance(149.2309, inspired)
         solved = exchange(
             inspired,
             barometric,
@@ -88,6 +89,24 @@ def test_days_at_altitude_bring_back_about_three_mmhg(copd):
     air = (117.0, 606.0)
     gain = middle(copd, *air, hours_at_altitude=68.0) - middle(copd, *air, hours_at_altitude=3.0)
     assert gain == pytest.approx(3.0, abs=1.2)
+
+
+def test_the_models_distance_is_straight_in_thin_air_and_slows_on_oxygen():
+    assert model_distance(149.23, 108.23) == pytest.approx(1.0)
+    assert model_distance(149.23, 149.23 + 0.41) == pytest.approx(-0.01, abs=1e-4)
+    assert -6.0 < model_distance(149.23, 713.0) < -5.0
+
+
+def test_a_lung_measured_on_much_oxygen_is_forecast_in_thin_air_within_what_can_be():
+    gas = LungReading(760.0, 0.6, pao2_mmhg=150.0, paco2_mmhg=45.0, age_days=2.0)
+    fitted = fit_lung([gas], Person("copd"))
+    there = fitted.arterial(
+        np.array([0.6 * 713.0, 149.0, 108.3]), np.array([760.0, 760.0, 564.5]), hours_at_altitude=48.0
+    )
+    assert np.median(there.po2_mmhg[:, 0]) == pytest.approx(150.0, abs=2.5)
+    assert (np.diff(np.median(there.po2_mmhg, axis=0)) < 0.0).all()
+    assert np.quantile(there.paco2_mmhg, 0.01) > 22.0
+    assert there.po2_mmhg[:, 1].std() < 14.0
 
 
 def test_those_who_cannot_breathe_more_keep_their_carbon_dioxide():
