@@ -139,9 +139,9 @@ def _spo2_pair(part: PartPlan, recorded: PartOutcome) -> Pair | None:
     else:
         activities = part.forecast.activities if part.forecast is not None else ()
         forecast = next((one for one in activities if one.activity == activity), None)
-        if forecast is None or forecast.spo2_median is None or forecast.spo2_low is None or forecast.spo2_high is None:
+        if forecast is None or forecast.spo2 is None:
             return None
-        band = (forecast.spo2_median, forecast.spo2_low, forecast.spo2_high)
+        band = (forecast.spo2.median, forecast.spo2.low, forecast.spo2.high)
     median, low, high = (100.0 * one for one in band)
     return Pair(median, *widened(median, low, high, OXIMETER_SD_PERCENT), recorded.usual_spo2_percent)
 

@@ -51,6 +51,7 @@ def summary_row(case: Case, plan: Plan) -> dict[str, str]:
         default=None,
     )
     at_rest = _at_rest(worst)
+    pao2, spo2 = (at_rest.pao2_mmhg, at_rest.spo2) if at_rest else (None, None)
     titrations = [one for part in plan.parts for one in part.titrations]
     return {
         "reference": case.patient.reference,
@@ -58,12 +59,12 @@ def summary_row(case: Case, plan: Plan) -> dict[str, str]:
         "highest_altitude_m": _number(max((one.highest_m for one in spans if one.highest_m is not None), default=None)),
         "lowest_inspired_po2_mmhg": _number(worst.span.lowest_inspired_po2_mmhg if worst else None),
         "worst_part": (worst.span.name or worst.span.part_id) if worst else "",
-        "rest_pao2_median_mmhg": _number(at_rest.pao2_median_mmhg if at_rest else None),
-        "rest_pao2_low_mmhg": _number(at_rest.pao2_low_mmhg if at_rest else None),
-        "rest_pao2_high_mmhg": _number(at_rest.pao2_high_mmhg if at_rest else None),
-        "rest_spo2_median_percent": _number(_percent(at_rest.spo2_median if at_rest else None)),
-        "rest_spo2_low_percent": _number(_percent(at_rest.spo2_low if at_rest else None)),
-        "rest_spo2_high_percent": _number(_percent(at_rest.spo2_high if at_rest else None)),
+        "rest_pao2_median_mmhg": _number(pao2.median if pao2 else None),
+        "rest_pao2_low_mmhg": _number(pao2.low if pao2 else None),
+        "rest_pao2_high_mmhg": _number(pao2.high if pao2 else None),
+        "rest_spo2_median_percent": _number(100.0 * spo2.median if spo2 else None),
+        "rest_spo2_low_percent": _number(100.0 * spo2.low if spo2 else None),
+        "rest_spo2_high_percent": _number(100.0 * spo2.high if spo2 else None),
         "predictors_agree": at_rest.agreement if at_rest else "",
         "test_advised": _yes_no(any(part.forecast is not None and part.forecast.test_advised for part in plan.parts)),
         "carbon_dioxide_risk": plan.carbon_dioxide.level,
@@ -123,10 +124,6 @@ def _inert(text: str) -> str:
 
 def _number(value: float | None) -> str:
     return "" if value is None else f"{value:.1f}"
-
-
-def _percent(fraction: float | None) -> float | None:
-    return None if fraction is None else 100.0 * fraction
 
 
 def _yes_no(value: bool) -> str:

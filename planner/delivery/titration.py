@@ -40,6 +40,9 @@ __all__ = [
 ]
 
 
+MUCH_BETTER = 0.25  # share of the spread; less is no reason to change the device, planning assumption
+
+
 @dataclass(frozen=True)
 class Refused:
     """A device that was not tried in this part, and why."""
@@ -200,14 +203,17 @@ def _proposal(curves: Sequence[DoseCurve], target: Target) -> _Proposal:
 
 
 def _best_within_rules(curves: Sequence[DoseCurve], target: Target) -> tuple[DoseCurve, int]:
-    """The curve and place that reach the target in the largest share of the spread within the rules."""
-    best, place, chance = curves[0], 0, -1.0
+    """The curve and place that reach the target in the largest share of the spread within the rules.
+
+    A device earlier in the list is kept unless a later one is better by more than MUCH_BETTER.
+    """
+    found: list[tuple[DoseCurve, int, float]] = []
     for drawn in curves:
         shares = np.where(_within_rules(drawn, target), drawn.chance_reaching, -1.0)
         at = int(np.argmax(shares))
-        if shares[at] > chance:
-            best, place, chance = drawn, at, float(shares[at])
-    return best, place
+        found.append((drawn, at, float(shares[at])))
+    enough = max(chance for _, _, chance in found) - MUCH_BETTER
+    return next((drawn, at) for drawn, at, chance in found if chance >= enough)
 
 
 def _sentence_start(text: str) -> str:

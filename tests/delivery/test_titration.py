@@ -210,6 +210,14 @@ def test_the_first_device_of_the_list_that_reaches_is_proposed():
     assert one(MODERATE, at(2438.4), names[::-1], NO_RISK).model_device_id == "cannula"
 
 
+def test_where_none_reaches_a_later_device_is_named_only_when_it_is_much_better():
+    condition, target = at(2000.0), Target(0.90, 0.92, 0.95, "yes")
+    for names in (["cannula", "pulse_conserver"], ["pulse_conserver", "cannula"]):
+        assert one(MODERATE, condition, names, target).model_device_id == names[0]
+    weak_first = one(SEVERE, at(2438.4, "walking"), ["venturi_24", "cannula"], NO_RISK)
+    assert "4 L/min by nasal cannula" in weak_first.text
+
+
 def test_all_conditions_together_give_what_each_gives_alone():
     conditions = [at(altitude, activity) for altitude in (0.0, 2000.0, 2438.4) for activity in ("rest", "walking")]
     devices = [DEVICES["cannula"], DEVICES["pulse_conserver"]]
