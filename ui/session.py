@@ -122,6 +122,11 @@ class Session(EventDispatcher):
         self._save_soon()
         return ""
 
+    def choose(self, path: str, value: Any, what: str = "") -> str:
+        """Set what was tapped, not typed: always a step of its own to undo."""
+        self._last_edit = ("", 0.0)
+        return self.set(path, value, what)
+
     def fault(self, path: str, sentence: str) -> None:
         """Keep (or with "" forget) that what stands in a field does not fit."""
         if sentence:
@@ -155,10 +160,11 @@ class Session(EventDispatcher):
 
     def _remember(self, path: str, what: str) -> None:
         now = time.monotonic()
-        if self._last_edit[0] != path or now - self._last_edit[1] > SAME_EDIT_S:
+        key = f"{path} {what}"
+        if self._last_edit[0] != key or now - self._last_edit[1] > SAME_EDIT_S:
             self._undo.append((what or _words(path), self.case))
             del self._undo[:-UNDO_STEPS]
-        self._last_edit = (path, now)
+        self._last_edit = (key, now)
 
     # -- answering
 

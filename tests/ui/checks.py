@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 import re
-from collections import Counter
 from functools import cache
 from typing import Any
 
+import numpy as np
 from fontTools.ttLib import TTFont
 from kivy.core.window import Window
 from kivy.metrics import dp
@@ -140,7 +140,10 @@ def weak_texts(driver: Any, least: float = 4.5) -> list[str]:
         box = picture[max(height - y - int(widget.height), 0) : height - y, max(x, 0) : x + int(widget.width), :3]
         if box.size == 0:
             continue
-        (ground, _), *_ = Counter(map(tuple, box.reshape(-1, 3)[::3].tolist())).most_common(1)
+        packed = box.reshape(-1, 3).astype(np.int64) @ (65536, 256, 1)
+        shades, counts = np.unique(packed, return_counts=True)
+        commonest = int(shades[counts.argmax()])
+        ground = (commonest >> 16, commonest >> 8 & 255, commonest & 255)
         ratio = contrast(tuple(widget.color), (*(c / 255 for c in ground), 1.0))
         if ratio < least:
             faults.append(f"{said(widget)} has {ratio:.1f} to 1 on {ground}")

@@ -83,6 +83,13 @@ def test_typing_on_in_one_field_is_one_step_to_undo(session):
     assert session.case.patient.age_years is None
 
 
+def test_taps_one_after_the_other_are_steps_of_their_own(session):
+    session.choose("patient.diagnosis", "copd")
+    session.choose("patient.diagnosis", "asthma")
+    session.undo()
+    assert session.case.patient.diagnosis == "copd"
+
+
 def test_results_are_stale_at_once_and_fresh_when_the_plan_of_this_case_arrives():
     from ui.session import Session
 

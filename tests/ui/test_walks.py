@@ -111,6 +111,23 @@ def test_measurements_are_added_opened_and_removed(new_case):
     assert case(driver).measurements == ()
 
 
+def test_a_reason_to_wait_is_answered_with_its_date_and_the_rest_denied_at_once(new_case):
+    driver = new_case
+    driver.tap("Reasons to wait or not to go")
+    question = driver.field("Was there a stroke within ten days? Enter the date.")
+    driver.tap(question.chips[0])
+    driver.fill(driver.field("When"), "25.11.2026")
+    assert driver.reads("10 days, or 3 where stable. Source: ")
+    answer = case(driver).cautions.answers[0]
+    assert (answer.condition_id, answer.present, answer.happened_on) == ("stroke", True, date(2026, 11, 25))
+    driver.tap("No to all that are not answered")
+    answers = case(driver).cautions.answers
+    assert len(answers) > 20
+    assert [answer.condition_id for answer in answers if answer.present] == ["stroke"]
+    driver.tap(driver.app.shell.undo)
+    assert len(case(driver).cautions.answers) == 1
+
+
 def test_the_reading_follows_a_finger_along_the_ribbon(demo):
     driver = demo
     driver.app.shell.go("trip")

@@ -45,7 +45,9 @@ class Form:
 
     def choice(self, path: str, label: str, options: Sequence[tuple[Any, str]] = YES_NO, **keywords: Any) -> Choice:
         """One of a few at a path; without options yes, no or not known."""
-        choice = Choice(label, options, self.session.get(path), lambda v: self.session.set(path, v, label), **keywords)
+        choice = Choice(
+            label, options, self.session.get(path), lambda v: self.session.choose(path, v, label), **keywords
+        )
         return self.keep(choice, path)
 
     def live(self, signature: Callable[[], Any], fill: Callable[[Live, Form], None], **keywords: Any) -> Live:

@@ -12,6 +12,8 @@ from ui import measures
 from ui.progress import patient_open
 from ui.screens.form import Form, Live
 from ui.screens.measured import Measured, newest
+from ui.screens.patient_cautions import fill_cautions
+from ui.screens.patient_cautions import summary as cautions_summary
 from ui.screens.patient_more import fill_measurements, fill_person, fill_policy, fill_risk
 from ui.screens.screen import Screen
 from ui.widgets.buttons import PrimaryButton, QuietButton
@@ -62,6 +64,7 @@ class PatientScreen(Screen):
             self.lead.text = f"Five entries make a first forecast. Still open: {', '.join(still)}."
         else:
             self.lead.text = "The entries a forecast needs are here. More below narrows it."
+        self.cautions_fold.summary = cautions_summary(self.session.case)
         count = len(self.session.case.measurements)
         self.measurements_fold.summary = f"{count} so far" if count else "None so far"
 
@@ -192,12 +195,14 @@ class PatientScreen(Screen):
 
     def _folds(self) -> None:
         self.measurements_fold = Fold("All measurements", "", self._fill(fill_measurements))
+        self.cautions_fold = Fold("Reasons to wait or not to go", "", self._fill(fill_cautions))
         folds = BoxLayout(orientation="vertical", size_hint_y=None, height=0)
         folds.bind(minimum_height=folds.setter("height"))
         for fold in (
             self.measurements_fold,
             Fold("About this person", "Initials, age, body, function", self._fill(fill_person)),
             Fold("Carbon dioxide in detail", "Past values, alert card", self._fill(fill_risk)),
+            self.cautions_fold,
             Fold("Thresholds and targets", "What this service plans for", self._fill(fill_policy)),
         ):
             folds.add_widget(fold)
