@@ -40,6 +40,7 @@ __all__ = [
 ]
 
 
+TIE = 1e-6
 MUCH_BETTER = 0.25  # share of the spread; less is no reason to change the device, planning assumption
 
 
@@ -184,9 +185,9 @@ def _proposal(curves: Sequence[DoseCurve], target: Target) -> _Proposal:
                 f"{low} in at least {wanted} of the spread."
             )
         return _Proposal(reaching, place, chance, True, text)
-    best, place = _best_within_rules(curves, target)
-    chance = float(best.chance_reaching[place])
     if any((one.proposable & (one.chance_reaching >= target.confidence)).any() for one in curves):
+        best, place = _best_within_rules(curves, target, MUCH_BETTER)
+        chance = float(best.chance_reaching[place])
         text = (
             f"{_sentence_start(best.amount_texts[place])} is the most with which SpO2 is not likely to pass "
             f"{percent(target.ceiling_fraction or 1.0)}. It reaches {low} in {percent(chance)} of the spread, not in "
@@ -194,6 +195,8 @@ def _proposal(curves: Sequence[DoseCurve], target: Target) -> _Proposal:
             "assessment are advised before more is given."
         )
         return _Proposal(best, place, chance, False, text)
+    best, place = _best_within_rules(curves, target, 0.0)
+    chance = float(best.chance_reaching[place])
     text = (
         f"No device and step of the list, up to {MOST_ADVISED_L_MIN:g} L/min, reaches {low} in {wanted} of the spread. "
         f"The most is reached with {best.amount_texts[place]}, in {percent(chance)} of the spread. "
@@ -202,17 +205,18 @@ def _proposal(curves: Sequence[DoseCurve], target: Target) -> _Proposal:
     return _Proposal(None, 0, chance, False, text)
 
 
-def _best_within_rules(curves: Sequence[DoseCurve], target: Target) -> tuple[DoseCurve, int]:
+def _best_within_rules(curves: Sequence[DoseCurve], target: Target, margin: float) -> tuple[DoseCurve, int]:
     """The curve and place that reach the target in the largest share of the spread within the rules.
 
-    A device earlier in the list is kept unless a later one is better by more than MUCH_BETTER.
+    A device earlier in the list is kept unless a later one is better by more than the margin. Of equal shares, such as
+    none at all, the amount with the highest SpO2 is taken.
     """
     found: list[tuple[DoseCurve, int, float]] = []
     for drawn in curves:
-        shares = np.where(_within_rules(drawn, target), drawn.chance_reaching, -1.0)
+        shares = np.where(_within_rules(drawn, target), drawn.chance_reaching + TIE * drawn.spo2_median, -1.0)
         at = int(np.argmax(shares))
         found.append((drawn, at, float(shares[at])))
-    enough = max(chance for _, _, chance in found) - MUCH_BETTER
+    enough = max(chance for _, _, chance in found) - margin
     return next((drawn, at) for drawn, at, chance in found if chance >= enough)
 
 
