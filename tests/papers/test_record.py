@@ -7,18 +7,29 @@ from tests.papers.conftest import demo_case
 from tests.papers.geometry import beyond_margins, overlaps, read
 
 
+ENDS = ("median", "low", "high")
+
+
 def shown(desk):
     _, pages = read(pdf_bytes(lay_record(desk)))
     return " ".join(pages)
 
 
+def in_chosen_unit(mmhg, unit):
+    """A pressure as printed: kPa to one decimal, mmHg whole; no trailing zero."""
+    return f"{mmhg * 0.1333223874:.1f}".removesuffix(".0") if unit == "kPa" else f"{mmhg:.0f}"
+
+
 def test_every_forecast_number_is_the_plans(demo):
     text = shown(demo)
+    unit = demo.case.display.pressure
     for part in demo.plan.parts:
         for activity in part.forecast.activities if part.forecast else ():
             spo2 = activity.spo2
             if spo2 is not None and not activity.below_model_range:
                 assert f"{spo2.median:.0%} ({spo2.low * 100:.0f} to {spo2.high * 100:.0f})".replace("%", " %") in text
+                value, low, high = (in_chosen_unit(getattr(activity.pao2_mmhg, end), unit) for end in ENDS)
+                assert f"{value} {unit} ({low} to {high})" in text
 
 
 def test_every_method_is_there_with_source_formula_and_people(demo):
