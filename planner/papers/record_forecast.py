@@ -20,7 +20,7 @@ if TYPE_CHECKING:
     from planner.results import PartPlan
 
 CHART_TEXT_PT = 8.5
-LABEL_SHARE = 0.5
+LABEL_SHARE = 0.42
 THIN_AIR_MMHG = 124.0  # inspired PO2 at about 1,500 m: what lies below is in the table of all parts only
 KINDS = {"challenge": "measured"}
 
@@ -55,10 +55,12 @@ def write_summary(flow: Flow, desk: Desk) -> None:
             )
     if rows:
         flow.table(columns, rows)
+    advised: dict[str, list[str]] = {}
     for part in desk.plan.parts:
         if part.forecast is not None and part.forecast.test_advised:
-            lead = say("forecast.test_advised_part", part=desk.part_name(part.span.part_id))
-            flow.note(" ".join(part.forecast.why), lead=lead)
+            advised.setdefault(" ".join(part.forecast.why), []).append(desk.part_name(part.span.part_id))
+    for why, names in advised.items():
+        flow.note(why, lead=say("forecast.test_advised_part", part=", ".join(dict.fromkeys(names))))
 
 
 def write_forecast(flow: Flow, desk: Desk) -> None:
@@ -109,7 +111,7 @@ def write_methods(flow: Flow, desk: Desk) -> None:
         inputs = [
             say("forecast.inputs_value", name=_named(desk, name), value=value) for name, value in predictor.inputs
         ]
-        method = f"{predictor.label}\n{predictor.source}"
+        method = say("forecast.method", label=predictor.label, detail=predictor.detail, source=predictor.source)
         if not predictor.applies:
             inputs.append(say("forecast.not_applied", reasons=" ".join(predictor.reasons)))
         rows.append(Row((method, predictor.population, predictor.formula, "\n".join(inputs)), not predictor.applies))
@@ -174,7 +176,14 @@ def _chart_row(desk: Desk, predictor: PredictorResult) -> ForecastRow:
         for v in (predictor.pao2_mmhg, predictor.low_mmhg, predictor.high_mmhg)
     ]
     value, low, high = shown
-    text = desk.say("numbers.not_worked_out") if predictor.pao2_mmhg is None else q.pressure_number(predictor.pao2_mmhg)
+    text = desk.say("numbers.not_worked_out")
+    if predictor.pao2_mmhg is not None and predictor.low_mmhg is not None and predictor.high_mmhg is not None:
+        text = desk.say(
+            "numbers.spread",
+            value=q.pressure_number(predictor.pao2_mmhg),
+            low=q.pressure_number(predictor.low_mmhg),
+            high=q.pressure_number(predictor.high_mmhg),
+        )
     sublabel = predictor.detail
     if not predictor.applies and predictor.reasons:
         sublabel = desk.say("forecast.row_reason", detail=predictor.detail, reason=predictor.reasons[0])

@@ -6,7 +6,6 @@ from planner.papers.record import lay_record, make_record
 from tests.papers.conftest import demo_case
 from tests.papers.geometry import beyond_margins, overlaps, read
 
-
 ENDS = ("median", "low", "high")
 
 
