@@ -7,6 +7,7 @@ measured by a function the painter supplies.
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Literal
@@ -31,6 +32,8 @@ Anchor = Literal["left", "middle", "right"]
 Dash = Literal["solid", "dashed", "dotted"]
 Shape = Literal["dot", "ring", "diamond", "cross"]
 STRAIGHT = 1e-3  # square units of the drawing; a bend smaller than this cannot be seen
+# A space between a number and its unit, where no line may break.
+_BEFORE_UNIT = re.compile(r"(?<=\d) (?=(?:%|°[CF]|(?:kPa|mmHg|ft|m|L|bar|psi|h|min|d|kg|lb|Wh|W|g)\b))")
 Measure = Callable[[str, float], float]
 """Width of a text at a font size."""
 
@@ -176,9 +179,9 @@ def without_straight_points(x: Array, *curves: Array) -> NDArray[np.intp]:
 def wrap(text: str, size: float, width: float, measure: Measure) -> list[str]:
     """Lines of a text that are no wider than `width`; a word that alone is wider is broken, never cut off."""
     lines: list[str] = []
-    for paragraph in text.split("\n"):
+    for paragraph in with_units_kept(text).split("\n"):
         line = ""
-        for word in paragraph.split():
+        for word in filter(None, paragraph.split(" ")):
             trial = f"{line} {word}" if line else word
             if measure(trial, size) <= width:
                 line = trial
@@ -189,6 +192,11 @@ def wrap(text: str, size: float, width: float, measure: Measure) -> list[str]:
             lines.extend(full)
         lines.append(line)
     return lines
+
+
+def with_units_kept(text: str) -> str:
+    """The text with no place for a line to break between a number and its unit."""
+    return _BEFORE_UNIT.sub("\u00a0", text)
 
 
 def fitting(candidates: Sequence[str], size: float, width: float, measure: Measure) -> str | None:

@@ -6,12 +6,11 @@ Text from a case is plain text here: no markup is read from it. Letters the font
 
 from __future__ import annotations
 
-import re
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Literal
 
-from planner.charts.layout import Box, Drawing, Item, Role, Text, rule
+from planner.charts.layout import Box, Drawing, Item, Role, Text, rule, with_units_kept
 from planner.papers import fonts
 from planner.papers.sheet import Panel, moved
 
@@ -19,8 +18,6 @@ LEADING = 1.32
 CELL_GAP = 8.0
 ROW_PAD = 3.0
 TIGHT_PAD = 0.8
-# A space between a number and its unit, where no line may break.
-BEFORE_UNIT = re.compile(r"(?<=\d) (?=(?:%|°[CF]|(?:kPa|mmHg|ft|m|L|bar|psi|h|min|d|kg|lb|Wh|W|g)\b))")
 Align = Literal["left", "right"]
 
 
@@ -272,7 +269,7 @@ class Flow:
 def _words(runs: list[Run]) -> list[tuple[str, bool, bool]]:
     words: list[tuple[str, bool, bool]] = []
     for text, bold in runs:
-        whole = BEFORE_UNIT.sub("\u00a0", fonts.printable(text))
+        whole = with_units_kept(fonts.printable(text))
         for number, line in enumerate(whole.split("\n")):
             starts = number > 0
             for word in line.split(" "):

@@ -35,6 +35,10 @@ def test_wrapped_lines_are_never_wider_and_lose_no_letter(text, letters):
     assert "".join(lines).replace(" ", "") == text.replace(" ", "").replace("\n", "")
 
 
+def test_a_number_stays_with_its_unit_when_a_text_wraps():
+    assert wrap("outside 2286 to 2591 m.", 1.0, 22.0, measure) == ["outside 2286 to", "2591\u00a0m."]
+
+
 def test_the_longest_wording_that_fits_is_taken_or_none():
     assert fitting(("Check-in", "Wait", "W"), 1.0, 5.0, measure) == "Wait"
     assert fitting(("Check-in", "Wait"), 1.0, 3.0, measure) is None
