@@ -78,30 +78,32 @@ def report_text(found: Outcomes) -> str:
     """The report as plain text, whole sentences and a unit beside every number."""
     lines = [
         "Predicted against measured, own cases. Estimate only. Confirm with prescriber.",
-        f"{found.cases} cases with an outcome; {found.without_outcome} without one were left out.",
+        f"Cases with an outcome: {found.cases}. Left out without one: {found.without_outcome}.",
     ]
     lines += [f"Line {one.number} was left out: {one.reason}" for one in found.bad]
     lines.append("")
     lines += _agreement_lines("Usual SpO2 on air", agreement(found.on_air))
     lines += _agreement_lines("Usual SpO2 on the decided oxygen", agreement(found.on_oxygen))
     if found.not_comparable:
-        lines.append(f"{found.not_comparable} recorded parts have no SpO2 or no prediction to set beside it.")
+        lines.append(
+            f"Recorded parts without an SpO2 or without a prediction to set beside it: {found.not_comparable}."
+        )
     lines.append(
         f"Run-outs: {found.ran_out} recorded, {found.ran_out_foreseen} of them foreseen as more likely than accepted. "
         f"In {found.lasted} parts the oxygen lasted; in {found.lasted_but_feared} of them a run-out had been foreseen."
     )
-    lines.append(f"Symptoms were recorded in {found.symptoms} parts.")
+    lines.append(f"Parts with symptoms: {found.symptoms}.")
     if found.late_min:
         ordered = sorted(found.late_min)
         lines.append(
-            f"Delays were recorded in {len(ordered)} parts: median {ordered[len(ordered) // 2]:.0f} min, "
+            f"Delays were recorded in {_counted(len(ordered), 'part')}: median {ordered[len(ordered) // 2]:.0f} min, "
             f"longest {ordered[-1]:.0f} min."
         )
     lines.append("")
     pairs = len(found.on_air) + len(found.on_oxygen)
     if pairs < ENOUGH_PAIRS:
         lines.append(
-            f"Few cases prove little: {pairs} comparisons are fewer than the {ENOUGH_PAIRS} that begin to tell."
+            f"Few cases prove little: there are {_counted(pairs, 'comparison')}, and {ENOUGH_PAIRS} begin to tell."
         )
     lines.append("Recorded outcomes are a chosen few: those who did badly or well are recorded more often.")
     return "\n".join(lines)
@@ -150,7 +152,7 @@ def _agreement_lines(title: str, found: Agreement) -> list[str]:
     if found.bias is None or found.share_inside is None:
         return [f"{title}: no comparison."]
     said = [
-        f"{title}: {found.count} comparisons.",
+        f"{title}: {_counted(found.count, 'comparison')}.",
         f"  Bias (predicted less measured): {found.bias:+.1f} points.",
     ]
     if found.lower_limit is not None and found.upper_limit is not None:
@@ -163,3 +165,7 @@ def _agreement_lines(title: str, found: Agreement) -> list[str]:
         f"{100 * (found.inside_high or 0.0):.0f} %)."
     )
     return said
+
+
+def _counted(count: int, word: str) -> str:
+    return f"{count} {word}" if count == 1 else f"{count} {word}s"
