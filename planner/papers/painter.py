@@ -5,7 +5,9 @@ Legible in grey print: lightness alone tells the roles apart.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from io import BytesIO
+from itertools import groupby
 
 from reportlab.lib.colors import Color, HexColor  # type: ignore[import-untyped]
 from reportlab.pdfgen.canvas import Canvas  # type: ignore[import-untyped]
@@ -54,9 +56,33 @@ def paint(canvas: Canvas, drawing: Drawing, left: float, bottom: float) -> None:
     canvas.translate(left, bottom)
     canvas.setLineCap(0)
     canvas.setLineJoin(1)
-    for item in drawing.items:
-        _paint_item(canvas, item)
+    for are_texts, items in groupby(drawing.items, key=lambda item: isinstance(item, Text)):
+        if are_texts:
+            _texts(canvas, [item for item in items if isinstance(item, Text)])
+        else:
+            for item in items:
+                _paint_item(canvas, item)
     canvas.restoreState()
+
+
+def _texts(canvas: Canvas, texts: Sequence[Text]) -> None:
+    """A run of texts as one text object; font and colour are set only where they change."""
+    run = canvas.beginText()
+    font, role = None, None
+    for text in texts:
+        wanted = (fonts.BOLD if text.bold else fonts.REGULAR, text.size)
+        if wanted != font:
+            run.setFont(*wanted)
+            font = wanted
+        if text.role != role:
+            run.setFillColor(COLOURS[text.role])
+            role = text.role
+        words = fonts.printable(text.text)
+        wide = 0.0 if text.anchor == "left" else fonts.width(words, text.size, text.bold)
+        left = text.x - (wide if text.anchor == "right" else wide / 2)
+        run.setTextOrigin(left, text.y - BASELINE * text.size)
+        run.textOut(words)
+    canvas.drawText(run)
 
 
 def _paint_item(canvas: Canvas, item: Item) -> None:
@@ -75,11 +101,6 @@ def _paint_item(canvas: Canvas, item: Item) -> None:
             canvas.rect(item.x, item.y, item.width, item.height, stroke=0, fill=1)
         case Marker():
             _marker(canvas, item, colour)
-        case Text():
-            canvas.setFillColor(colour)
-            canvas.setFont(fonts.BOLD if item.bold else fonts.REGULAR, item.size)
-            draw = {"left": canvas.drawString, "middle": canvas.drawCentredString, "right": canvas.drawRightString}
-            draw[item.anchor](item.x, item.y - BASELINE * item.size, fonts.printable(item.text))
 
 
 def _path(canvas: Canvas, points: Array, *, closed: bool) -> None:
