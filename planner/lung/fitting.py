@@ -61,6 +61,8 @@ EXPECTED_FALL_MMHG = 1.8  # mean of the published falls of PaCO2, sea level to a
 
 
 NARROWING_DRAWS = 400
+LEAST_NARROWING_MMHG = 0.3  # less cannot be told from the choice of draws
+LEAST_MIXTURE_STEP = 0.01  # a challenge test nearer than this to what was breathed is none
 
 
 @dataclass(frozen=True)
@@ -214,7 +216,7 @@ def narrowing(
     found = []
     for name, more_readings, more_person in _with_one_more(ordered, person, condition, now):
         then = _spread_mmhg(fit_lung(more_readings, more_person, draws=NARROWING_DRAWS, seed=seed), condition)
-        if then < spread_now:
+        if then < spread_now - LEAST_NARROWING_MMHG:
             found.append(Narrowing(name, spread_now, then))
     return tuple(sorted(found, key=lambda one: one.spread_then_mmhg))
 
@@ -243,7 +245,7 @@ def _with_one_more(
     if person.skin is None and any(one.spo2_fraction is not None for one in ordered):
         yield "the skin pigmentation", ordered, replace(person, skin="light")
     mixture = condition.inspired_po2_mmhg / (base.barometric_mmhg - WATER_VAPOUR_MMHG)
-    if not any(one.challenge for one in ordered) and 0.10 <= mixture < base.fio2:
+    if not any(one.challenge for one in ordered) and 0.10 <= mixture < base.fio2 - LEAST_MIXTURE_STEP:
         there = now.arterial(condition.inspired_po2_mmhg, base.barometric_mmhg)
         test = LungReading(
             base.barometric_mmhg,

@@ -126,6 +126,39 @@ def test_slow_diffusion_lowers_interstitial_disease_at_altitude_only():
     assert 2.0 < middle(copd_twin, *CABIN) - middle(fibrosis, *CABIN) < 6.0
 
 
+def test_measured_on_oxygen_slow_diffusion_still_counts_from_air_at_sea_level():
+    gas = LungReading(760.0, 0.35, pao2_mmhg=95.0, paco2_mmhg=40.0, age_days=2.0)
+    fibrosis = fit_lung([gas], Person("interstitial"), draws=400)
+    without = dataclasses.replace(fibrosis, diffusing_capacity=None)
+    assert np.array_equal(fibrosis.arterial(149.23, 760.0).po2_mmhg, without.arterial(149.23, 760.0).po2_mmhg)
+
+
+def test_with_ventilation_lost_each_draw_is_still_its_solved_lung(copd):
+    ours = copd.arterial(0.28 * 713.0, 760.0, ventilation_depression=0.4)
+    solved = exchange(
+        0.28 * 713.0,
+        760.0,
+        ours.paco2_mmhg[:, 0],
+        copd.log_sd,
+        copd.shunt,
+        haemoglobin_g_dl=14.5,
+        oxygen_uptake_l_min=0.25,
+        respiratory_quotient=0.82,
+        cardiac_output_l_min=5.2,
+        nodes=40,
+    )
+    error = copd.structural_z * 3.0 * model_distance(149.2309, 0.28 * 713.0)
+    assert ours.po2_mmhg[:, 0] - error == pytest.approx(solved.po2_mmhg, abs=0.7)
+
+
+def test_blood_that_cannot_carry_what_walking_needs_is_below_range():
+    gas = LungReading(760.0, 0.2093, pao2_mmhg=60.0, paco2_mmhg=40.0, age_days=2.0)
+    anaemic = fit_lung([gas], Person("copd", haemoglobin_g_dl=5.0), draws=100)
+    walking = anaemic.arterial(*CABIN, activity="walking")
+    assert walking.below_range.all()
+    assert (walking.po2_mmhg == 25.0).all()
+
+
 def test_walking_strains_slow_diffusion_twice():
     # 19 % of the gradient at rest, 40 % on exercise in pulmonary fibrosis (Agusti 1991).
     rest, walking = ({}, {"activity": "walking"})

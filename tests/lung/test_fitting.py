@@ -144,6 +144,14 @@ def test_a_challenge_in_a_high_laboratory_counts_at_that_laboratorys_pressure():
     assert band(high)[1] > band(low)[1] + 2.0
 
 
+def test_a_test_in_very_thin_air_is_read_though_some_carbon_dioxide_would_leave_no_oxygen():
+    # 15 % at 580 mmHg: possible with a PaCO2 up to 45 mmHg, not with the highest that an unmeasured one might be.
+    shown = LungReading(580.0, 0.15, spo2_fraction=0.70, age_days=1.0, challenge=True)
+    fitted = fit_lung([shown], COPD)
+    assert fitted.paco2_mmhg.max() < 46.0
+    assert np.median(fitted.arterial(0.15 * 533.0, 580.0).saturation) == pytest.approx(0.70, abs=0.05)
+
+
 def test_a_gas_taken_on_oxygen_is_understood_as_such():
     on_oxygen = fit_lung([dataclasses.replace(GAS, fio2=0.28)], COPD)
     assert band(on_oxygen, (0.28 * 713.0, 760.0))[1] == pytest.approx(72.4, abs=0.6)
@@ -276,3 +284,8 @@ def test_what_a_gas_would_do_is_what_the_gas_then_does():
 def test_with_everything_known_only_a_challenge_is_left_to_ask_for():
     left = narrowing([GAS], COPD, Condition(*CABIN))
     assert [one.input_name for one in left] == ["a hypoxic challenge test with a blood gas"]
+
+
+def test_what_would_not_narrow_the_forecast_is_not_asked_for():
+    # At the very place of the gas its own error is the spread; the carbon dioxide there adds nothing.
+    assert narrowing([dataclasses.replace(GAS, paco2_mmhg=None)], COPD, Condition(*SEA_LEVEL)) == ()
