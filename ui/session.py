@@ -187,6 +187,12 @@ class Session(EventDispatcher):
             self.stale = False
             self.plan = plan
 
+    def stop_working(self) -> None:
+        """Give up what is being worked out; what is there stays, and the next edit asks again."""
+        if self._worker is not None:
+            self._worker.cancel()
+        self.working_on = ""
+
     # -- keeping
 
     def _save_soon(self) -> None:

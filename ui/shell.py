@@ -25,6 +25,7 @@ from ui.widgets.stepbar import StepBar
 from ui.widgets.text import Text, plain
 
 SIDE_DP = 268
+PATIENCE_S = 1.0
 
 
 class Shell(BoxLayout):
@@ -70,12 +71,13 @@ class Shell(BoxLayout):
         said = BoxLayout(size_hint_y=None, height=0, padding=(dp(MARGIN_DP), 0))
         said.add_widget(self.said)
         said.bind(minimum_height=said.setter("height"))
+        self.working = Working(self.session)
         self.work = BoxLayout()
         self.strip = CautionStrip()
         if self.wide:
             self.orientation = "horizontal"
             side = BoxLayout(orientation="vertical", size_hint_x=None, width=dp(SIDE_DP))
-            for widget in (header, said, self.bar, Widget()):
+            for widget in (header, said, self.bar, Widget(), self.working):
                 side.add_widget(widget)
             edge = Widget(size_hint_x=None, width=max(1, dp(1)))
             paint_ground(edge, theme.line)
@@ -86,7 +88,7 @@ class Shell(BoxLayout):
                 self.add_widget(widget)
         else:
             self.orientation = "vertical"
-            for widget in (header, said, self.bar, self.work, self.strip):
+            for widget in (header, said, self.bar, self.work, self.working, self.strip):
                 self.add_widget(widget)
         self._open_step()
 
@@ -125,6 +127,7 @@ class Shell(BoxLayout):
         self.units.text = f"{case.display.pressure} {case.display.altitude}"
         self.undo.disabled = not self.session.can_undo
         self.said.text = plain(self.session.said)
+        self.working.show()
         self.bar.say(step_states(self.session))
 
     # -- keys
@@ -146,3 +149,30 @@ class Shell(BoxLayout):
                 self.leave()
             return True
         return False
+
+
+class Working(BoxLayout):
+    """What is being worked out, with a way to stop it, once it takes more than a second."""
+
+    def __init__(self, session: Any) -> None:
+        super().__init__(size_hint_y=None, height=0, padding=(dp(MARGIN_DP), 0, space(2), 0))
+        self.session = session
+        self.words = Text("", role="label", tone="muted", pos_hint={"center_y": 0.5})
+        self._stop = QuietButton("Stop", session.stop_working, pos_hint={"center_y": 0.5})
+        self._due: Any = None
+        self.bind(minimum_height=self.setter("height"))
+
+    def show(self) -> None:
+        """Show, change or take away the line."""
+        self.words.text = plain(self.session.working_on)
+        if self.session.working_on and self._due is None:
+            self._due = Clock.schedule_once(self._appear, PATIENCE_S)
+        elif not self.session.working_on and self._due is not None:
+            self._due.cancel()
+            self._due = None
+            self.clear_widgets()
+
+    def _appear(self, _dt: float) -> None:
+        if not self.children:
+            self.add_widget(self.words)
+            self.add_widget(self._stop)

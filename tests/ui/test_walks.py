@@ -312,6 +312,29 @@ def test_the_dark_theme_is_switched_on_the_display_page(demo):
         theme.use("light")
 
 
+def test_long_work_is_shown_after_a_second_and_can_be_stopped(opened):
+    import threading
+    import time
+
+    gate = threading.Event()
+
+    def planner(case, *, through, on_progress, cancelled, **_):
+        on_progress("Choosing cylinders", 0.4)
+        while not cancelled() and not gate.is_set():
+            time.sleep(0.01)
+        return "plan"
+
+    driver = opened(planner=planner)
+    driver.tap("New case")
+    driver.until(lambda: driver.app.session.working_on != "")
+    assert not driver.reads("Choosing cylinders")
+    driver.until(lambda: driver.reads("Choosing cylinders, 40 %"))
+    driver.tap("Stop")
+    driver.frames(4)
+    assert not driver.reads("Choosing cylinders")
+    assert driver.app.session.plan is None
+
+
 def test_the_keys_used_here_are_kivys():
     from kivy.core.window import Keyboard
 

@@ -1,0 +1,141 @@
+"""Speed of the screens against bare Kivy in the same run: python tests/benchmarks/bench_screens.py
+
+Cold start: process start to the first drawn frame, and to a usable list of cases, as a ratio to a program that shows
+one empty Kivy window. Typing: a key to the drawn frame. Drag: one step along the ribbon, drawn. Software OpenGL, no
+display.
+"""
+
+from __future__ import annotations
+
+import os
+import statistics
+import subprocess
+import sys
+import tempfile
+import time
+from pathlib import Path
+
+ROOT = Path(__file__).parents[2]
+FRAME_MS = 1000 / 60
+ENVIRONMENT = {
+    "KIVY_NO_ARGS": "1", "KIVY_NO_CONSOLELOG": "1", "KIVY_NO_FILELOG": "1", "KIVY_NO_CONFIG": "1",
+    "KIVY_METRICS_DENSITY": "1", "KIVY_METRICS_FONTSCALE": "1", "SDL_VIDEODRIVER": "offscreen",
+    "KIVY_CLIPBOARD": "sdl2", "KIVY_IMAGE": "sdl2", "KIVY_TEXT": "sdl2", "KIVY_WINDOW": "sdl2",
+}  # fmt: skip
+SIZE = "from kivy.config import Config; Config.set('graphics','width','390'); Config.set('graphics','height','844')\n"
+END = """
+import os, sys
+from kivy.core.window import Window
+def flip(*_):
+    {condition}
+    import resource
+    sys.stdout.write(str(resource.getrusage(resource.RUSAGE_SELF).ru_maxrss)); sys.stdout.flush()
+    os._exit(0)
+Window.bind(on_flip=flip)
+"""
+BARE = SIZE + END.format(condition="") + "from kivy.app import App\nfrom kivy.uix.widget import Widget\n"
+BARE += "A = type('A', (App,), {'build': lambda self: Widget()}); A().run()\n"
+FIRST = SIZE + END.format(condition="") + "import sys, pathlib\nfrom ui.app import PlannerApp\n"
+FIRST += "PlannerApp(data_folder=pathlib.Path(sys.argv[1])).run()\n"
+USABLE = SIZE + END.format(condition="if not getattr(App.get_running_app(), 'cases', None): return").replace(
+    "import os, sys", "import os, sys\nfrom kivy.app import App"
+)
+USABLE += (
+    "import sys, pathlib\nfrom ui.app import PlannerApp\nPlannerApp(data_folder=pathlib.Path(sys.argv[1])).run()\n"
+)
+
+
+def run(code: str) -> tuple[float, float]:
+    """Seconds and MiB of one process until its frame."""
+    with tempfile.TemporaryDirectory() as folder:
+        program = Path(folder) / "program.py"
+        program.write_text(code)
+        environment = os.environ | ENVIRONMENT | {"KIVY_HOME": folder, "PYTHONPATH": str(ROOT)}
+        begun = time.perf_counter()
+        ended = subprocess.run(
+            [sys.executable, program, folder],
+            cwd=ROOT,
+            env=environment,
+            stdout=subprocess.PIPE,
+            text=True,
+            check=True,
+        )
+        return time.perf_counter() - begun, float(ended.stdout.split()[-1]) / 1024
+
+
+def cold_start(times: int = 7) -> dict[str, tuple[float, float]]:
+    """Median seconds and MiB of each, taken in turn so that the machine's drift hits all alike."""
+    measured: dict[str, list[tuple[float, float]]] = {"bare": [], "first frame": [], "usable": []}
+    for code in (BARE, FIRST, USABLE):
+        run(code)
+    for _ in range(times):
+        for name, code in (("bare", BARE), ("first frame", FIRST), ("usable", USABLE)):
+            measured[name].append(run(code))
+    return {
+        name: (statistics.median(s for s, _ in runs), statistics.median(m for _, m in runs))
+        for name, runs in measured.items()
+    }
+
+
+def on_screen() -> dict[str, tuple[float, float]]:
+    """Median and 95th percentile, ms, of a typed digit and of a drag step, each to its drawn frame."""
+    os.environ |= ENVIRONMENT | {"KIVY_HOME": tempfile.mkdtemp()}
+    sys.path.insert(0, str(ROOT))
+    from kivy.config import Config
+
+    Config.set("graphics", "width", "390")
+    Config.set("graphics", "height", "844")
+    Config.set("graphics", "maxfps", "0")
+    from kivy.base import EventLoop
+    from kivy.core.window import Window
+
+    from tests.ui.driver import BACKSPACE, Driver, Touch, place
+    from ui.app import PlannerApp
+
+    driver = Driver(PlannerApp(data_folder=Path(tempfile.mkdtemp())))
+    driver.app.cases.open_demo()
+    driver.frames(10)
+    driver.tap(driver.app.shell.screen.form._shown[1][0].form._shown[0][0].input)
+    typed = []
+    for number in range(60):
+        driver.key(BACKSPACE)
+        begun = time.perf_counter()
+        Window.dispatch("on_textinput", str(number % 10))
+        EventLoop.idle()
+        typed.append(time.perf_counter() - begun)
+    driver.app.shell.go("trip")
+    driver.frames(10)
+    plot = driver.app.shell.screen.ribbon.plot
+    x, y = plot.to_window(plot.x, plot.center_y)
+    touch = Touch(x + 20, y)
+    EventLoop.post_dispatch_input("begin", touch)
+    dragged = []
+    for step in range(120):
+        begun = time.perf_counter()
+        touch.move(place(x + 20 + step * 2.5, y))
+        EventLoop.post_dispatch_input("update", touch)
+        EventLoop.idle()
+        dragged.append(time.perf_counter() - begun)
+    return {
+        name: (1000 * statistics.median(times), 1000 * statistics.quantiles(times, n=20)[-1])
+        for name, times in (("typed digit", typed), ("drag step", dragged))
+    }
+
+
+def main() -> None:
+    """Print the table."""
+    starts = cold_start()
+    bare_s, bare_mib = starts["bare"]
+    print("what | here | bare Kivy | ratio | goal")
+    for name, goal in (("first frame", 1.35), ("usable", 2.4)):
+        seconds = starts[name][0]
+        print(f"{name} | {seconds:.2f} s | {bare_s:.2f} s | {seconds / bare_s:.2f} | {goal}")
+    mib = starts["usable"][1]
+    print(f"peak memory | {mib:.0f} MiB | {bare_mib:.0f} MiB | {mib / bare_mib:.2f} | 1.35")
+    print("what | median | 95th percentile | goal")
+    for name, (median, tail) in on_screen().items():
+        print(f"{name} | {median:.1f} ms | {tail:.1f} ms | {FRAME_MS:.1f} and {2 * FRAME_MS:.1f} ms")
+
+
+if __name__ == "__main__":
+    main()
