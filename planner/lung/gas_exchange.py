@@ -25,7 +25,7 @@ from planner.air.ranges import Array, FloatOrArray, Numbers, require_within
 from planner.errors import InputError
 from planner.lung.unit_blood import BloodState, blood_state
 
-NODES = 10  # units of a sample: within 0.25 mmHg of many units up to a log SD of 1.2
+NODES = 10  # units of a sample: within 0.3 mmHg of many units up to a log SD of 1.2
 CONVERGED_NODES = 40  # of the scalar front door
 K_MMHG_DL_PER_ML = 760.0 * 310.15 / 273.15 / 100.0  # 8.63: volume at body temperature and pressure from content
 
