@@ -68,14 +68,13 @@ def duration_min(
     if not 0.0 <= reserve_fraction < 1.0:
         raise InputError("reserve_fraction", f"A reserve of {reserve_fraction:g} is outside 0 to below 1.")
     usable = np.maximum(contents_l - residual_l, 0.0) * (1.0 - reserve_fraction)
-    minutes = usable / flow_l_min
-    return minutes if np.ndim(minutes) else float(minutes)
+    minutes: Numbers = usable / flow_l_min  # type: ignore[assignment]
+    return minutes
 
 
 def oxygen_mass_kg(contents_l: Numbers) -> Numbers:
     """Mass of the gas: 1.354 g per litre at 15 degC and 1 atm."""
-    result: Numbers = contents_l * G_PER_L / 1000.0  # type: ignore[assignment]
-    return result
+    return contents_l * G_PER_L / 1000.0
 
 
 def textbook_minutes(factor_l_per_psi: float, gauge_bar: float, flow_l_min: float, residual_bar: float = 0.0) -> float:

@@ -1,0 +1,109 @@
+"""Fire, smoking, heat, carriage: what is said wherever oxygen is carried, and what this set adds."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from planner.kit.legs import Leg, Power
+from planner.kit.selection import Selection
+from planner.kit.sizes import AIR_GROSS_LIMIT_KG, CONSENT_WH, NO_CONSENT_WH, CylinderSize
+
+NEAR_LIMIT_KG = 0.4
+
+
+@dataclass(frozen=True)
+class KitCaution:
+    """A caution with its source; lead is the few words that stand bold."""
+
+    lead: str
+    text: str
+    source: str
+
+
+FIRE = KitCaution(
+    "No smoking or flames within 3 m.",
+    "No e-cigarettes, no heaters nearby, no oil or petroleum cream. Turn oxygen off when it is not worn: fabric and "
+    "hair soak it up and burn fast.",
+    "BTS home oxygen guideline 2015; the 3 m from memory",
+)
+CAR = KitCaution(
+    "In the car.",
+    "Secure cylinders so that they cannot roll, open a window, and do not leave them in a parked car: they must not "
+    "get hotter than 52 °C.",
+    "Gas industry leaflets on carriage by private persons; 29 CFR 1910.101 with CGA P-1 (52 °C)",
+)
+AIRCRAFT = KitCaution(
+    "On aircraft.",
+    "No liquid oxygen. Own cylinders only with the carrier's written consent, at most 5 kg each with gas; some "
+    "carriers allow none. Ask each carrier, on both ways.",
+    "IATA/ICAO dangerous goods rules, table 2.3.A; 14 CFR 121.574",
+)
+CHECK = KitCaution(
+    "Before leaving.",
+    "Read every gauge, try the regulator and the alarm, pack a spare cannula and the plug adapter.",
+    "Common practice",
+)
+
+
+def kit_cautions(
+    legs: Sequence[Leg],
+    found: Selection | None,
+    sizes: Sequence[CylinderSize],
+    power: Power | None,
+    batteries: int,
+) -> tuple[KitCaution, ...]:
+    """The cautions for this trip and this set."""
+    cautions = [FIRE]
+    if any(not leg.flight for leg in legs):
+        cautions.append(CAR)
+    if any(leg.flight for leg in legs):
+        cautions.append(AIRCRAFT)
+    for size in sizes:
+        if abs(size.gross_kg - AIR_GROSS_LIMIT_KG) < NEAR_LIMIT_KG and any(leg.flight for leg in legs):
+            cautions.append(
+                KitCaution(
+                    f"{size.name} is near 5 kg.",
+                    f"With gas, valve and regulator it is about {size.gross_kg:.1f} kg by remembered masses. Weigh it "
+                    "before asking the carrier.",
+                    "IATA/ICAO dangerous goods rules, table 2.3.A",
+                )
+            )
+    if found is not None and found.concentrator and power is not None:
+        cautions.append(_batteries(power, batteries))
+        alone = [leg.name for leg, use in zip(legs, found.uses, strict=True) if set(use.hours_by) == {"battery"}]
+        if alone:
+            cautions.append(
+                KitCaution(
+                    "No second source.",
+                    f"In {', '.join(alone)} everything hangs on the concentrator and its batteries. Ask whether the "
+                    "carrier has oxygen in an emergency, and who can help.",
+                    "Planning rule of this program",
+                )
+            )
+    cautions.append(CHECK)
+    return tuple(cautions)
+
+
+def _batteries(power: Power, count: int) -> KitCaution:
+    source = "IATA/ICAO rules and 49 CFR 175.10(a)(18) (from memory); 14 CFR 382.133 for 150 %"
+    if power.nominal_wh > CONSENT_WH:
+        return KitCaution(
+            "Batteries too large for aircraft.",
+            f"A pack of {power.nominal_wh:.0f} Wh is above 160 Wh and is not carried at all.",
+            source,
+        )
+    if power.nominal_wh > NO_CONSENT_WH:
+        spare = max(count - power.inside, 0)
+        return KitCaution(
+            "Batteries need consent.",
+            f"Packs of {power.nominal_wh:.0f} Wh are above 100 Wh: at most two spares, with the carrier's consent; "
+            f"{spare} spares are planned. Spares go in the cabin with their terminals covered.",
+            source,
+        )
+    return KitCaution(
+        "Batteries in the cabin.",
+        f"{count} packs of {power.nominal_wh:.0f} Wh, each up to 100 Wh: spares in the cabin only, terminals covered. "
+        "US rules ask for charged packs for 150 % of the longest flight.",
+        source,
+    )

@@ -1,0 +1,236 @@
+"""What happens when the trip is late: many trips played through in a policy that a person could follow.
+
+Order of use: the carrier's oxygen, a stationary unit, the plug, the battery down to what the next flight needs, the
+cylinder, then the rest of the battery. Every draw uses the same random numbers for any set, so sets compare fairly.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+
+import numpy as np
+from numpy.typing import NDArray
+
+from planner.air.ranges import Array
+from planner.kit.legs import Leg, Power
+from planner.kit.selection import CHARGE_SHARE, FLIGHT_RULE
+
+Flags = NDArray[np.bool_]
+SHORT_H = 0.02  # a minute or so without oxygen is not a run-out
+
+
+@dataclass(frozen=True)
+class Assumptions:
+    """What is assumed where nothing was entered: planning assumptions all, printed with every result."""
+
+    flow_sd: float = 0.06
+    fill_mean: float = 0.98
+    fill_sd: float = 0.03
+    battery_mean: float = 0.92
+    battery_sd: float = 0.05
+    concentrator_mttf_h: float = 1500.0
+    airline_fails: float = 0.01
+    stationary_fails_a_night: float = 0.02
+    charger_fails: float = 0.01
+    left_running: float = 0.05
+
+    def lines(self) -> tuple[tuple[str, str], ...]:
+        """Each assumption in words with its value."""
+        return (
+            ("Flow really given", f"as set, spread {100 * self.flow_sd:.0f} %"),
+            ("Cylinder filled to", f"{100 * self.fill_mean:.0f} % of full, spread {100 * self.fill_sd:.0f} %"),
+            (
+                "Battery holds",
+                f"{100 * self.battery_mean:.0f} % of its rated energy, spread {100 * self.battery_sd:.0f} %",
+            ),
+            ("Concentrator fails", f"once in {self.concentrator_mttf_h:,.0f} h on average"),
+            ("Carrier's oxygen is missing", f"1 flight in {1 / self.airline_fails:.0f}"),
+            ("Stationary unit fails", f"1 night in {1 / self.stationary_fails_a_night:.0f}"),
+            ("Charger fails", f"1 trip in {1 / self.charger_fails:.0f}"),
+            ("Left running when not worn", f"{100 * self.left_running:.0f} % more oxygen"),
+        )
+
+
+@dataclass(frozen=True)
+class Carried:
+    """What is there: usable litres that come in at each leg, and the packs."""
+
+    litres_new: tuple[float, ...]
+    litres_kept: tuple[bool, ...]  # whether cylinders may be with the traveller in the leg
+    batteries: int
+
+
+@dataclass(frozen=True, eq=False)
+class Draws:
+    """Random numbers of many trips; arrays (draws,) or (draws, legs)."""
+
+    waits_h: Array
+    longer_h: Array
+    flow: Array
+    fill: Array
+    battery: Array
+    failure_h: Array
+    airline_ok: Flags
+    stationary_ok: Flags
+    charger_ok: Flags
+
+
+@dataclass(frozen=True, eq=False)
+class Played:
+    """Hours short in each draw and leg, its cause, and what is left at the end of each leg."""
+
+    short_h: Array
+    concentrator_down: Flags
+    source_failed: Flags
+    litres_left: Array
+    watt_hours_left: Array
+
+
+@dataclass(frozen=True)
+class RunOut:
+    """Chance of running out, with its 95 % interval (Wilson), split by leg and by cause."""
+
+    chance: float
+    low: float
+    high: float
+    by_leg: tuple[float, ...]
+    by_cause: dict[str, float]
+    draws: int
+
+
+def draw_trips(
+    legs: Sequence[Leg],
+    waits_min: Array,
+    longer_min: Array,
+    rng: np.random.Generator,
+    assumed: Assumptions,
+) -> Draws:
+    """Random numbers for as many trips as there are rows of delays."""
+    draws, count = waits_min.shape
+    nights = np.array([max(1.0, leg.hours / 24.0) if leg.stationary else 0.0 for leg in legs])
+    return Draws(
+        waits_h=waits_min / 60.0,
+        longer_h=longer_min / 60.0,
+        flow=np.asarray(assumed.flow_sd * rng.standard_normal(draws) + 1.0),
+        fill=np.clip(assumed.fill_mean + assumed.fill_sd * rng.standard_normal(draws), 0.5, 1.0),
+        battery=np.clip(assumed.battery_mean + assumed.battery_sd * rng.standard_normal(draws), 0.3, 1.0),
+        failure_h=np.asarray(assumed.concentrator_mttf_h * rng.standard_exponential(draws)),
+        airline_ok=rng.random((draws, count)) >= assumed.airline_fails,
+        stationary_ok=rng.random((draws, count)) < (1.0 - assumed.stationary_fails_a_night) ** nights,
+        charger_ok=np.greater_equal(rng.random(draws), assumed.charger_fails),
+    )
+
+
+def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draws, assumed: Assumptions) -> Played:
+    """Play the trips. A wait before a flight is spent where the leg before was, on what is allowed there."""
+    draws, count = drawn.waits_h.shape
+    short, down = np.zeros((draws, count)), np.zeros((draws, count), dtype=bool)
+    failed = np.zeros((draws, count), dtype=bool)
+    litres_left, wh_left = np.zeros((draws, count)), np.zeros((draws, count))
+    litres = np.zeros(draws)
+    full_wh = (0.0 if power is None else power.nominal_wh * carried.batteries) * drawn.battery
+    energy, clock = full_wh.copy(), np.zeros(draws)
+    for number, leg in enumerate(legs):
+        litres = (litres if carried.litres_kept[number] else np.zeros(draws)) + carried.litres_new[number] * drawn.fill
+        hours = np.maximum(leg.hours + drawn.longer_h[:, number], 0.25 * leg.hours)
+        wait = drawn.waits_h[:, number + 1] if number + 1 < count else np.zeros(draws)
+        share = leg.oxygen_h / leg.hours
+        needed = (hours + wait) * share
+        clock = clock + hours + wait
+        working = drawn.failure_h > clock
+        if leg.airline:
+            needed = np.where(drawn.airline_ok[:, number], wait * share, needed)
+        if leg.stationary:
+            needed = np.where(drawn.stationary_ok[:, number], 0.0, needed)
+        failed[:, number] = (leg.airline & ~drawn.airline_ok[:, number]) | (
+            leg.stationary & ~drawn.stationary_ok[:, number]
+        )
+        if power is not None and leg.concentrator_w is not None:
+            if leg.mains or leg.vehicle:
+                needed = np.where(working, 0.0, needed)
+            keep = _kept_wh(legs, number)
+            for floor in (np.minimum(keep, energy), np.zeros(draws)):
+                spendable = np.where(working, np.maximum(energy - floor, 0.0), 0.0)
+                used = np.minimum(needed, spendable / leg.concentrator_w)
+                energy, needed = energy - used * leg.concentrator_w, needed - used
+                litres, needed = _from_cylinder(leg, litres, needed, drawn.flow, assumed)
+            down[:, number] = ~working
+        else:
+            litres, needed = _from_cylinder(leg, litres, needed, drawn.flow, assumed)
+        if power is not None and leg.mains:
+            gained = CHARGE_SHARE * power.charge_w * (hours + wait)
+            energy = np.where(drawn.charger_ok, np.minimum(energy + gained, full_wh), energy)
+        short[:, number] = needed
+        litres_left[:, number], wh_left[:, number] = litres, energy
+    return Played(short, down, failed, litres_left, wh_left)
+
+
+def run_out(played: Played) -> RunOut:
+    """Chance of running out anywhere, by leg (first one) and by cause."""
+    ran = played.short_h > SHORT_H
+    draws = ran.shape[0]
+    any_leg = ran.any(axis=1)
+    first = np.where(any_leg, ran.argmax(axis=1), -1)
+    by_leg = tuple(float(np.mean(first == leg)) for leg in range(ran.shape[1]))
+    at = np.arange(draws)[any_leg], first[any_leg]
+    broken = played.concentrator_down[at]
+    missing = played.source_failed[at] & ~broken
+    causes = {
+        "concentrator failed": float(broken.sum()) / draws,
+        "promised oxygen was missing": float(missing.sum()) / draws,
+        "delay or use": float((~broken & ~missing).sum()) / draws,
+    }
+    low, high = wilson(int(any_leg.sum()), draws)
+    return RunOut(float(any_leg.mean()), low, high, by_leg, causes, draws)
+
+
+def wilson(hits: int, draws: int, z: float = 1.959964) -> tuple[float, float]:
+    """95 % interval of a share. Source: Wilson EB, J Am Stat Assoc 1927;22:209."""
+    share = hits / draws
+    centre = (share + z * z / (2 * draws)) / (1 + z * z / draws)
+    half = z * np.sqrt(share * (1 - share) / draws + z * z / (4 * draws * draws)) / (1 + z * z / draws)
+    return max(float(centre - half), 0.0), min(float(centre + half), 1.0)
+
+
+def on_time(legs: Sequence[Leg], late_min: float = 0.0) -> Draws:
+    """One trip with everything as assumed on average; late_min: every flight that much late (the stress case)."""
+    count = len(legs)
+    waits = np.array([[late_min / 60.0 if leg.flight else 0.0 for leg in legs]])
+    yes = np.ones((1, count), dtype=bool)
+    assumed = Assumptions()
+    return Draws(
+        waits_h=waits,
+        longer_h=np.zeros((1, count)),
+        flow=np.ones(1),
+        fill=np.array([assumed.fill_mean]),
+        battery=np.array([assumed.battery_mean]),
+        failure_h=np.array([np.inf]),
+        airline_ok=yes,
+        stationary_ok=yes,
+        charger_ok=np.ones(1, dtype=bool),
+    )
+
+
+def with_fewer_litres(carried: Carried, litres: float) -> Carried:
+    """The same set with so many litres fewer at the start."""
+    first = max(carried.litres_new[0] - litres, 0.0)
+    return replace(carried, litres_new=(first, *carried.litres_new[1:]))
+
+
+def _from_cylinder(leg: Leg, litres: Array, needed: Array, flow: Array, assumed: Assumptions) -> tuple[Array, Array]:
+    if not leg.cylinder_l_per_h:
+        return litres, needed
+    rate = leg.cylinder_l_per_h * flow * (1.0 + assumed.left_running)
+    used = np.minimum(needed, litres / rate)
+    return litres - used * rate, needed - used
+
+
+def _kept_wh(legs: Sequence[Leg], number: int) -> float:
+    """Charge to keep for the next flight that has no other source, before the next chance to charge."""
+    for leg in legs[number + 1 :]:
+        if leg.mains:
+            return 0.0
+        if leg.flight and not leg.airline and leg.concentrator_w:
+            return FLIGHT_RULE * leg.concentrator_w * leg.hours
+    return 0.0

@@ -1,0 +1,265 @@
+"""The lightest set that covers the trip, by mixed-integer programming in an elastic form.
+
+What cannot be covered is reported by part as hours without oxygen, never as "infeasible". Objectives in order:
+nothing uncovered, the reserve kept, the peak mass carried, the number of items. Gas of one size is pooled: cylinders
+are swapped one after another. The form follows the textbook lot-sizing programme; solved by HiGHS.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+
+from planner.kit.legs import Choice, Leg, Power
+from planner.kit.programme import Programme
+
+FLIGHT_RULE = 1.5  # charged packs for 150 % of the flight: 14 CFR 382.133(f)(2)
+CHARGE_SHARE = 0.9  # of the charger's power that ends up in the pack; planning assumption
+MOST_OF_A_SIZE = 12
+NEGLIGIBLE_H = 1e-4
+ITEM_KG = 0.05  # an item more counts as this much mass, so that fewer are preferred; planning assumption
+
+
+@dataclass(frozen=True)
+class LegUse:
+    """How one leg is covered, in hours, and what is there at its start."""
+
+    part_id: str
+    uncovered_h: float
+    reserve_missing_h: float
+    hours_by: dict[str, float]  # cylinder, battery, plugged, airline, stationary
+    cylinders: dict[str, int]
+    new_cylinders: dict[str, int]
+    litres_at_start: dict[str, float]
+    litres_used: dict[str, float]
+    watt_hours_at_start: float
+    mass_kg: float
+
+
+@dataclass(frozen=True)
+class Selection:
+    """A set to carry and how it covers the trip. finished False: the time ran out; gap says how far it may be."""
+
+    uses: tuple[LegUse, ...]
+    batteries: int
+    concentrator: bool
+    peak_kg: float
+    gap: float
+    finished: bool
+
+    @property
+    def uncovered_h(self) -> float:
+        """Hours without oxygen over the whole trip."""
+        return sum(use.uncovered_h for use in self.uses)
+
+    def bought(self) -> dict[str, int]:
+        """Cylinders needed over the whole trip, by size."""
+        total: dict[str, int] = {}
+        for use in self.uses:
+            for size, count in use.new_cylinders.items():
+                total[size] = total.get(size, 0) + count
+        return total
+
+
+def select(
+    legs: Sequence[Leg],
+    choices: Sequence[Choice],
+    power: Power | None,
+    *,
+    reserve_fraction: float,
+    batteries: int | None = None,
+    time_limit_s: float = 4.0,
+    cancelled: Callable[[], bool] | None = None,
+) -> Selection:
+    """The best set for these legs. batteries: how many packs, where that is not to be chosen.
+
+    Raises programme.Cancelled when cancelled. Never infeasible: uncovered hours are slack.
+    """
+    model = Programme()
+    built = _Built(model, legs, choices, power, reserve_fraction, batteries)
+    objectives = (
+        dict.fromkeys(built.slack, 1.0),
+        dict.fromkeys(built.reserve_slack, 1.0),
+        {built.peak: 1.0} | dict.fromkeys(built.items, ITEM_KG),
+    )
+    solution = model.solve(objectives, time_limit_s=time_limit_s, cancelled=cancelled)
+    return built.read(solution.values, solution.gap, solution.finished)
+
+
+class _Built:
+    """The programme of one trip: columns by leg, and how to read them back."""
+
+    def __init__(
+        self,
+        model: Programme,
+        legs: Sequence[Leg],
+        choices: Sequence[Choice],
+        power: Power | None,
+        reserve_fraction: float,
+        batteries: int | None,
+    ) -> None:
+        self.legs, self.choices, self.power = legs, choices, power
+        self.peak = model.variable()
+        self.slack: list[int] = []
+        self.reserve_slack: list[int] = []
+        self.items: list[int] = []
+        self.columns: list[dict[str, int]] = []
+        packs = 0 if power is None else power.most_batteries if batteries is None else batteries
+        least = packs if batteries is not None and power is not None else 0
+        self._watt_before = 0.0
+        self.packs = model.variable(least, packs, whole=True)
+        self.has_power = model.variable(0.0, 0.0 if power is None else 1.0, whole=True)
+        self.items.append(self.packs)
+        for number, leg in enumerate(legs):
+            self._leg(model, number, leg, reserve_fraction)
+
+    def _leg(self, model: Programme, number: int, leg: Leg, reserve_fraction: float) -> None:
+        columns: dict[str, int] = {}
+        self.columns.append(columns)
+        before = self.columns[number - 1] if number else None
+        sources: dict[int, float] = {}
+        for name, allowed in (
+            ("airline", leg.airline),
+            ("stationary", leg.stationary),
+            ("plugged", leg.concentrator_w is not None and (leg.mains or leg.vehicle)),
+            ("battery", leg.concentrator_w is not None),
+        ):
+            columns[name] = model.variable(0.0, leg.oxygen_h if allowed else 0.0)
+            sources[columns[name]] = 1.0
+        for choice in self.choices:
+            self._cylinders(model, number, leg, choice, columns, before)
+            if leg.cylinder_l_per_h:
+                sources[columns[f"used {choice.size_id}"]] = 1.0 / leg.cylinder_l_per_h
+        columns["slack"] = model.variable()
+        self.slack.append(columns["slack"])
+        model.row({**sources, columns["slack"]: 1.0}, leg.oxygen_h, leg.oxygen_h)
+        self._energy(model, leg, columns, before)
+        self._reserve(model, leg, columns, reserve_fraction)
+        self._mass(model, leg, columns)
+
+    def _cylinders(
+        self,
+        model: Programme,
+        number: int,
+        leg: Leg,
+        choice: Choice,
+        columns: dict[str, int],
+        before: dict[str, int] | None,
+    ) -> None:
+        size = choice.size_id
+        most = MOST_OF_A_SIZE if choice.most is None else choice.most
+        carried_most = 0 if leg.flight and not (choice.air_allowed and leg.cylinder_l_per_h is not None) else most
+        columns[f"count {size}"] = model.variable(0, carried_most, whole=True)
+        can_get = number == 0 or leg.supply_here
+        columns[f"new {size}"] = model.variable(0, carried_most if can_get else 0, whole=True)
+        columns[f"left {size}"] = model.variable(0, most, whole=True)
+        columns[f"litres {size}"] = model.variable()
+        columns[f"used {size}"] = model.variable(0.0, 0.0 if leg.cylinder_l_per_h is None else float("inf"))
+        columns[f"spilt {size}"] = model.variable()
+        self.items.append(columns[f"new {size}"])
+        count = {columns[f"count {size}"]: 1.0, columns[f"new {size}"]: -1.0, columns[f"left {size}"]: 1.0}
+        litres = {
+            columns[f"litres {size}"]: 1.0,
+            columns[f"new {size}"]: -choice.usable_l,
+            columns[f"spilt {size}"]: 1.0,
+        }
+        if before is not None:
+            count[before[f"count {size}"]] = -1.0
+            litres[before[f"litres {size}"]] = -1.0
+            litres[before[f"used {size}"]] = 1.0
+        model.row(count, 0.0, 0.0)
+        model.row(litres, 0.0, 0.0)
+        model.row({columns[f"litres {size}"]: 1.0, columns[f"count {size}"]: -choice.usable_l}, upper=0.0)
+        model.row({columns[f"used {size}"]: 1.0, columns[f"litres {size}"]: -1.0}, upper=0.0)
+
+    def _energy(self, model: Programme, leg: Leg, columns: dict[str, int], before: dict[str, int] | None) -> None:
+        columns["energy"] = model.variable()
+        columns["charged"] = model.variable(0.0, self._charge_wh(leg))
+        capacity = 0.0 if self.power is None else self.power.battery_wh
+        watt = leg.concentrator_w or 0.0
+        model.row({columns["energy"]: 1.0, self.packs: -capacity}, upper=0.0)
+        if before is None:
+            model.row({columns["energy"]: 1.0, self.packs: -capacity}, lower=0.0)
+        else:
+            gained = {columns["energy"]: 1.0, before["energy"]: -1.0, before["charged"]: -1.0}
+            model.row({**gained, before["battery"]: self._watt_before}, upper=0.0)
+        self._watt_before = watt
+        model.row({columns["battery"]: watt, columns["energy"]: -1.0}, upper=0.0)
+        model.row({columns["battery"]: 1.0, columns["plugged"]: 1.0, self.has_power: -leg.oxygen_h}, upper=0.0)
+        if leg.flight and watt > 0.0:
+            columns["on board"] = model.variable(0.0, 1.0, whole=True)
+            model.row({columns["battery"]: 1.0, columns["on board"]: -leg.oxygen_h}, upper=0.0)
+            model.row({columns["energy"]: 1.0, columns["on board"]: -FLIGHT_RULE * watt * leg.hours}, lower=0.0)
+
+    def _charge_wh(self, leg: Leg) -> float:
+        if self.power is None or not leg.mains:
+            return 0.0
+        return CHARGE_SHARE * self.power.charge_w * leg.hours
+
+    def _reserve(self, model: Programme, leg: Leg, columns: dict[str, int], fraction: float) -> None:
+        """Hours that are left at the end of the leg, by gas or charge, against the reserve asked for."""
+        columns["reserve"] = model.variable()
+        self.reserve_slack.append(columns["reserve"])
+        wanted = fraction * leg.oxygen_h
+        if wanted <= 0.0 or leg.stationary:
+            return
+        terms: dict[int, float] = {columns["reserve"]: 1.0}
+        if leg.cylinder_l_per_h:
+            for choice in self.choices:
+                terms[columns[f"litres {choice.size_id}"]] = 1.0 / leg.cylinder_l_per_h
+                terms[columns[f"used {choice.size_id}"]] = -1.0 / leg.cylinder_l_per_h
+        if leg.concentrator_w:
+            terms[columns["energy"]] = 1.0 / leg.concentrator_w
+            terms[columns["battery"]] = -1.0
+        if leg.airline:
+            terms[columns["airline"]] = fraction  # the carrier keeps the reserve for what it brings
+        if leg.concentrator_w and (leg.mains or leg.vehicle):
+            terms[columns["plugged"]] = fraction
+        model.row(terms, lower=wanted)
+
+    def _mass(self, model: Programme, leg: Leg, columns: dict[str, int]) -> None:
+        mass = {columns[f"count {one.size_id}"]: one.gross_kg for one in self.choices}
+        if self.power is not None:
+            mass[self.packs] = self.power.battery_mass_kg
+            mass[self.has_power] = self.power.mass_kg
+        columns["mass"] = model.variable()
+        model.row({**mass, columns["mass"]: -1.0}, 0.0, 0.0)
+        model.row({columns["mass"]: 1.0, self.peak: -1.0}, upper=0.0)
+        if leg.carry_limit_kg is not None:
+            model.row({columns["mass"]: 1.0}, upper=leg.carry_limit_kg)
+
+    def read(self, values: tuple[float, ...], gap: float, finished: bool) -> Selection:
+        """The solution in words of the kit."""
+        uses = []
+        for leg, columns in zip(self.legs, self.columns, strict=True):
+
+            def value(name: str, columns: dict[str, int] = columns) -> float:
+                return max(values[columns[name]], 0.0)
+
+            sizes = [one.size_id for one in self.choices]
+            by = {name: value(name) for name in ("airline", "stationary", "plugged", "battery")}
+            litres = {size: value(f"used {size}") for size in sizes}
+            by["cylinder"] = sum(litres.values()) / leg.cylinder_l_per_h if leg.cylinder_l_per_h else 0.0
+            uncovered, missing = value("slack"), value("reserve")
+            uses.append(
+                LegUse(
+                    part_id=leg.part_id,
+                    uncovered_h=uncovered if uncovered > NEGLIGIBLE_H else 0.0,
+                    reserve_missing_h=missing if missing > NEGLIGIBLE_H else 0.0,
+                    hours_by={name: hours for name, hours in by.items() if hours > NEGLIGIBLE_H},
+                    cylinders={size: count for size in sizes if (count := round(value(f"count {size}")))},
+                    new_cylinders={size: count for size in sizes if (count := round(value(f"new {size}")))},
+                    litres_at_start={size: value(f"litres {size}") for size in sizes},
+                    litres_used=litres,
+                    watt_hours_at_start=value("energy"),
+                    mass_kg=value("mass"),
+                )
+            )
+        return Selection(
+            uses=tuple(uses),
+            batteries=round(values[self.packs]),
+            concentrator=values[self.has_power] > 0.5,
+            peak_kg=max((use.mass_kg for use in uses), default=0.0),
+            gap=gap,
+            finished=finished,
+        )

@@ -1,0 +1,83 @@
+"""Adds what makes running out rarer: batteries and cylinders on top of the set that covers the plan.
+
+The planned set covers the trip when it is on time. Sets a little larger are played on the same draws, in the order of
+their mass; the first whose chance is as low as asked for is taken, and confirmed on draws of its own.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+
+from planner.kit.endurance import Assumptions, Carried, Draws, RunOut, play, run_out
+from planner.kit.legs import Choice, Leg, Power
+
+MOST_EXTRA = 4
+SCREENED = 24  # larger sets that are played at most
+
+
+@dataclass(frozen=True)
+class Stronger:
+    """What was added to the planned set, and its chance on the draws it was chosen on."""
+
+    carried: Carried
+    extra_batteries: int
+    extra_cylinders: int
+    choice: Choice | None
+    chosen_on: RunOut
+    reached: bool
+
+
+def strengthen(
+    legs: Sequence[Leg],
+    carried: Carried,
+    choices: Sequence[Choice],
+    power: Power | None,
+    drawn: Draws,
+    assumed: Assumptions,
+    wanted_chance: float,
+    *,
+    more_batteries: bool = True,
+) -> Stronger:
+    """The lightest larger set with a chance of running out up to wanted_chance; else the one with the lowest chance.
+
+    Only the set's own lightest cylinder is added, and only where cylinders are carried or may be at the start.
+    """
+    choice = min((one for one in choices if one.most is None), key=lambda one: one.gross_kg, default=None)
+    may_carry = choice is not None and legs[0].cylinder_l_per_h is not None
+    battery_kg = 0.0 if power is None else power.battery_mass_kg
+    may_charge = more_batteries and power is not None and carried.batteries > 0
+    grid = [
+        (batteries * battery_kg + cylinders * (choice.gross_kg if choice else 0.0), batteries, cylinders)
+        for batteries in range(MOST_EXTRA + 1 if may_charge else 1)
+        for cylinders in range(MOST_EXTRA + 1 if may_carry else 1)
+    ]
+    best: Stronger | None = None
+    for _, batteries, cylinders in sorted(grid)[:SCREENED]:
+        larger = _with(carried, legs, choice, batteries, cylinders, assumed)
+        chance = run_out(play(legs, larger, power, drawn, assumed))
+        found = Stronger(
+            larger, batteries, cylinders, choice if cylinders else None, chance, chance.chance <= wanted_chance
+        )
+        if found.reached:
+            return found
+        if best is None or chance.chance < best.chosen_on.chance - 0.0005:
+            best = found
+    assert best is not None
+    return best
+
+
+def _with(
+    carried: Carried, legs: Sequence[Leg], choice: Choice | None, batteries: int, cylinders: int, assumed: Assumptions
+) -> Carried:
+    """The set with more batteries, and more cylinders at the start that are kept until cylinders may not go on."""
+    larger = replace(carried, batteries=carried.batteries + batteries)
+    if choice is None or cylinders == 0:
+        return larger
+    litres = cylinders * choice.usable_l / assumed.fill_mean
+    kept = list(larger.litres_kept)
+    for number, leg in enumerate(legs):
+        if leg.flight and not (choice.air_allowed and leg.cylinder_l_per_h is not None):
+            break
+        kept[number] = True
+    return replace(larger, litres_new=(larger.litres_new[0] + litres, *larger.litres_new[1:]), litres_kept=tuple(kept))
