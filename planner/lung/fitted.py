@@ -92,17 +92,15 @@ class FittedLung:
             "ventilation_depression", "Lost ventilation", ventilation_depression, 0.0, MOST_DEPRESSION
         )
         shape = (self.log_sd.size, inspired.shape[1])
-        po2, saturation, pco2 = np.empty(shape), np.empty(shape), np.empty(shape)
+        po2, saturation, pco2, below = np.empty(shape), np.empty(shape), np.empty(shape), np.zeros(shape[1])
         for start in range(0, shape[0], BLOCK):
             rows = slice(start, start + BLOCK)
             breathed = inspired if inspired.shape[0] == 1 else inspired[rows]
-            po2[rows], pco2[rows] = self._gases(breathed, dry, hours, activity, depression, rows)
-        below = po2 < LEAST_MMHG
-        share = below.mean(axis=0)
-        po2[below] = LEAST_MMHG
-        for start in range(0, shape[0], BLOCK):
-            rows = slice(start, start + BLOCK)
+            found, pco2[rows] = self._gases(breathed, dry, hours, activity, depression, rows)
+            below += (found < LEAST_MMHG).sum(axis=0)
+            po2[rows] = np.maximum(found, LEAST_MMHG)
             saturation[rows] = self.blood.saturation(po2[rows], pco2[rows])
+        share = below / shape[0]
         return Arterial(po2, saturation, pco2, share, share > 0.5)
 
     def _gases(

@@ -59,7 +59,6 @@ PACO2_BOUNDED_PRIOR_MMHG = (46.0, 6.0)
 PACO2_BETWEEN = 2.0  # a second reading's PaCO2 counts with this many of its SD: days differ; planning assumption
 EXPECTED_FALL_MMHG = 1.8  # mean of the published falls of PaCO2, sea level to about 8000 ft; see ventilation
 
-
 NARROWING_DRAWS = 400
 LEAST_NARROWING_MMHG = 0.3  # less cannot be told from the choice of draws
 LEAST_MIXTURE_STEP = 0.01  # a challenge test nearer than this to what was breathed is none
