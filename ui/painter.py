@@ -7,7 +7,7 @@ from typing import Any
 
 import numpy as np
 from kivy.core.text import Label as CoreLabel
-from kivy.graphics import Color, Ellipse, Line, Mesh, Rectangle
+from kivy.graphics import Color, Ellipse, Line, Mesh, Rectangle, SmoothLine
 from kivy.graphics.instructions import InstructionGroup
 from kivy.metrics import dp
 
@@ -56,7 +56,8 @@ def _polyline(group: InstructionGroup, line: Polyline, x: float, y: float) -> No
     points = line.points + np.array([x, y])
     width = max(dp(line.width) / 2, 0.55)  # Kivy's width is half of the stroke's
     if line.dash == "solid":
-        group.add(Line(points=points.ravel().tolist(), width=width, joint="round"))
+        stroke = Line if len(points) == 2 else SmoothLine  # hairlines stay sharp
+        group.add(stroke(points=points.ravel().tolist(), width=width if stroke is Line else width + dp(0.25)))
         return
     for piece in _dashes(points, *(dp(length) for length in _DASHES[line.dash])):
         group.add(Line(points=piece, width=width))
@@ -88,7 +89,7 @@ def _marker(group: InstructionGroup, marker: Marker, x: float, y: float) -> None
         group.add(Color(*theme.ground))
         group.add(Ellipse(**circle))
         group.add(Color(*colour_of(marker.role)))
-        group.add(Line(circle=(cx, cy, radius), width=dp(0.9)))
+        group.add(SmoothLine(circle=(cx, cy, radius), width=dp(0.8)))
     elif marker.shape == "diamond":
         corners = [(0, radius), (radius, 0), (0, -radius), (-radius, 0)]
         vertices = [value for dx, dy in corners for value in (cx + 1.2 * dx, cy + 1.2 * dy, 0, 0)]

@@ -60,7 +60,7 @@ class CasesPage(BoxLayout):
         else:
             listed = Stack(gap=0)
             for row in rows:
-                listed.add_widget(ListRow(row.title, row.detail, row.when, lambda r=row: self._open(r.case_id)))
+                listed.add_widget(ListRow(plain(row.title), row.detail, row.when, lambda r=row: self._open(r.case_id)))
             self.content.add_widget(listed)
         self.content.add_widget(PrimaryButton("New case", self.new_case))
         self.content.add_widget(PlainButton("Open a demo", self.open_demo))

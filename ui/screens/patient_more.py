@@ -12,7 +12,7 @@ from ui.screens.form import Form, Live
 from ui.screens.measured import MODELS, NAMES, Measured, summary
 from ui.widgets.buttons import QuietButton
 from ui.widgets.choices import Choice
-from ui.widgets.rows import ListRow, Side, Stack
+from ui.widgets.rows import ListRow, Opened, Side, Stack
 from ui.widgets.text import Text
 
 _CENTIMETRES = measures.Measure("cm", 0, lambda metres: metres * 100, lambda cm: cm / 100)
@@ -120,9 +120,9 @@ class _Measurements(Stack):
             if index == self.open and measurement.kind in MODELS:
                 group.add_widget(self._opened(form, index, measurement.kind))
 
-    def _opened(self, form: Form, index: int, kind: str) -> Stack:
+    def _opened(self, form: Form, index: int, kind: str) -> Opened:
         entries = Measured(self.session, form, kind, lambda: index)
-        opened = Stack(Side(*entries.values(), entries.taken_on()), gap=5, padding=(0, 12, 0, 20))
+        opened = Opened(Side(*entries.values(), entries.taken_on()), gap=5, padding=(0, 12, 0, 20))
         opened.add_widget(Side(entries.elevation(), entries.pressure()))
         opened.add_widget(entries.state())
         if kind in ("oximetry", "blood_gas", "walk_test"):

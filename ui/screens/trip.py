@@ -20,7 +20,7 @@ from ui.widgets.choices import Choice
 from ui.widgets.entries import DateEntry
 from ui.widgets.journey_entries import TimeEntry
 from ui.widgets.notices import Notice
-from ui.widgets.rows import Fold, ListRow, Side, Stack
+from ui.widgets.rows import Fold, ListRow, Opened, Side, Stack
 from ui.widgets.text import Text, plain, strong
 
 LEAVE_AT = time(8, 0)  # shown and changeable: the time that stands when only the day of leaving is entered
@@ -40,7 +40,8 @@ class TripScreen(Screen):
         self.empty = Live(self.session, lambda: not self.session.case.trip.parts, self._fill_empty)
         self.unknown = Stack(gap=2)
         self.parts = Live(self.session, self._signature, self._fill_parts, gap=0)
-        self.put(Stack(self.ribbon, self.empty, self.unknown, self.parts, gap=1))
+        self.above = Stack()
+        self.put(Stack(self.above, self.empty, self.unknown, self.parts, gap=1))
         self.put(Fold("Leaving home", "Day, time, elevation", self._fill_start))
         self.adding = Fold("Add to the trip", "A part, or the way back", self._fill_adding)
         self.put(self.adding)
@@ -50,6 +51,7 @@ class TripScreen(Screen):
         """Show the trip as it is."""
         ids = [part.part_id for part in self.session.case.trip.parts]
         self.ribbon.plot.handle_part = ids.index(self.open_part) if self.open_part is not None else None
+        self.above.hold(self.ribbon if ids else None)
         self.ribbon.show_case()
         self.empty.show()
         self.parts.show()
@@ -114,8 +116,7 @@ class TripScreen(Screen):
             row.chosen = part.part_id == self.open_part
             group.add_widget(form.keep(row, lambda: None))
             if row.chosen:
-                group.add_widget(PartForm(self.session, form, index))
-                group.add_widget(self._actions(index))
+                group.add_widget(Opened(PartForm(self.session, form, index), self._actions(index), gap=0))
 
     def _actions(self, index: int) -> Stack:
         last = len(self.session.case.trip.parts) - 1

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Any, Literal
 
-from kivy.graphics import Color, Line
+from kivy.graphics import Color, SmoothLine
 from kivy.metrics import dp
 
 from ui.theme import TARGET_DP, theme
@@ -20,8 +20,8 @@ class IconButton(Tappable):
         self.icon, self.says = icon, says
         with self.canvas:
             self._colour = Color(*theme.ink)
-            self._stroke = Line(width=dp(1.3), cap="round", joint="round")
-            self._head = Line(width=dp(1.3), cap="round", joint="round")
+            self._stroke = SmoothLine(width=dp(1.1))
+            self._head = SmoothLine(width=dp(1.1))
         self.bind(pos=self._draw, size=self._draw, disabled=self._draw, state=self._draw)
         self._draw()
 

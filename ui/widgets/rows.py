@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Any
 
-from kivy.graphics import Color, Line, Rectangle
+from kivy.graphics import Color, Rectangle, SmoothLine
 from kivy.metrics import dp, sp
 from kivy.properties import BooleanProperty
 from kivy.uix.boxlayout import BoxLayout
@@ -77,7 +77,7 @@ class Chevron(Widget):
         super().__init__(size_hint=(None, None), size=(sp(14), sp(14)), pos_hint={"center_y": 0.5}, **keywords)
         with self.canvas:
             Color(*theme.data)
-            self._line = Line(width=dp(1.3), cap="round", joint="round")
+            self._line = SmoothLine(width=dp(1.2))
         self.bind(pos=self._draw, size=self._draw, open=self._draw)
 
     def _draw(self, *_: Any) -> None:
@@ -131,6 +131,41 @@ class Fold(BoxLayout):
             self.remove_widget(self.body)
 
 
+class Stack(BoxLayout):
+    """Things under each other, as high as they are."""
+
+    def __init__(self, *things: Widget, gap: float = 4, **keywords: Any) -> None:
+        super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(gap), **keywords)
+        for thing in things:
+            self.add_widget(thing)
+        self.bind(minimum_height=self.setter("height"))
+
+    def hold(self, thing: Widget | None) -> None:
+        """Hold this one thing, or nothing."""
+        if self.children != ([thing] if thing is not None else []):
+            self.clear_widgets()
+            if thing is not None:
+                self.add_widget(thing)
+
+
+class Opened(Stack):
+    """What belongs to a chosen row, on the same raised ground with the same bar at its left."""
+
+    def __init__(self, *things: Widget, **keywords: Any) -> None:
+        super().__init__(*things, **keywords)
+        with self.canvas.before:
+            Color(*theme.raised)
+            self._ground = Rectangle()
+            Color(*theme.data)
+            self._bar = Rectangle()
+        self.bind(pos=self._place, size=self._place)
+
+    def _place(self, *_: Any) -> None:
+        reach = space(3)
+        self._ground.pos, self._ground.size = (self.x - reach, self.y), (self.width + 2 * reach, self.height)
+        self._bar.pos, self._bar.size = (self.x - reach, self.y), (dp(3), self.height)
+
+
 class Side(Layout):
     """Fields side by side where each has at least `least_sp` of width, under each other where not; tops aligned."""
 
@@ -157,16 +192,6 @@ class Side(Layout):
                 field.width = width
                 field.pos = (self.x + column * (width + gap), top - field.height)
             top -= height + gap
-
-
-class Stack(BoxLayout):
-    """Things under each other, as high as they are."""
-
-    def __init__(self, *things: Widget, gap: float = 4, **keywords: Any) -> None:
-        super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(gap), **keywords)
-        for thing in things:
-            self.add_widget(thing)
-        self.bind(minimum_height=self.setter("height"))
 
 
 __all__ = ["Chevron", "Fold", "ListRow", "Rule", "Side", "Stack", "paint_ground"]

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from typing import Any, Literal
 
-from kivy.graphics import Color, Ellipse, Line, Rectangle
+from kivy.graphics import Color, Ellipse, Rectangle, SmoothLine
 from kivy.metrics import dp, sp
 from kivy.properties import BooleanProperty, StringProperty
 from kivy.uix.boxlayout import BoxLayout
@@ -45,9 +45,9 @@ class Mark(Widget):
                     x + side * 0.92,
                     y + side * 0.84,
                 ]
-                Line(points=tick, width=dp(1.4), cap="round", joint="round")
+                SmoothLine(points=tick, width=dp(1.2))
             else:
-                Line(circle=(x + side / 2, y + side / 2, side / 2 - dp(1)), width=dp(1.2))
+                SmoothLine(circle=(x + side / 2, y + side / 2, side / 2 - dp(1.5)), width=dp(0.7))
                 if self.state == "incomplete":
                     Ellipse(
                         pos=(x + dp(1), y + dp(1)), size=(side - dp(2), side - dp(2)), angle_start=180, angle_end=360
