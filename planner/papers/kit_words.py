@@ -1,29 +1,179 @@
-"""The kit in words."""
+"""The kit in words: what to carry, how far it goes, and the readings at which to turn back."""
 
 from __future__ import annotations
 
-from planner.papers.desk import Desk
+import numpy as np
+
+from planner.charts.layout import Array, Drawing
+from planner.charts.ribbon import lay_ribbon
+from planner.charts.supply import supply_layer
+from planner.kit.sizes import load_concentrators
+from planner.kit.turn_back import TurnBack
+from planner.papers import fonts
+from planner.papers.desk import Desk, capital
+from planner.papers.flow import Column, Flow, Row
+from planner.papers.record_trip import LAYERED_RIBBON_PT, TEXT_PT, ribbon_parts
+
+BATTERY, CYLINDER = "Battery", "Cylinder"  # how the kit names its items
 
 
-def concentrator_text(desk: Desk) -> str:
-    return ""
+def write_items(flow: Flow, desk: Desk) -> None:
+    """What to carry, line by line; where nothing is sized, why not."""
+    say, q, kit = desk.say, desk.quantities, desk.plan.kit
+    if kit is None:
+        flow.paragraph(say("kit.not_worked_out"))
+        return
+    if kit.items:
+        columns = [
+            Column(say("kit.what"), 0.3, bold=True),
+            Column(say("kit.count"), 0.08, "right", bold=True),
+            Column(say("kit.each"), 0.14, "right"),
+            Column(say("kit.where"), 0.2),
+            Column(say("kit.brought_by"), 0.28),
+        ]
+        rows = [
+            Row((
+                item.what,
+                desk.texts.number(item.count),
+                q.mass(item.each_kg) if item.each_kg else say("kit.not_carried"),
+                item.where,
+                capital(item.brought_by),
+            ))
+            for item in kit.items
+        ]  # fmt: skip
+        flow.table(columns, rows)
+        flow.paragraph(say("kit.peak", mass=q.mass(kit.peak_kg)))
+    else:
+        flow.paragraph(say("kit.nothing_sized"))
+    if kit.undecided:
+        flow.note(say("kit.undecided", parts="; ".join(kit.undecided)))
+    for fault in kit.faults:
+        flow.note(fault)
 
 
-def batteries_text(desk: Desk) -> str:
-    return ""
+def write_endurance(flow: Flow, desk: Desk) -> None:
+    """How often the set would run short, what a lighter one would do, and what is left along the trip."""
+    say, q, kit = desk.say, desk.quantities, desk.plan.kit
+    if kit is None or kit.run_out is None or not kit.items:
+        return
+    flow.heading(say("kit.endurance"))
+    if kit.uncovered_h > 0.0:
+        parts = [part for part in kit.parts if part.uncovered_h > 0.0]
+        names = "; ".join(
+            say("carrier.between_part", name=part.name, duration=q.duration(60.0 * part.uncovered_h)) for part in parts
+        )
+        flow.note(say("kit.uncovered", parts=names), role="stop")
+    chances = {
+        "chance": q.chance(kit.run_out.chance),
+        "low": q.chance(kit.run_out.low),
+        "high": q.chance(kit.run_out.high),
+    }
+    flow.paragraph(say("kit.run_out", **chances))
+    worst = max(kit.parts, key=lambda part: part.run_out_chance)
+    if worst.run_out_chance > 0.0:
+        flow.paragraph(say("kit.worst", part=worst.name, chance=q.chance(worst.run_out_chance)))
+    if kit.lighter is not None:
+        change, chance = kit.lighter
+        flow.paragraph(say("kit.lighter", change=capital(change), chance=q.chance(chance)))
+    reserve = desk.case.policy.reserve_fraction
+    late = q.duration(desk.case.policy.stress_late_min)
+    flow.paragraph(say("kit.reserve", reserve=q.percent(100.0 * reserve), late=late), scale=0.9, role="muted")
+    for drawing in supply_ribbons(desk, flow.panel.width):
+        flow.drawing(drawing)
 
 
-def cylinders_text(desk: Desk) -> str:
-    return ""
+def supply_ribbons(desk: Desk, width: float) -> list[Drawing]:
+    """Litres and watt-hours left along the trip, as planned and with every flight late; only what is carried."""
+    left = desk.plan.kit.left if desk.plan.kit is not None else None
+    if left is None:
+        return []
+    pairs: list[tuple[str, Array, Array]] = [
+        ("kit.litres_left", left.litres, left.litres_stress),
+        ("kit.watt_hours_left", left.watt_hours, left.watt_hours_stress),
+    ]
+    timeline = desk.plan.timeline
+    return [
+        lay_ribbon(
+            ribbon_parts(desk),
+            timeline.minutes,
+            timeline.altitude_m,
+            supply_layer(left.minutes, values, late, unit=desk.say(unit), text=desk.texts.number),
+            width=width,
+            height=LAYERED_RIBBON_PT,
+            text_size=TEXT_PT,
+            measure=fonts.measure,
+            unknown_text=desk.say("trip.unknown_altitude"),
+            shortened_text=desk.say("trip.shortened"),
+        ).drawing
+        for unit, values, late in pairs
+        if np.nanmax(values) > 0.0
+    ]
 
 
 def turn_back_rows(desk: Desk) -> list[tuple[str, str]]:
-    return []
+    """Each point of the trip with the least gauge reading and charge with which to go on."""
+    kit = desk.plan.kit
+    if kit is None:
+        return []
+    return [(desk.part_name(point.part_id), "\n".join(_readings(desk, point))) for point in kit.turn_back]
 
 
-def write_items(flow, desk):
-    pass
+def turn_back_note(desk: Desk) -> str:
+    """The temperature for which the gauge readings hold; empty where no gauge is read."""
+    points = desk.plan.kit.turn_back if desk.plan.kit is not None else ()
+    gauged = next((point for point in points if point.gauge_bar), None)
+    if gauged is None:
+        return ""
+    return desk.say("kit.read_at", temperature=desk.quantities.temperature(gauged.temperature_c))
 
 
-def write_endurance(flow, desk):
-    pass
+def concentrator_text(desk: Desk) -> str:
+    """The concentrator's class, or that there is none."""
+    concentrator = load_concentrators().get(desk.case.kit.concentrator_id or "")
+    return concentrator.name if concentrator is not None else desk.say("words.none")
+
+
+def batteries_text(desk: Desk) -> str:
+    """How many packs of how many watt-hours; empty without a concentrator."""
+    concentrator = load_concentrators().get(desk.case.kit.concentrator_id or "")
+    if concentrator is None or concentrator.battery_wh <= 0.0:
+        return ""
+    energy = desk.quantities.watt_hours(concentrator.battery_wh)
+    count = _count(desk, BATTERY) or desk.case.kit.batteries
+    if not count:
+        return desk.say("kit.battery_count_unknown", energy=energy)
+    return desk.texts.count("kit.batteries", count, energy=energy)
+
+
+def cylinders_text(desk: Desk) -> str:
+    """The traveller's own cylinders for the cabin, where a flight allows any."""
+    flights = [part for part in desk.case.trip.parts if part.kind == "flight"]
+    kit = desk.plan.kit
+    if kit is None or not any("cylinder" in part.sources for part in flights):
+        return desk.say("kit.no_cylinders_in_flight")
+    items = [item for item in kit.items if item.what.startswith(CYLINDER)]
+    texts = [
+        desk.say("kit.cylinder", number=item.count, name=item.what, mass=desk.quantities.mass(item.each_kg))
+        for item in items
+    ]
+    return "; ".join(texts) or desk.say("kit.no_cylinders_in_flight")
+
+
+def _readings(desk: Desk, point: TurnBack) -> list[str]:
+    q = desk.quantities
+    readings = [desk.say("kit.reading_cylinder", reading=q.gauge_up(bar), name=name) for name, bar in point.gauge_bar]
+    if point.fresh_cylinders:
+        readings.append(desk.texts.count("kit.reading_fresh", point.fresh_cylinders))
+    if point.battery_percent is not None:
+        readings.append(desk.say("kit.reading_battery", percent=q.percent(_up(point.battery_percent))))
+    return readings
+
+
+def _up(percent: float) -> float:
+    """Rounded up to whole five per cent: a reading that must not be passed downwards."""
+    return min(100.0, -(-percent // 5.0) * 5.0)
+
+
+def _count(desk: Desk, kind: str) -> int:
+    kit = desk.plan.kit
+    return sum(item.count for item in kit.items if item.what.startswith(kind)) if kit is not None else 0

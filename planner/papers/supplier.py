@@ -10,12 +10,13 @@ from planner.papers.flow import Column, Flow, Row
 from planner.papers.kit_words import write_endurance, write_items
 from planner.papers.painter import pdf_bytes
 from planner.papers.record_decided import decision_text
+from planner.papers.record_kit import write_turn_back
 from planner.papers.sheet import Paper
 
 if TYPE_CHECKING:
     from planner.results import Plan
 
-TEXT_PT = 10.0
+SIZES_PT = (10.0, 9.5, 9.0)
 CHECKS = ("regulator", "conserver", "spare", "gauge", "connections", "mains", "batteries", "show", "labels")
 
 
@@ -25,8 +26,14 @@ def make_supplier(plan: Plan, case: Case) -> bytes:
 
 
 def lay_supplier(desk: Desk) -> Paper:
-    """The pages of the supplier's list."""
-    say, flow = desk.say, desk.upright(TEXT_PT)
+    """The pages of the supplier's list, in the largest of a few sizes that needs the fewest pages."""
+    flows = [_written(desk, size) for size in SIZES_PT]
+    flow = min(flows, key=lambda one: len(one.panels))
+    return desk.finished(flow, desk.say("supplier.title"), desk.say("supplier.subject"))
+
+
+def _written(desk: Desk, size: float) -> Flow:
+    say, flow = desk.say, desk.upright(size)
     flow.title(say("supplier.title"))
     flow.paragraph(say("supplier.intro", who=desk.who()))
     flow.paragraph(desk.holds())
@@ -35,12 +42,13 @@ def lay_supplier(desk: Desk) -> Paper:
     _places(flow, desk)
     _deliveries(flow, desk)
     write_endurance(flow, desk)
+    write_turn_back(flow, desk)
     flow.heading(say("supplier.checks"))
     flow.bullets([say(f"supplier.check_{name}") for name in CHECKS])
     flow.heading(say("supplier.contacts"))
     labels = ["contact_supplier", "contact_stay", "contact_prescriber", "contact_checked"]
     flow.blanks([say(f"supplier.{label}") for label in labels])
-    return desk.finished(flow, say("supplier.title"), say("supplier.subject"))
+    return flow
 
 
 def _places(flow: Flow, desk: Desk) -> None:

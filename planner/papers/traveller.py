@@ -9,7 +9,7 @@ from planner.case.decisions import Decision
 from planner.charts.layout import Drawing, Item, Text, rule
 from planner.papers.desk import Desk
 from planner.papers.flow import Column, Flow, Row
-from planner.papers.kit_words import turn_back_rows
+from planner.papers.kit_words import turn_back_note, turn_back_rows
 from planner.papers.painter import pdf_bytes
 from planner.papers.sheet import FOOT_PT, HEAD_PT, Panel, Paper, framed, landscape
 
@@ -141,6 +141,9 @@ def _readings(flow: Flow, desk: Desk) -> None:
     flow.paragraph(say("traveller.readings_how"))
     columns = [Column(say("traveller.reading_where"), 0.42), Column(say("traveller.reading_what"), 0.58, bold=True)]
     flow.table(columns, [Row(row) for row in rows], scale=0.95)
+    note = turn_back_note(desk)
+    if note:
+        flow.paragraph(note, scale=0.86, role="muted")
 
 
 def _what_to_do(flow: Flow, desk: Desk) -> None:

@@ -105,7 +105,7 @@ class Quantities:
             return self.texts.say("numbers.chance_tiny")
         if share > 0.95:
             return self.texts.say("numbers.chance_nearly_all")
-        if share < 0.095:
+        if share < 0.275:
             return self.texts.say("numbers.chance", count="1", of=self.texts.number(_two_digits(1.0 / share)))
         return self.texts.say("numbers.chance", count=self.texts.number(max(1, round(share * 10))), of="10")
 

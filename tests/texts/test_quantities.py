@@ -41,7 +41,7 @@ def test_durations_read_as_people_say_them(minutes, text):
 @pytest.mark.parametrize(
     ("share", "text"),
     [(0.3, "3 in 10"), (1 / 70, "1 in 70"), (0.0004, "less than 1 in 1,000"), (0.99, "nearly every one"),
-     (0.05, "1 in 20"), (0.8, "8 in 10")],
+     (0.05, "1 in 20"), (0.13, "1 in 8"), (0.25, "1 in 4"), (0.8, "8 in 10")],
 )  # fmt: skip
 def test_chances_are_natural_frequencies(share, text):
     assert METRIC.chance(share) == text
