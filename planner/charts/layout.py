@@ -173,7 +173,8 @@ def without_straight_points(x: Array, *curves: Array) -> NDArray[np.intp]:
     for y in curves:
         rise = np.diff(y[places])
         bends.append(np.abs(step[:-1] * rise[1:] - step[1:] * rise[:-1]) > STRAIGHT)
-    return places[np.concatenate([[True], np.logical_or.reduce(bends), [True]])]
+    needed = np.concatenate([[True], np.logical_or.reduce(bends), [True]])
+    return np.asarray(places[needed], dtype=np.intp)
 
 
 def wrap(text: str, size: float, width: float, measure: Measure) -> list[str]:

@@ -16,7 +16,8 @@ from planner.papers.flow import Column, Flow, Row
 from planner.papers.record_trip import height_text
 
 if TYPE_CHECKING:
-    from planner.evidence.forecast import ActivityForecast, PredictorResult
+    from planner.evidence.forecast import ActivityForecast
+    from planner.evidence.predictor import PredictorResult
     from planner.results import PartPlan
 
 CHART_TEXT_PT = 8.5
