@@ -13,6 +13,7 @@ from pathlib import Path
 
 import pytest
 
+from planner.batch.lines import fingerprint, read_lines
 from planner.batch.runner import run_batch
 from planner.catalogue import profile_text
 from planner.errors import InputError, StoreError
@@ -146,7 +147,9 @@ def test_after_a_kill_only_whole_cases_count_and_the_rest_is_done(finished, tmp_
         os.kill(process.pid, signal.SIGKILL)
     done = whole_cases(tmp_path / "out")
     assert 1 <= len(done) < 3
-    (tmp_path / "out" / "cases" / "000003-0123456789abcdef.part").mkdir()  # half-written when the power went
+    half = tmp_path / "out" / "cases" / "000003-0123456789abcdef.part"
+    half.mkdir()  # half-written when the power went
+    (half / "plan.json").write_text("{")
     told = Told()
     assert run_batch(cases, tmp_path / "out", progress=told) == 0
     assert told.states[0].kept == len(done)
@@ -178,7 +181,8 @@ def test_a_bad_case_is_reported_with_its_line_and_the_rest_is_done(tmp_path):
     assert run_batch(cases, tmp_path / "out", progress=told) == 1
     assert told.sentences[0].startswith("Line 2: ")
     assert told.sentences[1].startswith("Line 3: ")
-    assert "99" in told.sentences[1]
+    assert "version 99" in told.sentences[1]
+    assert not any("The planner failed" in text for text in told.sentences)
     assert told.sentences[2].startswith("2 of 4 cases failed")
     rows = table(tmp_path / "out")
     assert [row["status"] for row in rows] == ["planned", "failed", "failed", "planned"]
@@ -192,6 +196,17 @@ def test_a_mended_line_is_planned_and_its_failure_forgotten(tmp_path):
     write_cases(cases, ["mended"])
     assert run_batch(cases, tmp_path / "out", progress=Told()) == 0
     assert [row["status"] for row in table(tmp_path / "out")] == ["planned"]
+
+
+def test_a_line_that_failed_before_and_is_planned_now_counts_as_planned(tmp_path):
+    cases = write_cases(tmp_path / "cases.jsonl", ["killed last time"])
+    (line,) = read_lines(cases)
+    (tmp_path / "out" / "cases").mkdir(parents=True)
+    (tmp_path / "out" / "cases" / f"{line.name(fingerprint(papers=False))}.failed").write_text("The process ended.")
+    assert run_batch(cases, tmp_path / "out", progress=Told()) == 0
+    (row,) = table(tmp_path / "out")
+    assert (row["status"], row["message"]) == ("planned", "")
+    assert not list(tmp_path.rglob("*.failed"))
 
 
 def test_a_reference_that_stands_twice_is_said_and_both_are_planned(tmp_path):
