@@ -54,6 +54,17 @@ class Note:
 
 
 @dataclass(frozen=True)
+class OxygenResponse:
+    """Blood measured on oxygen from a device at a flow or setting, on the ground, beside a value on air."""
+
+    device_id: str
+    amount: float
+    barometric_mmhg: float
+    spo2_fraction: float | None
+    pao2_mmhg: float | None
+
+
+@dataclass(frozen=True)
 class Baseline:
     """The ground values, in numbers, with where and when they were taken. None: not measured, or not usable."""
 
@@ -73,6 +84,7 @@ class Baseline:
     haemoglobin_g_dl: float | None
     challenge: Challenge | None
     lung_readings: tuple[LungReading, ...]
+    responses: tuple[OxygenResponse, ...]
     person: Person
     notes: tuple[Note, ...]
 
@@ -104,8 +116,13 @@ def read_baseline(case: Case, on: date | None) -> Baseline:
             or (paco2 is not None and paco2 > HYPERCAPNIA_MMHG)
         ),
     )
+    on_air = any(_says_oxygen(one) and one.breathing.gas == "air" for one in case.measurements)
+    responses = [one for measured in case.measurements if on_air and (one := _response(measured)) is not None]
     readings = [
-        reading for measured in case.measurements if (reading := _lung_reading(measured, on, notes)) is not None
+        reading
+        for measured in case.measurements
+        if not (on_air and _response(measured) is not None)
+        if (reading := _lung_reading(measured, on, notes)) is not None
     ]
     barometric = None if gas is None else _pressure(gas.place)
     notes += _doubts(gas, oximetry, on)
@@ -126,6 +143,7 @@ def read_baseline(case: Case, on: date | None) -> Baseline:
         haemoglobin_g_dl=person.haemoglobin_g_dl,
         challenge=challenge,
         lung_readings=tuple(readings),
+        responses=tuple(responses),
         person=person,
         notes=tuple(dict.fromkeys(notes)),
     )
@@ -181,6 +199,26 @@ def _lung_reading(measured: Measurement, on: date | None, notes: list[Note]) -> 
     except InputError as error:
         notes.append(Note("ask", error.message))
     return None
+
+
+def _says_oxygen(measured: Measurement) -> bool:
+    """A PaO2 or a resting SpO2 was measured, other than in a challenge test."""
+    if isinstance(measured, BloodGas):
+        return measured.pao2_mmhg is not None
+    return isinstance(measured, Oximetry) and measured.activity == "rest" and measured.spo2_percent is not None
+
+
+def _response(measured: Measurement) -> OxygenResponse | None:
+    """A value on oxygen from a known device and amount: it teaches what the device adds, not what the lung is."""
+    breathing, barometric = measured.breathing, _pressure(measured.place)
+    amount = breathing.flow_l_min if breathing.flow_l_min is not None else breathing.setting
+    if not _says_oxygen(measured) or breathing.gas != "oxygen" or breathing.fio2 is not None:
+        return None
+    if breathing.device_id is None or amount is None or barometric is None:
+        return None
+    spo2 = measured.spo2_percent if isinstance(measured, Oximetry) else None
+    pao2 = measured.pao2_mmhg if isinstance(measured, BloodGas) else None
+    return OxygenResponse(breathing.device_id, amount, barometric, None if spo2 is None else spo2 / 100.0, pao2)
 
 
 def _challenge_reading(test: Challenge, barometric: float, age: float | None, stable: bool) -> LungReading | None:

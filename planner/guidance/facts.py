@@ -5,14 +5,12 @@ FACTS lists every name with the question to ask when it is missing; a pathway th
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from dataclasses import dataclass
-from datetime import date
 from typing import Literal
 
 from planner.case import Case
 from planner.evidence.baseline import Baseline
-from planner.evidence.forecast import PartForecast
 from planner.guidance.challenge import read_challenge
 from planner.guidance.hypercapnia import CarbonDioxideFinding
 from planner.lung.blood import saturation
@@ -70,11 +68,8 @@ def gather_facts(
     case: Case,
     baseline: Baseline,
     carbon_dioxide: CarbonDioxideFinding,
-    forecasts: Sequence[PartForecast],
-    on: date | None,
 ) -> dict[str, Fact]:
-    """Every fact of FACTS for this case; not known where it was not entered."""
-    del forecasts, on  # pathways rest on measurements, not on forecasts
+    """Every fact of FACTS for this case, not known where it was not entered. Facts are measurements, not forecasts."""
     patient, function = case.patient, case.patient.function
     rest = case.prescription.rest
     age = patient.age_years
