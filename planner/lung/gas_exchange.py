@@ -42,7 +42,9 @@ FIRST_STEPS = 10  # nearly every sample that has a solution has found it by then
 MOST_STEPS = 40
 SETTLED_STEP = 1e-4  # a last step this small (mmHg, and of the log ratio) leaves an error of its square
 LARGEST_FACTOR = 4.0  # how far one step may raise or lower a pressure
-BLOCK_UNITS = 10_240  # units (samples times nodes) solved together; their arrays stay in the processor's cache
+# Units (samples times nodes) solved together: their arrays stay in the processor's cache, and sums over the units stay
+# below the size (9216) at which OpenBLAS shares them over threads, which on a busy machine costs more than it gains.
+BLOCK_UNITS = 9_000
 BELOW_RANGE = (
     "Below model range: with this air, carbon dioxide, unevenness and shunt no steady state with an arterial oxygen "
     f"pressure above {LOWEST_PO2_MMHG:g} mmHg exists."

@@ -6,6 +6,8 @@ import numpy as np
 
 from planner.air.ranges import Array
 
+SINGLE_THREAD_WORK = 200_000  # multiplications; OpenBLAS begins to share at 262 144
+
 
 def lagrange(at: Array, nodes: Array) -> Array:
     """Weights, shape (at, nodes), of the polynomial through all nodes."""
@@ -24,6 +26,17 @@ def local_cubic(at: Array, nodes: Array) -> Array:
         rows = first == start
         weights[rows, start : start + 4] = lagrange(at[rows], nodes[start : start + 4])
     return weights
+
+
+def product(left: Array, right: Array) -> Array:
+    """The matrix product, rows in parts so small that the linear algebra library does not share them over threads.
+
+    On a machine that is busy (drawing, another worker) waiting for a second thread costs far more than it gains.
+    """
+    rows = max(SINGLE_THREAD_WORK // (left.shape[1] * right.shape[1]), 1)
+    if left.shape[0] <= rows:
+        return left @ right
+    return np.concatenate([left[start : start + rows] @ right for start in range(0, left.shape[0], rows)])
 
 
 def end_nodes(low: float, high: float, count: int) -> Array:

@@ -8,7 +8,7 @@ from planner.air.ranges import Array
 from planner.errors import InputError
 from planner.lung.blood_shift import SaturationCurve
 from planner.lung.gas_exchange import LOWEST_PO2_MMHG
-from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic
+from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic, product
 from planner.lung.reading import LungReading, Person, pao2_sd_mmhg, shown_spo2_scale, spo2_sd
 from planner.lung.response import Body, ContentCurve, contents
 
@@ -44,8 +44,8 @@ def po2_over_log_sd(reading: LungReading, fio2: Array, pco2_mmhg: Array, shunt: 
         * lagrange(fio2, fio2_nodes)[:, None, :, None]
         * lagrange(pco2_mmhg, pco2_nodes)[:, None, None, :]
     ).reshape(shunt.size, -1)
-    over_nodes = weights @ content.reshape(LOG_SD_NODES.size, -1).T
-    po2 = ContentCurve(body.haemoglobin_g_dl).po2_mmhg(over_nodes @ TO_FINE.T)
+    over_nodes = product(weights, content.reshape(LOG_SD_NODES.size, -1).T)
+    po2 = ContentCurve(body.haemoglobin_g_dl).po2_mmhg(product(over_nodes, TO_FINE.T))
     return np.where(po2 < LOWEST_PO2_MMHG, np.nan, po2)
 
 

@@ -18,7 +18,7 @@ from planner.air.ranges import Array
 from planner.lung import blood
 from planner.lung.alveolar import carbon_dioxide_factor
 from planner.lung.gas_exchange import exchange
-from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic
+from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic, product
 
 RESPIRATORY_QUOTIENT = 0.82  # at rest, 0.80 to 0.83; textbook value
 AIR = 0.2093
@@ -119,7 +119,7 @@ class SolvedLungs:
         content = contents(self.body, self.log_sd_nodes, self.shunt_nodes, inspired, inspired / fraction, carbon)
         content = np.nan_to_num(extended(content, logs, axis=-1, downward=True), nan=0.0)  # no answer anywhere: below
         fine = np.linspace(logs[0], logs[-1], steps)
-        flat = content.reshape(-1, logs.size) @ local_cubic(fine, logs).T
+        flat = product(content.reshape(-1, logs.size), local_cubic(fine, logs).T)
         lungs = self.log_sd_nodes.size * self.shunt_nodes.size
         per_log = (steps - 1) / float(logs[-1] - logs[0])
         return Solved(flat.reshape(lungs, -1), carbon.shape[0], float(logs[0]), per_log, steps)
@@ -168,7 +168,7 @@ class Response:
 
     def _branch(self, solved: Solved) -> Branch:
         """The table of each draw from the solved lungs around it."""
-        content = self._weights @ solved.content
+        content = product(self._weights, solved.content)
         po2 = self.solved.curve.po2_mmhg(content).reshape(self.draws, solved.places, -1, solved.steps)
         powers = np.einsum("kc,dpcs->dpks", TO_POWERS, po2)
         return Branch(powers, solved.log_first, solved.per_log, solved.steps)

@@ -170,7 +170,7 @@ def test_over_the_whole_box_it_is_a_possible_number_or_a_marked_refusal(box, bar
         assert np.isnan(solved.po2_mmhg)
         return
     fraction = inspired / (barometric - 47.0)
-    assert 20.0 <= solved.po2_mmhg <= inspired - paco2 * (fraction + (1.0 - fraction) / 0.8) + 1e-6
+    assert 20.0 <= solved.po2_mmhg <= inspired - paco2 * (fraction + (1.0 - fraction) / 0.8) + 1e-3
     assert 0.0 < solved.saturation < 1.0
     assert solved.venous_oxygen_ml_dl > 0.0
 

@@ -3,7 +3,7 @@
 import numpy as np
 import pytest
 
-from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic
+from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic, product
 
 
 def test_polynomials_up_to_the_degree_are_exact():
@@ -25,3 +25,10 @@ def test_a_missing_end_is_continued_straight_and_the_rest_is_left():
     up = np.array([1.0, 3.0, np.nan, np.nan])
     assert extended(up, nodes, axis=0, downward=False).tolist() == [1.0, 3.0, 5.0, 7.0]
     assert np.isnan(table[0, 0])
+
+
+def test_a_product_in_parts_is_the_product():
+    rng = np.random.default_rng(1)
+    left, right = rng.normal(size=(1000, 15)), rng.normal(size=(15, 160))
+    assert product(left, right) == pytest.approx(np.einsum("ij,jk->ik", left, right), abs=1e-12)
+    assert product(left[:3], right).shape == (3, 160)
