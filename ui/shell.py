@@ -103,8 +103,12 @@ class Shell(BoxLayout):
         """Show another step."""
         if self.screen is not None and step == self.step:
             step = self._before if step == "display" else step
+        if step == "text":
+            self.session.place["text_of"] = self._before
         if step != self.step:
-            self._before, self.step = self.step, step
+            if self.step in [one.name for one in STEPS]:
+                self._before = self.step
+            self.step = step
         self._open_step()
 
     def _open_step(self) -> None:
@@ -143,7 +147,7 @@ class Shell(BoxLayout):
         if key == 27:
             if self.screen.escape():
                 return True
-            if self.step == "display":
+            if self.step not in [one.name for one in STEPS]:
                 self.go(self._before)
             else:
                 self.leave()

@@ -335,6 +335,37 @@ def test_long_work_is_shown_after_a_second_and_can_be_stopped(opened):
     assert driver.app.session.plan is None
 
 
+def test_a_step_is_read_and_copied_as_plain_text(demo):
+    from kivy.core.clipboard import Clipboard
+
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    demo.tap(demo.app.shell.units)
+    demo.tap("Show the step as plain text")
+    demo.tap("Copy the text")
+    lines = Clipboard.paste().split("\n")
+    assert lines[0] == "Where, and for how long?"
+    assert sum("inspired PO₂" in line for line in lines) == len(case(demo).trip.parts)
+    assert lines[-1] == "Estimate only. Confirm with prescriber."
+    assert "[b]" not in "".join(lines)
+    demo.tap("Back to the step")
+    assert demo.app.shell.step == "trip"
+
+
+def test_leaving_home_sets_day_time_and_zone(demo):
+    driver = demo
+    driver.app.shell.go("trip")
+    driver.frames(6)
+    driver.tap("Leaving home")
+    driver.fill(driver.field("Day of leaving"), "5 Feb 2027")
+    driver.fill(driver.field("Time of leaving"), "6:45")
+    assert case(driver).trip.departs_at.isoformat() == "2027-02-05T06:45:00"
+    driver.fill(driver.field("Time zone at home"), "madrid")
+    driver.tap("Europe/Madrid")
+    assert case(driver).trip.departure_zone == "Europe/Madrid"
+    assert driver.reads("Fri 06:45")
+
+
 def test_the_keys_used_here_are_kivys():
     from kivy.core.window import Keyboard
 

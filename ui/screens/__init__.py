@@ -38,7 +38,10 @@ STEPS = (
     Step("patient", "Patient", "ui.screens.patient:PatientScreen"),
     Step("trip", "Trip", "ui.screens.trip:TripScreen"),
 )
-PAGES = (Step("display", "Display", "ui.screens.display:DisplayScreen"),)  # reached from elsewhere than the bar
+PAGES = (  # reached from elsewhere than the bar
+    Step("display", "Display", "ui.screens.display:DisplayScreen"),
+    Step("text", "As text", "ui.screens.as_text:TextScreen"),
+)
 
 
 def screen_class(name: str) -> Any:

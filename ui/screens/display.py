@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from ui.screens.screen import Screen
 from ui.theme import theme
-from ui.widgets.buttons import PrimaryButton
+from ui.widgets.buttons import PlainButton, PrimaryButton
 from ui.widgets.choices import Choice
 from ui.widgets.text import Text
 
@@ -24,6 +24,7 @@ class DisplayScreen(Screen):
             self.form.choice("display.paper", "Paper", (("A4", "A4"), ("Letter", "Letter"))),
             Choice("Theme", (("light", "Light"), ("dark", "Dark")), theme.name, self._use),
             Text("Changing units changes no entry and no result.", role="label", tone="muted"),
+            PlainButton("Show the step as plain text", lambda: self.go("text")),
             PrimaryButton("Back to the case", lambda: self.go("display")),
         )
 

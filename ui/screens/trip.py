@@ -18,7 +18,7 @@ from ui.theme import space
 from ui.widgets.buttons import PlainButton, PrimaryButton, QuietButton
 from ui.widgets.choices import Choice
 from ui.widgets.entries import DateEntry
-from ui.widgets.journey_entries import TimeEntry
+from ui.widgets.journey_entries import SearchEntry, TimeEntry
 from ui.widgets.notices import Notice
 from ui.widgets.rows import Fold, ListRow, Opened, Side, Stack
 from ui.widgets.text import Text, plain, strong
@@ -35,6 +35,7 @@ class TripScreen(Screen):
     def build(self) -> None:
         """Ribbon, parts, what can be added, when and where it starts."""
         self.edits = TripEdits(self.session)
+        self._clock = LEAVE_AT
         self.ribbon = RibbonOfTrip(self.session, layer=self._layer, tell=self._tell)
         self.ribbon.plot.on_lengthen = self._lengthen
         self.empty = Live(self.session, lambda: not self.session.case.trip.parts, self._fill_empty)
@@ -174,10 +175,18 @@ class TripScreen(Screen):
                 self.form.keep(day, self._day),
                 self.form.keep(clock, self._time),
                 self.form.number("trip.home_elevation_m", "Elevation of home", altitude, why="0 is sea level"),
-                self.form.text("trip.departure_zone", "Time zone at home", hint="For example Europe/Vienna"),
+                self.form.keep(
+                    SearchEntry(
+                        "Time zone at home", None, _zones, str, hint="For example Vienna", on_value=self._set_zone
+                    ),
+                    "trip.departure_zone",
+                ),
             )
         )
         self.form.refresh()
+
+    def _set_zone(self, zone: str | None) -> None:
+        self.session.set("trip.departure_zone", zone, "the time zone at home")
 
     def _day(self) -> date | None:
         leaves = self.session.case.trip.departs_at
@@ -188,13 +197,22 @@ class TripScreen(Screen):
         return leaves.time() if leaves is not None else None
 
     def _leave_on(self, day: date | None) -> None:
-        leaves = None if day is None else datetime.combine(day, self._time() or LEAVE_AT)
+        self._clock = self._time() or self._clock  # emptying the day on the way to another keeps the time
+        leaves = None if day is None else datetime.combine(day, self._clock)
         self.session.set("trip.departs_at", leaves, "the day of leaving")
 
     def _leave_at(self, clock: time | None) -> None:
         day = self._day()
         if day is not None and clock is not None:
             self.session.set("trip.departs_at", datetime.combine(day, clock), "the time of leaving")
+
+
+def _zones(text: str) -> list[tuple[str, str, str]]:
+    from zoneinfo import available_timezones
+
+    wanted = text.strip().lower().replace(" ", "_")
+    found = sorted(zone for zone in available_timezones() if wanted in zone.lower() and "/" in zone)
+    return [(zone, zone.replace("_", " "), "") for zone in found[:5]]
 
 
 class _PartRow(ListRow):

@@ -65,7 +65,7 @@ class PartForm(Stack):
             Side(
                 self.form.number(
                     f"{self.path}.cabin_altitude_m", "Cabin altitude", altitude, usual=(0.0, 2500.0),
-                    why=f"Empty: {planned} is planned; higher fields ask more", also=self._also,
+                    why=f"Empty: {planned} is planned", also=self._also,
                 ),
             )
         )  # fmt: skip

@@ -79,6 +79,9 @@ class TimeEntry(Entry):
         except ValueError as error:
             self.hold(str(error))
             return
+        if value is None:
+            self.hold("A time of day is needed here, for example 7:30.")
+            return
         self._accept(value)
 
 

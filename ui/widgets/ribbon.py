@@ -7,6 +7,7 @@ What does not move is painted once; a drag repaints only the scrub line, its rin
 from __future__ import annotations
 
 from collections.abc import Callable
+from itertools import pairwise
 from typing import Any
 
 from kivy.clock import Clock
@@ -237,6 +238,16 @@ class RibbonView(BoxLayout):
             self.plot.minute = minute
         self.plot.show(lay)
 
+    def spoken(self) -> list[str]:
+        """The line of reading in the middle of each part, for those who cannot see the drawing."""
+        if self.plot.lay is None or self._tell is None:
+            return []
+        ribbon = self.plot.lay(width=600.0, height=200.0, text_size=13.0, measure=measure)
+        edges = ribbon.scale.minutes
+        middles = [(a + b) / 2 for a, b in pairwise(edges)]
+        lines = [self._tell(ribbon.read_at(float(minute))).replace("\n", ", ") for minute in middles]
+        return [line.replace("[b]", "").replace("[/b]", "") for line in lines]
+
     def _zoomed(self, *_: Any) -> None:
         self._less.disabled = self.plot.zoom <= 1.0
         self._more.disabled = self.plot.zoom >= MOST_ZOOM
@@ -265,6 +276,19 @@ class DrawingView(Widget):
         """Show another drawing."""
         self._lay = lay
         self._again()
+
+    def spoken(self) -> list[str]:
+        """The drawing's words, line by line from the top."""
+        if self._lay is None:
+            return []
+        drawing = self._lay(width=600.0, text_size=14.0, measure=measure)
+        lines: dict[int, list[Any]] = {}
+        for text in drawing.texts():
+            lines.setdefault(round(text.y / 6), []).append(text)
+        return [
+            " ".join(text.text for text in sorted(line, key=lambda text: text.x))
+            for _, line in sorted(lines.items(), reverse=True)
+        ]
 
     def _lay_out(self, *_: Any) -> None:
         if self._lay is None or self.width < dp(40):
