@@ -21,7 +21,8 @@ def thinned(lung: FittedLung, draws: int) -> FittedLung:
         for field in fields(lung)
         if isinstance(value := getattr(lung, field.name), np.ndarray) and value.shape == (have,)
     }
-    return replace(lung, **arrays, _responses={})
+    # What is solved already spans these draws too; what they have solved later would not span all, so it is not shared.
+    return replace(lung, **arrays, _solved=dict(lung._solved), _responses={})
 
 
 def log_sd_spread(lung: FittedLung) -> tuple[float, float, float]:
