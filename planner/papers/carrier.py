@@ -22,6 +22,7 @@ if TYPE_CHECKING:
     from planner.results import Plan
 
 SIZES_PT = (9.5, 9.0, 8.5, 8.0, 7.5, 7.0)
+INFECTIOUS = ("tuberculosis", "infection_now")  # conditions of the cautions profile
 TOLD = (m.BloodGas, m.Oximetry, m.WalkTest)
 
 
@@ -135,6 +136,7 @@ def _condition(flow: Flow, desk: Desk) -> None:
         state = say(f"words.state.{last.state}")
         rows.append((say("carrier.state"), say("carrier.state_value", state=state, day=desk.texts.day(last.taken_on))))
     rows.append((say("carrier.function"), desk.quantities.yes_no(patient.function.can_walk_50_m)))
+    rows.append((say("carrier.infectious"), desk.quantities.yes_no(_infectious(desk))))
     for measurement in desk.case.measurements:
         if isinstance(measurement, TOLD):
             rows.append(measurement_line(desk, measurement))
@@ -145,6 +147,13 @@ def _condition(flow: Flow, desk: Desk) -> None:
     flow.pairs(rows)
     write_prescribed(flow, desk, small=True)
     flow.paragraph(say("carrier.reduced"), scale=0.9, role="muted")
+
+
+def _infectious(desk: Desk) -> bool | None:
+    """Whether an infectious condition was answered yes, all no, or not all answered."""
+    answers = {answer.condition_id: answer.present for answer in desk.case.cautions.answers}
+    told = [answers.get(condition) for condition in INFECTIOUS]
+    return True if any(told) else None if None in told else False
 
 
 def _route(desk: Desk, part: Part) -> str:

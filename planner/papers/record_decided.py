@@ -60,6 +60,8 @@ def _cells(desk: Desk, decision: Decision) -> tuple[str, ...]:
     text = decision_text(desk, decision)
     if decided is not None and decided.stale:
         text = f"{text}\n{say('decided.stale')}"
+    if decided is not None and decided.fault:
+        text = f"{text}\n{decided.fault}"
     return name, model or desk.quantities.unknown, text, _expected(desk, decision)
 
 

@@ -131,7 +131,7 @@ def forecast_chart(desk: Desk, activity: ActivityForecast, width: float) -> Draw
         text_size=CHART_TEXT_PT,
         measure=fonts.measure,
         title=desk.say("forecast.chart_title"),
-        unit=desk.say("forecast.chart_unit", unit=q.display.pressure),
+        unit=q.display.pressure,
         tick_text=lambda value: desk.texts.number(value, 1),
         label_share=LABEL_SHARE,
     )

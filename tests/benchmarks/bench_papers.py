@@ -5,12 +5,16 @@ Run: python tests/benchmarks/bench_papers.py. Goal: the record within 50 ms warm
 
 from __future__ import annotations
 
+import sys
 import time
 from collections.abc import Callable
 from io import BytesIO
+from pathlib import Path
 from statistics import median
 
 from reportlab.pdfgen.canvas import Canvas
+
+sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
 
 from planner import Case, plan
 from planner.catalogue import profile_text

@@ -118,8 +118,12 @@ def test_oximetry_alone_gives_a_record_with_a_forecast(plans):
 
 def test_the_record_holds_assumptions_and_sources(first):
     text = shown(first)
-    for words in ("Assumptions", "8,000 ft", "West 1996", "Sources", "Coker RK"):
-        assert words in text
+    sources = {pathway.source for pathway in first.plan.pathways} | {
+        line.source for line in first.plan.trace if line.source
+    }
+    assert len(sources) > 3
+    for words in ("Assumptions", "8,000 ft", "West 1996", "Sources", *sources):
+        assert " ".join(words.split()[:4]) in text
 
 
 def test_a_missing_decision_is_said_and_nothing_is_sized(plans):
