@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 from planner.delivery.decided import OnOxygen, with_decision
 from planner.delivery.devices import Device, refusal
 from planner.delivery.dose import Answers, Condition, DoseCurve, Query, ask, curve, offered
-from planner.delivery.effect import DeliverySpread, usual_spread
+from planner.delivery.effect import DeliverySpread, source_fraction, usual_spread
 from planner.delivery.target import (
     MOST_ADVISED_L_MIN,
     MOST_CHANCE_ABOVE,
@@ -25,6 +25,7 @@ from planner.delivery.target import (
     percent,
     rule_amount,
 )
+from planner.errors import InputError
 from planner.lung.fitted import FittedLung
 
 __all__ = [
@@ -98,10 +99,15 @@ def titrate(
         refused: list[Refused] = []
         for device in listed:
             reason = refusal(device, condition.activity, condition.part_kind, condition.sources)
+            if reason is None:
+                try:
+                    device = offered(device, condition)
+                    source_fraction(device, condition.barometric_mmhg)
+                except InputError as error:
+                    reason = error.message
             if reason is not None:
                 refused.append(Refused(device.id, reason))
                 continue
-            device = offered(device, condition)
             start = len(queries)
             queries += [Query(condition, device, amount) for amount in (0.0, *device.steps)]
             tried.append(slice(start, len(queries)))

@@ -186,6 +186,17 @@ def test_asleep_a_pulse_device_is_not_tried_and_the_reason_is_kept():
     assert found.model_device_id == "cannula"
 
 
+def test_a_device_that_cannot_work_there_is_refused_and_the_others_are_tried():
+    high = at(5200.0)
+    found = one(MODERATE, high, ["cannula_concentrator", "cannula"], NO_RISK)
+    assert [(one.device_id, "5200 m is outside" in one.reason) for one in found.refused] == [
+        ("cannula_concentrator", True)
+    ]
+    assert [curve.device_id for curve in found.curves] == ["cannula"]
+    strange = one(MODERATE, at(2438.4, part_kind="flight", airline_flows_l_min=(40.0,)), ["airline"], NO_RISK)
+    assert "40 L/min is outside" in strange.refused[0].reason
+
+
 def test_where_no_device_may_be_used_it_says_so():
     found = one(MODERATE, at(2438.4, "asleep"), ["pulse_conserver"], NO_RISK)
     assert found.curves == ()
