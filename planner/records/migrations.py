@@ -8,8 +8,9 @@ SCHEMA = 1
 
 _STEPS = {
     0: (
-        "create table versions(case_id text not null, version integer not null, saved_at text not null, body blob not null,"
-        " digest blob not null, sealed integer not null, note text not null, primary key(case_id, version)) strict",
+        "create table versions(case_id text not null, version integer not null, saved_at text not null, "
+        "body blob not null, digest blob not null, sealed integer not null, note text not null, "
+        "primary key(case_id, version)) strict",
         "create table settings(name text primary key, value blob not null) strict",
     ),
 }

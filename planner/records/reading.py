@@ -1,4 +1,4 @@
-"""Reads and writes case files; a faulty file gives a sentence for each fault: where, what is allowed, what was given."""
+"""Reads and writes case files; a faulty file gives one sentence a fault: where, what is allowed, what was given."""
 
 from __future__ import annotations
 

@@ -1,4 +1,4 @@
-"""Secrecy at rest: a random data key, wrapped by a key from a passphrase; every version sealed and bound to its identity.
+"""Secrecy at rest: a random data key, wrapped by a key from a passphrase; versions sealed and bound to their identity.
 
 The passphrase goes through scrypt (n = 2^16, r = 8, p = 1, RFC 7914), the rest is AES-256 in GCM (NIST SP 800-38D).
 Changing the passphrase wraps the same data key anew.

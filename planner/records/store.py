@@ -1,41 +1,35 @@
-"""Cases kept on this machine: one SQLite file, every save a new version, acknowledged only when it is on the disk.
+"""Cases kept on this machine: every save a new version, acknowledged only when it is on the disk.
 
-WAL with synchronous FULL; each version carries a digest over its identity and content, so that a damaged file gives an
-error or true data and never wrong data. One process writes; another that opens the same file reads and is told.
-Bodies may be sealed (see secrecy); then nothing of a case is readable in the file.
+Each version carries a digest over its identity and content, so that a damaged file gives an error or true data and never
+wrong data. With a passphrase every version is sealed (see secrecy) and nothing of a case is readable in the file.
 """
 
 from __future__ import annotations
 
-import contextlib
-import fcntl
 import hashlib
+import json
 import os
 import secrets
-import sqlite3
-from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import UTC, datetime
 from pathlib import Path
-from typing import Any
 
 import platformdirs
 
 from planner.case import Case
 from planner.catalogue import APP_NAME
 from planner.errors import StoreError
-from planner.records.migrations import SCHEMA, migrate
+from planner.records.database import Database
 from planner.records.reading import CaseFileError, read_case, write_case
-from planner.records.secrecy import Seal
+from planner.records.secrecy import Seal, new_seal, unwrapped
 
-APPLICATION_ID = 0x4F324341
 FILE_NAME = "cases.db"
-BUSY_MS = 5000
+WRAPPED_KEY = "wrapped_key"
 
 
 @dataclass(frozen=True)
 class CaseEntry:
-    """A case as the list shows it, from its latest version."""
+    """A case as the list shows it, from its latest version. fault: why it cannot be read."""
 
     case_id: str
     reference: str
@@ -44,6 +38,7 @@ class CaseEntry:
     departs_on: str | None
     versions: int
     saved_at: datetime
+    fault: str = ""
 
 
 @dataclass(frozen=True)
@@ -71,24 +66,19 @@ def new_case_id() -> str:
 class CaseStore:
     """The kept cases. Raises StoreError with a sentence for whatever cannot be done; nothing acknowledged is lost."""
 
-    def __init__(self, path: Path | None = None, seal: Seal | None = None) -> None:
-        self.path = path or default_path()
-        self._seal = seal
-        self._lock: int | None = None
-        try:
-            self.path.parent.mkdir(parents=True, exist_ok=True, mode=0o700)
-            self.read_only = not self._take_lock()
-            self._db = self._opened()
-            self._prepare()
-        except OSError as error:
-            self._release_lock()
-            raise StoreError(f"{self.path.parent} cannot be used for the cases: {error.strerror}.") from error
-        except sqlite3.Error as error:
-            self._release_lock()
-            raise StoreError(f"{self.path.name} cannot be read: {error}.") from error
-        except StoreError:
-            self._release_lock()
-            raise
+    def __init__(self, path: Path | None = None) -> None:
+        self._file = Database(path or default_path())
+        self._seal: Seal | None = None
+
+    @property
+    def path(self) -> Path:
+        """The file the cases are in."""
+        return self._file.path
+
+    @property
+    def read_only(self) -> bool:
+        """Another window writes; this one reads."""
+        return self._file.read_only
 
     # -- keeping
 
@@ -97,36 +87,34 @@ class CaseStore:
 
         The same content as the latest version is not kept again. Raises StoreError when nothing was kept.
         """
-        self._require_writer()
         body = write_case(case).encode()
-        with self._writing():
-            latest = self._row("select max(version) from versions where case_id = ?", case_id)[0] or 0
+        with self._file.writing():
+            latest = self._latest(case_id)
             if latest and self._body(case_id, latest) == body:
-                return int(latest)
-            version = int(latest) + 1
+                return latest
+            self._require_unlocked()
+            version = latest + 1
             kept = body if self._seal is None else self._seal.close(body, _identity(case_id, version))
-            self._db.execute(
+            self._file.write(
                 "insert into versions(case_id, version, saved_at, body, digest, sealed, note) values(?,?,?,?,?,?,?)",
-                (
-                    case_id,
-                    version,
-                    datetime.now(UTC).isoformat(timespec="milliseconds"),
-                    kept,
-                    _digest(case_id, version, kept),
-                    self._seal is not None,
-                    note,
-                ),
+                case_id,
+                version,
+                datetime.now(UTC).isoformat(timespec="milliseconds"),
+                kept,
+                _digest(case_id, version, kept),
+                self._seal is not None,
+                note,
             )
         return version
 
     def delete(self, case_id: str) -> int:
         """Remove a case with all its versions and give how many there were. What is removed is gone."""
-        self._require_writer()
-        with self._writing():
-            count = int(self._row("select count(*) from versions where case_id = ?", case_id)[0])
+        with self._file.writing():
+            count = int(self._file.row("select count(*) from versions where case_id = ?", case_id)[0])
             if count == 0:
                 raise StoreError(f"There is no case {case_id} to delete.")
-            self._db.execute("delete from versions where case_id = ?", (case_id,))
+            self._file.write("delete from versions where case_id = ?", case_id)
+        self._file.scrub()
         return count
 
     def restore(self, case_id: str, version: int) -> int:
@@ -136,40 +124,34 @@ class CaseStore:
     # -- reading
 
     def load(self, case_id: str, version: int | None = None) -> Case:
-        """A case, its latest version or another. Raises StoreError where it is missing, damaged or sealed."""
-        if version is None:
-            found = self._row("select max(version) from versions where case_id = ?", case_id)[0]
-            if found is None:
-                raise StoreError(f"There is no case {case_id}.")
-            version = int(found)
-        body = self._body(case_id, version)
+        """A case, its latest version or another. Raises StoreError where it is missing, damaged or locked."""
+        wanted = self._latest(case_id) if version is None else version
+        if wanted == 0:
+            raise StoreError(f"There is no case {case_id}.")
         try:
-            return read_case(body)
+            return read_case(self._body(case_id, wanted))
         except CaseFileError as error:
-            raise StoreError(f"Version {version} of case {case_id} cannot be read: {error}") from error
+            raise StoreError(f"Version {wanted} of case {case_id} cannot be read: {error}") from error
 
     def history(self, case_id: str) -> tuple[VersionEntry, ...]:
         """All versions of a case, the newest first."""
-        rows = self._rows(
+        rows = self._file.rows(
             "select version, saved_at, digest, note from versions where case_id = ? order by version desc", case_id
         )
-        return tuple(
-            VersionEntry(int(v), datetime.fromisoformat(at), digest.hex(), note) for v, at, digest, note in rows
-        )
+        return tuple(VersionEntry(int(number), _time(at), digest.hex(), note) for number, at, digest, note in rows)
 
     def entries(self) -> tuple[CaseEntry, ...]:
-        """Every case, the last saved first. A case that cannot be read is left to `load` to say so."""
-        rows = self._rows(
-            "select v.case_id, v.version, v.saved_at, count_of.n from versions v join "
-            "(select case_id, max(version) as latest, count(*) as n from versions group by case_id) as count_of "
-            "on v.case_id = count_of.case_id and v.version = count_of.latest order by v.saved_at desc, v.case_id"
+        """Every case, the last saved first; one that cannot be read says why."""
+        rows = self._file.rows(
+            "select v.case_id, v.version, v.saved_at, latest_of.n from versions v join "
+            "(select case_id, max(version) as latest, count(*) as n from versions group by case_id) as latest_of "
+            "on v.case_id = latest_of.case_id and v.version = latest_of.latest order by v.saved_at desc, v.case_id"
         )
         return tuple(self._entry(case_id, int(version), at, int(count)) for case_id, version, at, count in rows)
 
     def close(self) -> None:
         """Close the file and let another process write."""
-        self._db.close()
-        self._release_lock()
+        self._file.close()
 
     def __enter__(self) -> CaseStore:
         return self
@@ -177,17 +159,79 @@ class CaseStore:
     def __exit__(self, *_: object) -> None:
         self.close()
 
+    # -- secrecy
+
+    @property
+    def protected(self) -> bool:
+        """A passphrase is set."""
+        return self._wrapped() is not None
+
+    @property
+    def locked(self) -> bool:
+        """A passphrase is set and not entered."""
+        return self._seal is None and self.protected
+
+    def protect(self, passphrase: str) -> None:
+        """Set a passphrase: every version is sealed, and nothing readable is left in the file."""
+        if self.protected:
+            raise StoreError("A passphrase is set already; change it instead.")
+        seal = new_seal()
+        wrapped = seal.wrapped(passphrase)
+        with self._file.writing():
+            for case_id, version in self._file.rows("select case_id, version from versions"):
+                kept = seal.close(self._body(case_id, version), _identity(case_id, version))
+                self._file.write(
+                    "update versions set body = ?, digest = ?, sealed = 1, note = '' where case_id = ? and version = ?",
+                    kept,
+                    _digest(case_id, version, kept),
+                    case_id,
+                    version,
+                )
+            self._file.write("insert into settings(name, value) values(?, ?)", WRAPPED_KEY, wrapped)
+        self._seal = seal
+        self._file.scrub()
+
+    def unlock(self, passphrase: str) -> None:
+        """Enter the passphrase. Raises secrecy.WrongPassphrase, or StoreError when the kept key is damaged."""
+        wrapped = self._wrapped()
+        if wrapped is None:
+            raise StoreError("No passphrase is set.")
+        self._seal = unwrapped(wrapped, passphrase)
+
+    def lock(self) -> None:
+        """Forget the key until the passphrase is entered again."""
+        self._seal = None
+
+    def change_passphrase(self, old: str, new: str) -> None:
+        """Wrap the same key with another passphrase."""
+        wrapped = self._wrapped()
+        if wrapped is None:
+            raise StoreError("No passphrase is set.")
+        seal = unwrapped(wrapped, old)
+        with self._file.writing():
+            self._file.write("update settings set value = ? where name = ?", seal.wrapped(new), WRAPPED_KEY)
+        self._seal = seal
+        self._file.scrub()
+
     # -- inside
 
-    def _entry(self, case_id: str, version: int, at: str, count: int) -> CaseEntry:
-        from json import loads
+    def _wrapped(self) -> bytes | None:
+        row = self._file.row("select value from settings where name = ?", WRAPPED_KEY)
+        return None if row is None else bytes(row[0])
 
+    def _require_unlocked(self) -> None:
+        if self.locked:
+            raise StoreError("The cases are locked; enter the passphrase.")
+
+    def _latest(self, case_id: str) -> int:
+        return int(self._file.row("select max(version) from versions where case_id = ?", case_id)[0] or 0)
+
+    def _entry(self, case_id: str, version: int, at: str, count: int) -> CaseEntry:
         try:
-            table = loads(self._body(case_id, version))
-            patient, trip = table["patient"], table["trip"]
-        except (StoreError, ValueError, KeyError):
-            patient, trip = {"reference": "cannot be read"}, {}
-        departs = trip.get("departs_at")
+            table = json.loads(self._body(case_id, version))
+            patient, departs, fault = table["patient"], table["trip"].get("departs_at"), ""
+        except (StoreError, ValueError, KeyError) as error:
+            patient, departs, fault = {}, None, str(error)
         return CaseEntry(
             case_id=case_id,
             reference=patient.get("reference", ""),
@@ -195,100 +239,24 @@ class CaseStore:
             diagnosis=patient.get("diagnosis"),
             departs_on=departs[:10] if departs else None,
             versions=count,
-            saved_at=datetime.fromisoformat(at),
+            saved_at=_time(at),
+            fault=fault,
         )
 
     def _body(self, case_id: str, version: int) -> bytes:
-        row = self._row("select body, digest, sealed from versions where case_id = ? and version = ?", case_id, version)
+        row = self._file.row(
+            "select body, digest, sealed from versions where case_id = ? and version = ?", case_id, version
+        )
         if row is None:
             raise StoreError(f"Case {case_id} has no version {version}.")
-        body, digest, sealed = row
+        body, digest, sealed = bytes(row[0]), row[1], row[2]
         if _digest(case_id, version, body) != digest:
             raise StoreError(f"Version {version} of case {case_id} is damaged; an older version may be whole.")
         if not sealed:
-            return bytes(body)
+            return body
         if self._seal is None:
             raise StoreError("The cases are locked; enter the passphrase.")
-        return self._seal.open(bytes(body), _identity(case_id, version))
-
-    def _opened(self) -> sqlite3.Connection:
-        existed = self.path.exists()
-        if self.read_only:
-            db = sqlite3.connect(f"file:{self.path}?mode=ro", uri=True, isolation_level=None, check_same_thread=False)
-        else:
-            if not existed:
-                os.close(os.open(self.path, os.O_CREAT | os.O_EXCL | os.O_RDWR, 0o600))
-            db = sqlite3.connect(self.path, isolation_level=None, check_same_thread=False)
-        db.execute(f"pragma busy_timeout = {BUSY_MS}")
-        return db
-
-    def _prepare(self) -> None:
-        db = self._db
-        application, schema = self._row("pragma application_id")[0], self._row("pragma user_version")[0]
-        if application not in (0, APPLICATION_ID) or (application == 0 and schema != 0):
-            raise StoreError(f"{self.path.name} is not a file of cases of this program.")
-        if schema > SCHEMA:
-            raise StoreError(f"{self.path.name} was written by a newer version of this program.")
-        if not self.read_only:
-            db.execute("pragma journal_mode = wal")
-            db.execute("pragma synchronous = full")
-            db.execute("pragma trusted_schema = off")
-            db.execute("pragma cell_size_check = on")
-            db.execute("pragma secure_delete = on")
-            if schema < SCHEMA:
-                with self._writing():
-                    migrate(db, int(schema))
-                    db.execute(f"pragma application_id = {APPLICATION_ID}")
-                    db.execute(f"pragma user_version = {SCHEMA}")
-        if self._row("pragma quick_check(1)")[0] != "ok":
-            raise StoreError(f"{self.path.name} is damaged. Restore a copy of it, or start a new file.")
-
-    @contextlib.contextmanager
-    def _writing(self) -> Iterator[None]:
-        try:
-            self._db.execute("begin immediate")
-            yield
-            self._db.execute("commit")
-        except sqlite3.Error as error:
-            self._roll_back()
-            raise StoreError(f"Not saved: {error}. What was saved before is still there.") from error
-        except BaseException:
-            self._roll_back()
-            raise
-
-    def _roll_back(self) -> None:
-        with contextlib.suppress(sqlite3.Error):
-            if self._db.in_transaction:
-                self._db.execute("rollback")
-
-    def _row(self, statement: str, *values: object) -> Any:
-        return next(iter(self._rows(statement, *values)), None)
-
-    def _rows(self, statement: str, *values: object) -> list[Any]:
-        try:
-            return self._db.execute(statement, values).fetchall()
-        except sqlite3.Error as error:
-            raise StoreError(f"{self.path.name} cannot be read: {error}.") from error
-
-    def _require_writer(self) -> None:
-        if self.read_only:
-            raise StoreError("Another window of this program has the cases open; this one only reads.")
-
-    def _take_lock(self) -> bool:
-        """Whether this process is the one that writes; held until close."""
-        handle = os.open(self.path.with_suffix(".lock"), os.O_CREAT | os.O_RDWR, 0o600)
-        try:
-            fcntl.flock(handle, fcntl.LOCK_EX | fcntl.LOCK_NB)
-        except BlockingIOError:
-            os.close(handle)
-            return False
-        self._lock = handle
-        return True
-
-    def _release_lock(self) -> None:
-        if self._lock is not None:
-            os.close(self._lock)
-            self._lock = None
+        return self._seal.open(body, _identity(case_id, version))
 
 
 def _identity(case_id: str, version: int) -> bytes:
@@ -297,3 +265,10 @@ def _identity(case_id: str, version: int) -> bytes:
 
 def _digest(case_id: str, version: int, body: bytes) -> bytes:
     return hashlib.sha256(_identity(case_id, version) + b"\0" + body).digest()
+
+
+def _time(text: str) -> datetime:
+    try:
+        return datetime.fromisoformat(text)
+    except ValueError as error:
+        raise StoreError("A time in the file of cases is damaged.") from error
