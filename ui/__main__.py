@@ -63,6 +63,9 @@ def _display_is_missing() -> bool:
 
 
 def _data_folder() -> Path:
+    override = os.environ.get("PLANNER_DATA_DIR")
+    if override:
+        return Path(override)
     import platformdirs
 
     from planner.catalogue import APP_NAME

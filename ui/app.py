@@ -35,7 +35,7 @@ class PlannerApp(App):  # type: ignore[misc]
 
     title = TITLE
 
-    def __init__(self, *, data_folder: Path | None = None, case_file: Path | None = None, demo: bool = False,
+    def __init__(self, *, data_folder: Path, case_file: Path | None = None, demo: bool = False,
                  planner: Any = "planner.plan", **keywords: Any) -> None:  # fmt: skip
         super().__init__(**keywords)
         self.data_folder, self.case_file, self.demo, self.planner = data_folder, case_file, demo, planner
@@ -123,13 +123,15 @@ class PlannerApp(App):  # type: ignore[misc]
 
     def on_pause(self) -> bool:
         """Save when the system puts the app away."""
-        self.on_stop()
+        if self.session is not None:
+            self.session.close()
         return True
 
     def on_stop(self) -> None:
         """Save what is not saved yet."""
         if self.session is not None:
             self.session.close()
+            self.library.close()
         Window.unbind(on_key_down=self._on_key)
 
     def _focused(self, kind: type) -> Any:

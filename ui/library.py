@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
-import uuid
 from dataclasses import dataclass
+from datetime import date
 from pathlib import Path
 
 from planner.case import Case
 from planner.catalogue import profile_text
+from planner.errors import StoreError
 from planner.records.reading import read_case
-from ui.measures import hours_minutes
+from planner.records.store import FILE_NAME, CaseEntry, CaseStore, new_case_id
+from ui.widgets.typing import date_text
 
 DIAGNOSIS_WORDS = {
     "copd": "COPD",
@@ -36,28 +38,44 @@ class CaseRow:
 
 
 class Library:
-    """Cases in the data folder; the store opens when it is first asked."""
+    """The store of cases, opened at once; `fault` says why it could not be, and then nothing is kept."""
 
-    def __init__(self, folder: Path | None) -> None:
-        self._folder = folder
-        self._cases: dict[str, Case] = {}
+    def __init__(self, folder: Path) -> None:
+        self.fault = ""
+        self._store: CaseStore | None = None
+        try:
+            self._store = CaseStore(folder / FILE_NAME)
+            if self._store.read_only:
+                self.fault = "The cases are open in another window. They can be read here, and nothing is saved."
+        except StoreError as error:
+            self.fault = str(error)
+
+    def close(self) -> None:
+        """Let another start of the app write."""
+        if self._store is not None:
+            self._store.close()
+            self._store = None
 
     def rows(self) -> list[CaseRow]:
-        """Every kept case, the last changed first."""
-        return [_row(case_id, case, "") for case_id, case in reversed(self._cases.items())]
+        """Every kept case, the last saved first."""
+        return [] if self._store is None else [_row(entry) for entry in self._store.entries()]
 
     def read(self, case_id: str) -> Case:
-        """The last kept version of a case."""
-        return self._cases[case_id]
+        """The last kept version of a case. Raises StoreError where it cannot be read."""
+        return self._opened().load(case_id)
 
     def save(self, case_id: str, case: Case) -> None:
-        """Keep a version."""
-        self._cases.pop(case_id, None)
-        self._cases[case_id] = case
+        """Keep a version. Raises StoreError where it cannot be kept; what was kept before stays."""
+        self._opened().save(case_id, case)
 
     def new_id(self) -> str:
         """An id that no case has."""
-        return uuid.uuid4().hex
+        return new_case_id()
+
+    def _opened(self) -> CaseStore:
+        if self._store is None:
+            raise StoreError(self.fault)
+        return self._store
 
     def demo(self, name: str) -> Case:
         """One of the demo cases."""
@@ -68,9 +86,9 @@ class Library:
         return read_case(path.read_bytes())
 
 
-def _row(case_id: str, case: Case, when: str) -> CaseRow:
-    patient = case.patient
-    words = [DIAGNOSIS_WORDS[patient.diagnosis] if patient.diagnosis else "Diagnosis not entered"]
-    if case.trip.parts:
-        words.append(f"trip of {hours_minutes(sum(part.duration_min for part in case.trip.parts))}")
-    return CaseRow(case_id, patient.initials or patient.reference or "No initials yet", ", ".join(words), when)
+def _row(entry: CaseEntry) -> CaseRow:
+    detail = DIAGNOSIS_WORDS.get(entry.diagnosis, "Diagnosis not entered")
+    if entry.departs_on:
+        detail = f"{detail}, leaving on {date_text(date.fromisoformat(entry.departs_on))}"
+    title = entry.initials or entry.reference or "No initials yet"
+    return CaseRow(entry.case_id, title, detail, date_text(entry.saved_at.astimezone().date()))

@@ -54,6 +54,8 @@ class CasesPage(BoxLayout):
         self.content.add_widget(Text("[b]Cases[/b]" if rows else "[b]Oxygen and altitude planner[/b]", role="title"))
         self.fault = Stack()
         self.content.add_widget(self.fault)
+        if self.library.fault:
+            self.fault.add_widget(Notice(plain(self.library.fault), "stop", title="Cases are not kept."))
         if not rows:
             self.content.add_widget(Text(EXPLAINED))
             self.content.add_widget(Text(PRIVATE, role="label", tone="muted"))
