@@ -90,7 +90,8 @@ def report_text(found: Outcomes) -> str:
         )
     lines.append(
         f"Run-outs: {found.ran_out} recorded, {found.ran_out_foreseen} of them foreseen as more likely than accepted. "
-        f"In {found.lasted} parts the oxygen lasted; in {found.lasted_but_feared} of them a run-out had been foreseen."
+        f"In {_counted(found.lasted, 'part')} the oxygen lasted; in {found.lasted_but_feared} of them a run-out had "
+        "been foreseen."
     )
     lines.append(f"Parts with symptoms: {found.symptoms}.")
     if found.late_min:
@@ -114,6 +115,8 @@ def _add(found: Outcomes, case: Case) -> None:
     found.cases += 1
     result = plan(case)
     by_id = {part.span.part_id: part for part in result.parts}
+    kit = result.kit
+    feared = {part.part_id for part in kit.parts if part.run_out_chance > kit.run_out_wanted} if kit else set()
     for recorded in case.outcome.parts:
         part = by_id.get(recorded.part_id)
         pair = None if part is None else _spo2_pair(part, recorded)
@@ -123,6 +126,12 @@ def _add(found: Outcomes, case: Case) -> None:
             found.on_oxygen.append(pair)
         else:
             found.on_air.append(pair)
+        if recorded.ran_out is True:
+            found.ran_out += 1
+            found.ran_out_foreseen += recorded.part_id in feared
+        elif recorded.ran_out is False:
+            found.lasted += 1
+            found.lasted_but_feared += recorded.part_id in feared
         found.symptoms += bool(recorded.symptoms.strip())
         if recorded.late_min is not None:
             found.late_min.append(recorded.late_min)

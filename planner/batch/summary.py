@@ -35,6 +35,11 @@ COLUMNS = (
     "targets_not_reached",
     "decisions",
     "pathway_advice",
+    "kit_items",
+    "kit_peak_kg",
+    "run_out_chance_percent",
+    "uncovered_h",
+    "kit_not_decided",
     "message",
 )
 # A spreadsheet takes a cell that starts so for a formula.
@@ -50,7 +55,7 @@ def summary_row(case: Case, plan: Plan) -> dict[str, str]:
         key=lambda part: part.span.lowest_inspired_po2_mmhg or 0.0,
         default=None,
     )
-    at_rest = _at_rest(worst)
+    at_rest, kit = _at_rest(worst), plan.kit
     pao2, spo2 = (at_rest.pao2_mmhg, at_rest.spo2) if at_rest else (None, None)
     titrations = [one for part in plan.parts for one in part.titrations]
     return {
@@ -74,7 +79,12 @@ def summary_row(case: Case, plan: Plan) -> dict[str, str]:
         ),
         "targets_not_reached": str(sum(not one.reaches_target for one in titrations)),
         "decisions": str(sum(len(part.decided) for part in plan.parts)),
-        "pathway_advice": " | ".join(advice.text for pathway in plan.pathways for advice in pathway.advice),
+        "pathway_advice": " | ".join(one.advice.text for one in plan.pathways if one.advice is not None),
+        "kit_items": " | ".join(f"{item.count} x {item.what}" for item in kit.items) if kit else "",
+        "kit_peak_kg": _number(kit.peak_kg if kit and kit.items else None),
+        "run_out_chance_percent": _number(100.0 * kit.run_out.chance if kit and kit.run_out else None),
+        "uncovered_h": _number(kit.uncovered_h if kit and kit.items else None),
+        "kit_not_decided": " | ".join(kit.undecided) if kit else "",
     }
 
 

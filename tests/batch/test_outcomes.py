@@ -63,6 +63,14 @@ def test_what_cannot_be_compared_is_counted_and_not_guessed():
     assert "Usual SpO2 on air: no comparison." in report
 
 
+def test_run_outs_are_set_beside_what_was_feared():
+    feared = {part.part_id: part.run_out_chance > PLAN.kit.run_out_wanted for part in PLAN.kit.parts}
+    report = outcomes_report([happened(on_air(92.0, ran_out=True)), happened(on_air(92.0, ran_out=False))])
+    count = int(feared[WAIT.span.part_id])
+    assert f"Run-outs: 1 recorded, {count} of them foreseen" in report
+    assert f"In 1 part the oxygen lasted; in {count} of them a run-out had been foreseen." in report
+
+
 def test_symptoms_delays_and_the_warning_of_few_cases_are_told():
     parts = [
         on_air(92.0, late_min=15.0, symptoms="breathless"),
