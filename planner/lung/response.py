@@ -22,9 +22,9 @@ from planner.lung.interpolate import end_nodes, extended, lagrange, local_cubic,
 
 RESPIRATORY_QUOTIENT = 0.82  # at rest, 0.80 to 0.83; textbook value
 AIR = 0.2093
-TABLE_NODES = ((1.15, 14), (np.inf, 24))  # up to this log SD, so many units of a lung in the table
-AIR_NODES, RICH_NODES = 9, 14  # of the alveolar PO2
-AIR_STEPS, RICH_STEPS = 40, 56  # read straight between these
+TABLE_NODES = ((1.15, 12), (np.inf, 20))  # up to this log SD, so many units of a lung in the table
+AIR_NODES, RICH_NODES = 9, 11  # of the alveolar PO2
+AIR_STEPS, RICH_STEPS = 40, 48  # read straight between these
 LOG_SD_NODES = ((0.8, 5), (np.inf, 7))  # up to this width of the draws, so many
 SHUNT_NODES = 3
 GREATEST_DRY_MMHG = 760.0  # ground pressure of 807 mmHg, the Dead Sea
