@@ -1,6 +1,6 @@
 """Cases kept on this machine: every save a new version, acknowledged only when it is on the disk.
 
-Each version carries a digest over its identity and content, so that a damaged file gives an error or true data and never
+Each version carries a digest over its identity and content, so that a damaged file gives an error or true data, never
 wrong data. With a passphrase every version is sealed (see secrecy) and nothing of a case is readable in the file.
 """
 
