@@ -96,28 +96,20 @@ def _assumptions(flow: Flow, desk: Desk) -> None:
 
 
 def _trace(flow: Flow, desk: Desk) -> None:
+    """How each result came about; results of one formula stand together below it."""
     say = desk.say
     if not desk.plan.trace:
         return
     flow.heading(say("record.trace"))
-    columns = [
-        Column(say("trace.stage"), 0.28),
-        Column(say("trace.inputs"), 0.26),
-        Column(say("trace.formula"), 0.26),
-        Column(say("trace.source"), 0.2),
-    ]
-    rows = [
-        Row(
-            (
-                say("trace.result", stage=line.stage, result=line.result),
-                "\n".join(line.inputs),
-                line.formula,
-                line.source,
-            )
-        )
-        for line in desk.plan.trace
-    ]
-    flow.table(columns, rows, scale=0.85)
+    columns = [Column(say("trace.result"), 0.5), Column(say("trace.inputs"), 0.5)]
+    groups: dict[tuple[str, str], list[Row]] = {}
+    for line in desk.plan.trace:
+        row = Row((say("trace.stage_result", stage=line.stage, result=line.result), "; ".join(line.inputs)))
+        groups.setdefault((line.formula, line.source), []).append(row)
+    for (formula, source), rows in groups.items():
+        flow.keep(8 * flow.size)
+        flow.paragraph(say("trace.formula", formula=formula, source=source), scale=0.9)
+        flow.table(columns, rows, scale=0.85)
 
 
 def _sources(flow: Flow, desk: Desk) -> None:
@@ -132,4 +124,5 @@ def _sources(flow: Flow, desk: Desk) -> None:
     found.update(dict.fromkeys(device.source for key, device in desk.devices.items() if key in used))
     found.update(dict.fromkeys(line.source for line in plan.trace))
     flow.heading(desk.say("record.sources"))
-    flow.bullets([source for source in found if source], scale=0.88)
+    longer = [source for source in found if any(source != one and source.startswith(one) for one in found if one)]
+    flow.bullets([source for source in found if source and source not in longer], scale=0.88)

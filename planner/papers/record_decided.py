@@ -56,13 +56,15 @@ def _cells(desk: Desk, decision: Decision) -> tuple[str, ...]:
     )
     titration = next((one for one in part.titrations if one.activity == decision.activity), None)
     decided = next((one for one in part.decided if one.activity == decision.activity), None)
-    model = titration.model_amount_text if titration else ""
+    model = desk.quantities.unknown
+    if titration is not None:
+        model = titration.model_amount_text or say("decided.no_proposal")
     text = decision_text(desk, decision)
     if decided is not None and decided.stale:
         text = f"{text}\n{say('decided.stale')}"
     if decided is not None and decided.fault:
         text = f"{text}\n{decided.fault}"
-    return name, model or desk.quantities.unknown, text, _expected(desk, decision)
+    return name, model, text, _expected(desk, decision)
 
 
 def _expected(desk: Desk, decision: Decision) -> str:
@@ -89,7 +91,11 @@ def _warnings(desk: Desk) -> list[str]:
     found: dict[str, list[str]] = {}
     for part in desk.plan.parts:
         for decided in part.decided:
-            for warning in decided.expected.warnings if decided.expected else ():
+            titration = next((one for one in part.titrations if one.activity == decided.activity), None)
+            texts = list(decided.expected.warnings) if decided.expected else []
+            if titration is not None and titration.model_amount is None:
+                texts.append(titration.text)
+            for warning in texts:
                 name = desk.part_name(part.span.part_id)
                 activity = desk.activity(decided.activity)
                 found.setdefault(warning, []).append(desk.say("forecast.part_activity", part=name, activity=activity))

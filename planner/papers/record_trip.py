@@ -19,7 +19,7 @@ TEXT_PT = 7.5
 def write_trip(flow: Flow, desk: Desk) -> None:
     """The trip as it was planned and as it was drawn."""
     say, timeline = desk.say, desk.plan.timeline
-    flow.heading(say("record.trip"), with_height=RIBBON_PT)
+    flow.heading(say("record.trip"), with_height=RIBBON_PT + 3 * flow.size)
     if not timeline.parts:
         flow.paragraph(say("trip.empty"))
         return
