@@ -97,6 +97,7 @@ def plan(
         (case.decisions, timeline, dosing, case.decision_digest()),
         lambda: stages.decided(case, timeline, dosing),
     )
+    along = keep("along", (timeline, dosing, case.decisions), lambda: stages.along(case, timeline, dosing))
     narrowing = keep("narrowing", (baseline, timeline), lambda: stages.narrowed(baseline, timeline))
     kit = None
     if through == "kit":
@@ -106,5 +107,5 @@ def plan(
             lambda: stages.kit(case, timeline, on_progress, cancelled),
         )
     return stages.assembled(
-        case, timeline, baseline, lung, forecasts, risk, pathways, cautions, titrations, decided, narrowing, kit
+        case, timeline, baseline, lung, forecasts, risk, pathways, cautions, titrations, decided, along, narrowing, kit
     )

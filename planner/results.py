@@ -7,6 +7,7 @@ from datetime import date
 from typing import Literal
 
 from planner.delivery.titration import OnOxygen, Titration
+from planner.evidence.along import BloodAlong
 from planner.evidence.baseline import Baseline
 from planner.evidence.forecast import PartForecast
 from planner.guidance.cautions import CautionFinding
@@ -48,6 +49,14 @@ class DecidedOxygen:
 
 
 @dataclass(frozen=True)
+class Along:
+    """Blood at rest over the trip: on air, and with the decided oxygen. None without a fitted lung or a trip."""
+
+    air: BloodAlong | None
+    decided: BloodAlong | None
+
+
+@dataclass(frozen=True)
 class PartPlan:
     """Everything about one part of the trip, gathered from the stages."""
 
@@ -81,6 +90,7 @@ class Plan:
     carbon_dioxide: CarbonDioxideFinding
     pathways: tuple[PathwayResult, ...]
     cautions: tuple[CautionFinding, ...]
+    along: Along
     kit: KitPlan | None
     narrowing: tuple[Narrowing, ...]
     missing: tuple[Missing, ...]

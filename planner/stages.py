@@ -11,11 +11,12 @@ from planner.case.decisions import Decision
 from planner.case.trip import Activity
 from planner.delivery.devices import Device, load_devices, shortlist
 from planner.delivery.dose import Condition
-from planner.delivery.effect import DeliverySpread, usual_spread
+from planner.delivery.effect import DeliverySpread, inspired_rise, usual_spread
 from planner.delivery.response import GroundResponse, learn_gain
 from planner.delivery.target import Target
 from planner.delivery.titration import OnOxygen, Titration, titrate, with_decision
 from planner.errors import InputError
+from planner.evidence.along import blood_along
 from planner.evidence.baseline import Baseline
 from planner.evidence.forecast import PartForecast
 from planner.guidance.cautions import CautionFinding
@@ -28,7 +29,7 @@ from planner.lung import fitting
 from planner.lung.fitting import FittedLung, Narrowing, fit_lung, narrowing
 from planner.lung.subset import thinned
 from planner.plan_state import missing_entries, plan_state
-from planner.results import DecidedOxygen, PartPlan, Plan
+from planner.results import Along, DecidedOxygen, PartPlan, Plan
 from planner.trace import trace_lines
 from planner.trip.itinerary import PartSpan, Timeline
 
@@ -203,6 +204,27 @@ def _decided(decision: Decision, condition: Condition | None, needs: Dosing, dig
     )
 
 
+def along(case: Case, timeline: Timeline, needs: Dosing) -> Along:
+    """Blood at rest over the trip, on air and with the oxygen decided for rest."""
+    if needs.fitted is None or needs.spread is None or not timeline.parts:
+        return Along(None, None)
+    pressures = {span.part_id: span.lowest_barometric_mmhg for span in timeline.parts}
+    rises = {}
+    for one in case.decisions:
+        device, pressure = needs.known.get(one.device_id or ""), pressures.get(one.part_id)
+        amount = one.flow_l_min if one.flow_l_min is not None else one.setting
+        if one.activity != "rest" or device is None or amount is None or pressure is None:
+            continue
+        try:
+            rises[one.part_id] = inspired_rise(
+                device, amount, pressure, needs.spread, breathing_rate_min=case.kit.breathing_rate_min
+            )
+        except InputError:
+            continue  # decided() says what does not fit
+    on_air = blood_along(needs.fitted, timeline)
+    return Along(on_air, blood_along(needs.fitted, timeline, rises) if rises else None)
+
+
 def kit(
     case: Case,
     timeline: Timeline,
@@ -237,6 +259,7 @@ def assembled(
     cautions: tuple[CautionFinding, ...],
     titrations: Sequence[Titration],
     decisions: Sequence[DecidedOxygen],
+    along_trip: Along,
     narrower: tuple[Narrowing, ...],
     kit_plan: KitPlan | None,
 ) -> Plan:
@@ -264,6 +287,7 @@ def assembled(
         carbon_dioxide=risk,
         pathways=pathways,
         cautions=cautions,
+        along=along_trip,
         kit=kit_plan,
         narrowing=narrower,
         missing=missing_entries(case, timeline, baseline, pathways, risk),
