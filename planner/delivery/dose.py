@@ -108,41 +108,17 @@ def ask(
 
     low_fraction, ceiling_fraction: SpO2 whose chances are counted. Without a ceiling its chance is 0.
     """
-    count = len(queries)
-    spo2, pao2 = np.empty((3, count)), np.empty((3, count))
-    reaching, above, below = (np.zeros(count) for _ in range(3))
-    ceiling = np.inf if ceiling_fraction is None else ceiling_fraction
-    rises: dict[tuple[str, float, Activity, float], Array] = {}
-    for activity in dict.fromkeys(one.condition.activity for one in queries):
-        wanted = [index for index, one in enumerate(queries) if one.condition.activity == activity]
-        for start in range(0, len(wanted), BLOCK_POINTS):
-            block = wanted[start : start + BLOCK_POINTS]
-            inspired = np.empty((lung.log_sd.size, len(block)))
-            for column, index in enumerate(block):
-                one = queries[index]
-                key = (one.device.id, one.amount, activity, one.condition.barometric_mmhg)
-                if key not in rises:
-                    rises[key] = inspired_rise(
-                        one.device,
-                        one.amount,
-                        one.condition.barometric_mmhg,
-                        spread,
-                        activity=activity,
-                        breathing_rate_min=breathing_rate_min,
-                    )
-                inspired[:, column] = one.condition.inspired_po2_mmhg + rises[key]
-            blood = lung.arterial(
-                inspired,
-                np.array([queries[index].condition.barometric_mmhg for index in block]),
-                activity=activity,
-                hours_at_altitude=np.array([queries[index].condition.hours_at_altitude for index in block]),
-            )
-            spo2[:, block] = _quantiles(blood.saturation)
-            pao2[:, block] = _quantiles(blood.po2_mmhg)
-            reaching[block] = (blood.saturation >= low_fraction).mean(axis=0)
-            above[block] = (blood.saturation > ceiling).mean(axis=0)
-            below[block] = blood.share_below
-    return Answers(spo2, pao2, reaching, above, below)
+    distinct = {_key(one): one for one in queries}
+    answers = _ask_each(lung, list(distinct.values()), spread, low_fraction, ceiling_fraction, breathing_rate_min)
+    places = {key: place for place, key in enumerate(distinct)}
+    at = [places[_key(one)] for one in queries]
+    return Answers(
+        answers.spo2[:, at],
+        answers.pao2_mmhg[:, at],
+        answers.chance_reaching[at],
+        answers.chance_above_ceiling[at],
+        answers.share_below_range[at],
+    )
 
 
 def curve(
@@ -173,6 +149,61 @@ def curve(
 def amount_text(device: Device, amount: float) -> str:
     """The amount with its device, or "no added oxygen"."""
     return device.amount_text(amount) if amount > 0.0 else "no added oxygen"
+
+
+def _key(one: Query) -> tuple[str, float, Activity, float, float, float]:
+    """What the answer depends on: no oxygen is the same by any device, the way back may be as the way out."""
+    device_id = one.device.id if one.amount > 0.0 else ""
+    where = one.condition
+    return (
+        device_id,
+        one.amount,
+        where.activity,
+        where.barometric_mmhg,
+        where.inspired_po2_mmhg,
+        where.hours_at_altitude,
+    )
+
+
+def _ask_each(
+    lung: FittedLung,
+    queries: Sequence[Query],
+    spread: DeliverySpread,
+    low_fraction: float,
+    ceiling_fraction: float | None,
+    breathing_rate_min: float | None,
+) -> Answers:
+    count = len(queries)
+    spo2, pao2 = np.empty((3, count)), np.empty((3, count))
+    reaching, above, below = (np.zeros(count) for _ in range(3))
+    ceiling = np.inf if ceiling_fraction is None else ceiling_fraction
+    for activity in dict.fromkeys(one.condition.activity for one in queries):
+        wanted = [index for index, one in enumerate(queries) if one.condition.activity == activity]
+        for start in range(0, len(wanted), BLOCK_POINTS):
+            block = wanted[start : start + BLOCK_POINTS]
+            inspired = np.empty((lung.log_sd.size, len(block)))
+            for column, index in enumerate(block):
+                one = queries[index]
+                inspired[:, column] = one.condition.inspired_po2_mmhg + inspired_rise(
+                    one.device,
+                    one.amount,
+                    one.condition.barometric_mmhg,
+                    spread,
+                    activity=activity,
+                    breathing_rate_min=breathing_rate_min,
+                )
+            blood = lung.arterial(
+                inspired,
+                np.array([queries[index].condition.barometric_mmhg for index in block]),
+                activity=activity,
+                hours_at_altitude=np.array([queries[index].condition.hours_at_altitude for index in block]),
+            )
+            spo2[:, block] = _quantiles(blood.saturation)
+            pao2[:, block] = _quantiles(blood.po2_mmhg)
+            reaching[block] = (blood.saturation >= low_fraction).mean(axis=0)
+            above[block] = (blood.saturation > ceiling).mean(axis=0)
+            below[block] = blood.share_below
+    return Answers(spo2, pao2, reaching, above, below)
 
 
 def _proposable(one: Query, breathing_rate_min: float | None) -> bool:

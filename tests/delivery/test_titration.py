@@ -230,7 +230,11 @@ def test_where_none_reaches_a_later_device_is_named_only_when_it_is_much_better(
 
 
 def test_all_conditions_together_give_what_each_gives_alone():
-    conditions = [at(altitude, activity) for altitude in (0.0, 2000.0, 2438.4) for activity in ("rest", "walking")]
+    conditions = [
+        at(altitude, activity, hours_at_altitude=hours)
+        for altitude, hours in ((0.0, 0.0), (2438.4, 0.0), (2438.4, 60.0), (2000.0, 0.0), (2438.4, 0.0))
+        for activity in ("rest", "walking")
+    ]
     devices = [DEVICES["cannula"], DEVICES["pulse_conserver"]]
     together = titrate(MODERATE, conditions, devices, NO_RISK)
     for condition, found in zip(conditions, together, strict=True):
