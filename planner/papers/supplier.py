@@ -17,6 +17,7 @@ if TYPE_CHECKING:
     from planner.results import Plan
 
 SIZES_PT = (10.0, 9.5, 9.0)
+FILLED_AT_C = 15.0
 CHECKS = ("regulator", "conserver", "spare", "gauge", "connections", "mains", "batteries", "show", "labels")
 
 
@@ -44,7 +45,8 @@ def _written(desk: Desk, size: float) -> Flow:
     write_endurance(flow, desk)
     write_turn_back(flow, desk)
     flow.heading(say("supplier.checks"))
-    flow.bullets([say(f"supplier.check_{name}") for name in CHECKS])
+    filled_at = desk.quantities.temperature(FILLED_AT_C)
+    flow.bullets([say(f"supplier.check_{name}", temperature=filled_at) for name in CHECKS])
     flow.heading(say("supplier.contacts"))
     labels = ["contact_supplier", "contact_stay", "contact_prescriber", "contact_checked"]
     flow.blanks([say(f"supplier.{label}") for label in labels])

@@ -82,3 +82,34 @@ def test_a_card_without_decisions_says_to_ask(plans):
     words = " ".join(t.text for page in lay_traveller(Desk.of(case, result)).pages for t in page.texts())
     assert "Your flows are not decided yet." in words
     assert "L/min" not in words
+
+
+def on_cylinders(gauge):
+    """The demo trip on cylinders alone on the ground, and the carrier's oxygen in flight."""
+    case = demo_case()
+    parts = tuple(
+        part.model_copy(update={"sources": ("airline",) if part.kind == "flight" else ("cylinder",), "refill": True})
+        for part in case.trip.parts
+    )
+    return case.model_copy(
+        update={
+            "trip": case.trip.model_copy(update={"parts": parts}),
+            "kit": case.kit.model_copy(update={"concentrator_id": None, "batteries": None}),
+            "display": case.display.model_copy(update={"gauge": gauge}),
+        }
+    )
+
+
+@pytest.mark.parametrize(("gauge", "factor", "step"), [("bar", 1.0, 5), ("psi", 14.503774, 50)])
+def test_gauge_readings_come_in_the_unit_chosen_rounded_up_and_name_their_cylinder(plans, gauge, factor, step):
+    case, result = plans(on_cylinders(gauge))
+    readings = [(name, bar) for point in result.kit.turn_back for name, bar in point.gauge_bar]
+    assert readings
+    paper = lay_traveller(Desk.of(case, result))
+    words = " ".join(t.text for page in paper.pages for t in page.texts()).replace("\u00a0", " ")
+    for name, bar in readings:
+        least = -(-bar * factor // step) * step
+        assert f"{least:,.0f} {gauge} (cylinder {name})" in words
+    assert "Gauge readings hold at" in words
+    without_names = words.replace("200 bar)", "")
+    assert {"bar": "psi", "psi": "bar"}[gauge] not in without_names
