@@ -10,6 +10,9 @@ import numpy as np
 import pytest
 from PIL import Image
 
+from planner.records.store import CaseStore
+from tests.ui.driver import TAB
+
 ROOT = Path(__file__).parents[2]
 DATA_GREEN = (27, 91, 87)
 
@@ -63,40 +66,53 @@ def coloured(picture, rgb, tolerance=12):
     return np.abs(picture - rgb).max(axis=2) <= tolerance
 
 
+def has_primary_button(picture):
+    return (coloured(picture, DATA_GREEN).sum(axis=1) > 250).any()
+
+
 def middle_of_lowest_button(picture):
     rows = np.flatnonzero(coloured(picture, DATA_GREEN).sum(axis=1) > 250)
     return int(rows.max()) - 20
 
 
-def test_a_new_case_is_begun_by_mouse_filled_by_keys_and_found_again(display, tmp_path):
-    environment = dict(os.environ)
-    for name in [name for name in environment if name.startswith(("KIVY", "WAYLAND"))]:
-        del environment[name]
+def tabs_to(driver, text):
+    """How many times Tab is pressed until the widget with this text has the focus."""
+    for times in range(1, 60):
+        driver.key(TAB)
+        if getattr(driver.focused(), "text", "") == text:
+            return times
+    raise AssertionError(f"{text} is not reached")
+
+
+def test_a_new_case_is_begun_by_mouse_filled_by_keys_and_found_again(display, tmp_path, new_case):
+    times = tabs_to(new_case, "COPD")
+    environment = {name: value for name, value in os.environ.items() if not name.startswith(("KIVY", "WAYLAND"))}
     environment |= {"DISPLAY": display, "SDL_VIDEODRIVER": "x11"}
-    command = [sys.executable, "-m", "ui", "--data", str(tmp_path / "data")]
+    folder = tmp_path / "kept"
+    command = [sys.executable, "-m", "ui", "--data", str(folder)]
     window = Window(display, tmp_path)
     app = subprocess.Popen(command, cwd=ROOT, env=environment, stderr=subprocess.DEVNULL)
     try:
-        first = window.until(lambda picture: (coloured(picture, DATA_GREEN).sum(axis=1) > 250).any())
+        first = window.until(has_primary_button)
         window.click(195, middle_of_lowest_button(first))
-        # the first chip of the first question: to it by Tab, chosen by Enter
-        before = window.until(lambda picture: not (coloured(picture, DATA_GREEN).sum(axis=1) > 250).any())
-        for _ in range(4):
+        window.until(lambda picture: not has_primary_button(picture))
+        for _ in range(times):
             window.do("key", "Tab")
-            time.sleep(0.1)
+            time.sleep(0.08)
+        before = coloured(window.picture(), DATA_GREEN).sum()
         window.do("key", "Return")
-        window.until(lambda picture: coloured(picture, DATA_GREEN).sum() > coloured(before, DATA_GREEN).sum() + 1500)
+        window.until(lambda picture: coloured(picture, DATA_GREEN).sum() > before + 1500)
         time.sleep(1.2)  # saved at most a second behind
     finally:
-        app.terminate()
+        app.kill()  # as a battery that runs out
         app.wait(10)
-    assert not list((tmp_path / "data" / "kivy").rglob("*.txt")), "Kivy wrote logs"
+    with CaseStore(folder / "cases.db") as store:
+        (entry,) = store.entries()
+        assert entry.diagnosis == "copd"
+    assert not list((folder / "kivy").rglob("*.txt")), "logs were written"
     app = subprocess.Popen(command, cwd=ROOT, env=environment, stderr=subprocess.DEVNULL)
     try:
-        window.until(lambda picture: (coloured(picture, DATA_GREEN).sum(axis=1) > 250).any())
-        time.sleep(0.5)
-        again = window.picture()
-        assert middle_of_lowest_button(again) < middle_of_lowest_button(first) or not np.array_equal(again, first)
+        window.until(lambda picture: has_primary_button(picture) and not np.array_equal(picture, first))
     finally:
         app.terminate()
         app.wait(10)

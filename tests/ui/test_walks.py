@@ -80,13 +80,13 @@ def test_units_are_switched_without_changing_the_case(demo):
     driver = demo
     before = case(driver).measurements
     pao2_mmhg = before[0].pao2_mmhg
-    assert driver.field("Oxygen pressure, PaO₂").input.text == f"{pao2_mmhg * 133.322387415 / 1000:.1f}"
+    assert driver.field("Oxygen, PaO₂").input.text == f"{pao2_mmhg * 133.322387415 / 1000:.1f}"
     driver.tap(driver.app.shell.units)
     driver.tap("mmHg")
     driver.tap("Feet")
     driver.tap("Back to the case")
-    assert driver.field("Oxygen pressure, PaO₂").input.text == f"{pao2_mmhg:.0f}"
-    assert driver.field("Elevation where it was taken").input.text == f"{before[0].place.elevation_m / 0.3048:.0f}"
+    assert driver.field("Oxygen, PaO₂").input.text == f"{pao2_mmhg:.0f}"
+    assert driver.field("Elevation where taken").input.text == f"{before[0].place.elevation_m / 0.3048:.0f}"
     assert case(driver).measurements == before
 
 
@@ -364,6 +364,32 @@ def test_leaving_home_sets_day_time_and_zone(demo):
     driver.tap("Europe/Madrid")
     assert case(driver).trip.departure_zone == "Europe/Madrid"
     assert driver.reads("Fri 06:45")
+
+
+def test_a_trip_is_started_from_a_template_and_gets_its_way_back(new_case):
+    driver = new_case
+    driver.app.shell.go("trip")
+    driver.frames(6)
+    driver.tap("Two flights with a layover")
+    there = case(driver).trip.parts
+    assert [part.kind for part in there] == ["road", "wait", "flight", "layover", "flight", "road"]
+    driver.app.session.set_many(
+        {
+            "trip.parts.2.origin_place_id": "VIE",
+            "trip.parts.2.destination_place_id": "MAD",
+            "trip.parts.0.end_elevation_m": 183.0,
+        }
+    )
+    driver.tap("Add to the trip")
+    driver.tap("Add the same way back")
+    parts = case(driver).trip.parts
+    assert [part.kind for part in parts[6:]] == ["road", "flight", "layover", "flight", "wait", "road"]
+    assert (parts[9].origin_place_id, parts[9].destination_place_id) == ("MAD", "VIE")
+    assert parts[9].zone_at_end == "Europe/Vienna"
+    assert parts[11].start_elevation_m == 183.0
+    assert len({part.part_id for part in parts}) == 12
+    driver.tap(driver.app.shell.undo)
+    assert len(case(driver).trip.parts) == 6
 
 
 def test_the_keys_used_here_are_kivys():

@@ -45,8 +45,8 @@ Field = tuple[str, str, Any, tuple[float, float] | None, str]
 FIELDS: dict[str, tuple[Field, ...]] = {
     "oximetry": (("spo2_percent", "Saturation, SpO₂", _PERCENT, None, ""),),
     "blood_gas": (
-        ("pao2_mmhg", "Oxygen pressure, PaO₂", "pressure", (30.0, 130.0), ""),
-        ("paco2_mmhg", "Carbon dioxide pressure, PaCO₂", "pressure", (22.0, 90.0), ""),
+        ("pao2_mmhg", "Oxygen, PaO₂", "pressure", (30.0, 130.0), ""),
+        ("paco2_mmhg", "Carbon dioxide, PaCO₂", "pressure", (22.0, 90.0), ""),
         ("ph", "pH", measures.plain_measure("", 2), None, ""),
     ),
     "walk_test": (
@@ -161,7 +161,7 @@ class Measured:
         measure = measures.altitude(self.session.case.display.altitude)
         names = ("place", "elevation_m")
         entry = NumberEntry(
-            "Elevation where it was taken", self.get(*names), measure=measure, low=low, high=high,
+            "Elevation where taken", self.get(*names), measure=measure, low=low, high=high,
             why="0 is sea level", **self._keywords(names, "elevation"),
         )  # fmt: skip
         return self.form.keep(entry, lambda: self.get(*names))  # type: ignore[no-any-return]

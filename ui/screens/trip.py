@@ -11,7 +11,7 @@ from planner.charts.ribbon import Layer, Reading
 from ui import measures
 from ui.screens.form import Form, Live
 from ui.screens.screen import Screen
-from ui.screens.trip_edits import TripEdits
+from ui.screens.trip_edits import TEMPLATES, TripEdits
 from ui.screens.trip_part import PartForm
 from ui.screens.trip_ribbon import KIND_WORDS, RibbonOfTrip, value_at
 from ui.theme import space
@@ -153,7 +153,7 @@ class TripScreen(Screen):
         if self.session.case.trip.parts:
             return
         group.add_widget(Text("A trip runs from door to door. Start from one like it and change what differs."))
-        for template in self.edits.templates():
+        for template in TEMPLATES:
             group.add_widget(PlainButton(template.name, lambda t=template.id: self.edits.start_from(t)))
         group.add_widget(Text("Or add its first part.", role="label", tone="muted"))
         kinds = list(KIND_WORDS.items())

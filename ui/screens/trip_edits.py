@@ -2,12 +2,46 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from dataclasses import dataclass
 from typing import Any
 
-from planner.case.trip import Part
+from planner.case.trip import ActivityShares, Part, PartKind, ProfilePoint
+from planner.trip.places import by_id
 
 _LENGTHS_MIN = {"flight": 120.0, "stay": 1440.0, "home": 60.0, "walk": 15.0}
 _OTHERWISE_MIN = 60.0
+_SLEPT = ActivityShares(rest=0.6, walking=0.07, asleep=0.33)  # planning assumption: 8 h of sleep, 1.7 h on foot
+
+
+@dataclass(frozen=True)
+class Template:
+    """A shape of trip to start from: kinds with lengths in minutes, all to be changed."""
+
+    id: str
+    name: str
+    parts: tuple[tuple[PartKind, str, float], ...]
+
+
+TEMPLATES = (
+    Template(
+        "flight",
+        "A flight",
+        (("road", "Road to the airport", 60), ("wait", "Check-in and wait", 120), ("flight", "Flight", 180),
+         ("road", "Road from the airport", 45)),
+    ),
+    Template(
+        "layover",
+        "Two flights with a layover",
+        (("road", "Road to the airport", 60), ("wait", "Check-in and wait", 120), ("flight", "Flight 1", 150),
+         ("layover", "Layover", 105), ("flight", "Flight 2", 150), ("road", "Road from the airport", 45)),
+    ),
+    Template(
+        "mountains",
+        "By car to the mountains, with nights",
+        (("road", "Road up", 180), ("stay", "Three nights", 4320)),
+    ),
+)  # fmt: skip
 
 
 class TripEdits:
@@ -16,14 +50,24 @@ class TripEdits:
     def __init__(self, session: Any) -> None:
         self.session = session
 
-    def templates(self) -> tuple[Any, ...]:
-        return ()
-
     def start_from(self, template_id: str) -> None:
-        pass
+        """Start an empty trip from a template."""
+        template = next(one for one in TEMPLATES if one.id == template_id)
+        parts: list[Part] = []
+        for kind, name, minutes in template.parts:
+            made = {"part_id": self._new_id(kind, parts), "kind": kind, "name": name, "duration_min": float(minutes)}
+            parts.append(Part(**made, shares=_SLEPT if kind == "stay" else ActivityShares()))
+        self._set(tuple(parts), f"the trip was started from: {template.name}")
 
     def add_way_back(self) -> None:
-        pass
+        """The way there backwards, without the stay at its end; equipment and names stay as they were."""
+        there = list(self.session.case.trip.parts)
+        while there and there[-1].kind in ("stay", "home"):
+            there.pop()
+        parts = list(self.session.case.trip.parts)
+        for part in reversed(there):
+            parts.append(_backwards(part, self._new_id(part.kind, parts)))
+        self._set(tuple(parts), "the way back was added")
 
     def add(self, kind: str, at: int | None) -> str:
         """A new part at an index, at the end for None; gives its id."""
@@ -59,9 +103,28 @@ class TripEdits:
             changes["decisions"] = decisions
         self.session.set_many(changes, what)
 
-    def _new_id(self, kind: str) -> str:
-        taken = {part.part_id for part in self.session.case.trip.parts}
+    def _new_id(self, kind: str, among: Sequence[Part] | None = None) -> str:
+        taken = {part.part_id for part in (self.session.case.trip.parts if among is None else among)}
         number = 1
         while f"{kind}_{number}" in taken:
             number += 1
         return f"{kind}_{number}"
+
+
+def _backwards(part: Part, part_id: str) -> Part:
+    end = part.profile[-1].at_min if part.profile else 0.0
+    turned = [
+        ProfilePoint(at_min=end - point.at_min, elevation_m=point.elevation_m) for point in reversed(part.profile)
+    ]
+    place = by_id(part.origin_place_id) if part.origin_place_id else None
+    return part.model_copy(
+        update={
+            "part_id": part_id,
+            "origin_place_id": part.destination_place_id,
+            "destination_place_id": part.origin_place_id,
+            "start_elevation_m": part.end_elevation_m,
+            "end_elevation_m": part.start_elevation_m,
+            "profile": tuple(turned),
+            "zone_at_end": place.zone if place is not None else None,
+        }
+    )

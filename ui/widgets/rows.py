@@ -169,7 +169,7 @@ class Opened(Stack):
 class Side(Layout):
     """Fields side by side where each has at least `least_sp` of width, under each other where not; tops aligned."""
 
-    def __init__(self, *fields: Widget, least_sp: float = 150, **keywords: Any) -> None:
+    def __init__(self, *fields: Widget, least_sp: float = 160, **keywords: Any) -> None:
         super().__init__(size_hint_y=None, height=0, **keywords)
         self._least = least_sp
         self.bind(pos=self._trigger_layout, width=self._trigger_layout, children=self._trigger_layout)
