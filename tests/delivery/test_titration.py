@@ -179,6 +179,17 @@ def test_pulses_of_more_oxygen_than_four_litres_are_not_proposed():
     assert list(curve.amounts[curve.proposable]) == [0.0, 1.0, 2.0, 3.0, 4.0]
 
 
+def test_a_mask_that_needs_more_than_four_litres_is_shown_but_not_proposed():
+    (curve,) = one(SEVERE, at(3000.0), ["simple_mask"], NO_RISK).curves
+    assert list(curve.amounts[curve.proposable]) == [0.0]
+    assert curve.amounts[1] == 5.0
+
+
+def test_a_decided_flow_that_this_carrier_offers_is_accepted():
+    flight = at(2438.4, part_kind="flight", airline_flows_l_min=(3.0,))
+    assert with_decision(MODERATE, flight, DEVICES["airline"], 3.0, NO_RISK).amount == 3.0
+
+
 def test_asleep_a_pulse_device_is_not_tried_and_the_reason_is_kept():
     found = one(MODERATE, at(2438.4, "asleep"), ["pulse_conserver", "cannula"], NO_RISK)
     assert [one.device_id for one in found.refused] == ["pulse_conserver"]
