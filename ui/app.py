@@ -18,7 +18,15 @@ from ui.widgets.notices import paint_ground
 from ui.widgets.reach import ESCAPE, TAB
 from ui.widgets.text import Text
 
+WARM_AFTER_S = 0.3
 TITLE = "Oxygen and altitude planner"
+
+
+def load_planner() -> tuple[Any, Any]:
+    """The planner and its memory of stages; called away from the screen, since it imports much."""
+    from planner.planning import StageMemory, plan
+
+    return plan, StageMemory()
 
 
 class Root(BoxLayout):
@@ -36,9 +44,9 @@ class PlannerApp(App):  # type: ignore[misc]
     title = TITLE
 
     def __init__(self, *, data_folder: Path, case_file: Path | None = None, demo: bool = False,
-                 planner: Any = "planner.plan", **keywords: Any) -> None:  # fmt: skip
+                 load_planner: Any = load_planner, **keywords: Any) -> None:  # fmt: skip
         super().__init__(**keywords)
-        self.data_folder, self.case_file, self.demo, self.planner = data_folder, case_file, demo, planner
+        self.data_folder, self.case_file, self.demo, self.load_planner = data_folder, case_file, demo, load_planner
         self.library: Any = None
         self.session: Any = None
         self.shell: Any = None
@@ -56,7 +64,7 @@ class PlannerApp(App):  # type: ignore[misc]
         paint_ground(first, theme.ground)
         first.add_widget(Text(f"[b]{TITLE}[/b]", role="title", pos_hint={"top": 1}))
         root.show(first)
-        Clock.schedule_once(self._begin, 0)
+        Clock.schedule_once(lambda _dt: Clock.schedule_once(self._begin, 0), 0)  # the first frame is drawn in between
         return root
 
     def _begin(self, _dt: float) -> None:
@@ -64,21 +72,14 @@ class PlannerApp(App):  # type: ignore[misc]
         from ui.session import Session
 
         self.library = Library(self.data_folder)
-        planner, memory = self._planner()
-        self.session = Session(planner=planner, memory=memory, saver=self.library.save)
+        self.session = Session(load_planner=self.load_planner, saver=self.library.save)
+        Clock.schedule_once(lambda _dt: self.session.warm(), WARM_AFTER_S)
         gc.freeze()  # what is imported stays; the collector need not walk it while a finger drags
         self.show_cases()
         if self.case_file is not None:
             self.cases.import_file(self.case_file)
         elif self.demo:
             self.cases.open_demo()
-
-    def _planner(self) -> tuple[Any, Any]:
-        if self.planner != "planner.plan":
-            return self.planner, None
-        from planner.planning import StageMemory, plan
-
-        return plan, StageMemory()
 
     # -- what is shown
 

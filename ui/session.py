@@ -17,7 +17,7 @@ from pydantic import BaseModel, ValidationError
 
 from planner.case import Case
 from planner.errors import PlannerError
-from ui.worker import Planner, PlanWorker
+from ui.worker import Load, PlanWorker
 
 SAVE_AFTER_S = 0.8
 SAME_EDIT_S = 2.0  # typing on in one field is one step to undo
@@ -37,8 +37,7 @@ class Session(EventDispatcher):
     def __init__(
         self,
         *,
-        planner: Planner | None = None,
-        memory: Any = None,
+        load_planner: Load | None = None,
         saver: Callable[[str, Case], None] | None = None,
         **keywords: Any,
     ) -> None:
@@ -52,9 +51,14 @@ class Session(EventDispatcher):
         self._saver = saver
         self._save_due: Any = None
         self._laid_out: tuple[Any, Any] = (None, None)
-        self._worker = PlanWorker(planner, self._planned, memory) if planner is not None else None
+        self._worker = PlanWorker(load_planner, self._planned) if load_planner is not None else None
 
     # -- opening and closing
+
+    def warm(self) -> None:
+        """Load the planner before it is needed."""
+        if self._worker is not None:
+            self._worker.start()
 
     def open(self, case: Case, case_id: str) -> None:
         """Start on a case. Faults, undo and the old plan belong to the case before and go."""

@@ -9,15 +9,17 @@ from typing import Any
 from kivy.clock import Clock
 
 Planner = Callable[..., Any]  # planner.plan: (case, *, memory, through, on_progress, cancelled) -> Plan
+Load = Callable[[], tuple[Planner, Any]]  # planner and its memory; called in the thread, so that it may import
 Deliver = Callable[[Any, Any, str, str], None]  # case, plan or None, what is being done, fault
 
 
 class PlanWorker:
     """One thread that answers the last case asked for: first through titration, then with the kit."""
 
-    def __init__(self, planner: Planner, deliver: Deliver, memory: Any = None) -> None:
-        self._planner, self._deliver = planner, deliver
-        self._memory = memory  # of the stages; only the thread touches it
+    def __init__(self, load: Load, deliver: Deliver) -> None:
+        self._load, self._deliver = load, deliver
+        self._planner: Planner | None = None  # with its memory of stages: only the thread touches them
+        self._memory: Any = None
         self._wanted: Any = None
         self._turn = 0
         self._changed = threading.Condition()
@@ -29,6 +31,10 @@ class PlanWorker:
             self._wanted = case
             self._turn += 1
             self._changed.notify()
+        self.start()
+
+    def start(self) -> None:
+        """Load what the work needs before anything is asked."""
         if self._thread is None:
             self._thread = threading.Thread(target=self._run, name="plan", daemon=True)
             self._thread.start()
@@ -40,6 +46,7 @@ class PlanWorker:
             self._turn += 1
 
     def _run(self) -> None:
+        self._planner, self._memory = self._load()
         while True:
             with self._changed:
                 while self._wanted is None:
@@ -59,6 +66,7 @@ class PlanWorker:
         if given_up():
             return False
         try:
+            assert self._planner is not None
             plan = self._planner(case, memory=self._memory, through=through, on_progress=progress, cancelled=given_up)
         except (
             Exception

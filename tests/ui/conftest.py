@@ -33,7 +33,8 @@ def opened(tmp_path):
     drivers = []
 
     def open_app(size=(390, 844), font_scale=1.0, **keywords):
-        keywords.setdefault("planner", None)
+        planner = keywords.pop("planner", None)
+        keywords["load_planner"] = None if planner is None else lambda: (planner, None)
         driver = Driver(PlannerApp(data_folder=tmp_path / "data", **keywords), size, font_scale)
         drivers.append(driver)
         return driver

@@ -31,7 +31,7 @@ def open_folds(driver):
 
 @pytest.mark.parametrize(("width", "height", "scale"), SIZES)
 def test_every_screen_of_the_demo_case_is_whole(width, height, scale, tmp_path):
-    driver = Driver(PlannerApp(data_folder=tmp_path, planner=None), (width, height), scale)
+    driver = Driver(PlannerApp(data_folder=tmp_path, load_planner=None), (width, height), scale)
     try:
         faults = {"cases": checks.all_faults(driver)}
         driver.app.cases.open_demo()
@@ -52,7 +52,7 @@ def test_every_screen_of_the_demo_case_is_whole(width, height, scale, tmp_path):
 
 def test_every_screen_can_be_read_in_the_dark_theme(tmp_path):
     theme.use("dark")
-    driver = Driver(PlannerApp(data_folder=tmp_path, planner=None))
+    driver = Driver(PlannerApp(data_folder=tmp_path, load_planner=None))
     try:
         driver.app.cases.open_demo()
         for name in NAMES:

@@ -99,7 +99,7 @@ def test_results_are_stale_at_once_and_fresh_when_the_plan_of_this_case_arrives(
         gate.wait(5)
         return (case.patient.age_years, through)
 
-    session = Session(planner=planner)
+    session = Session(load_planner=lambda: (planner, None))
     session.open(Case(), "a")
     session.set("patient.age_years", 50.0)
     assert session.stale
@@ -121,7 +121,7 @@ def test_a_plan_of_an_older_case_is_never_shown():
             gate.wait(5)
         return case.patient.age_years
 
-    session = Session(planner=planner)
+    session = Session(load_planner=lambda: (planner, None))
     session.open(Case(), "a")
     seen = []
     session.bind(plan=lambda _, plan: seen.append(plan))
@@ -140,7 +140,7 @@ def test_a_plan_that_fails_is_said_and_leaves_nothing_fresh():
     def planner(case, **_):
         raise RuntimeError("the table is empty")
 
-    session = Session(planner=planner)
+    session = Session(load_planner=lambda: (planner, None))
     session.open(Case(), "a")
     run(10)
     assert session.said == "The plan could not be worked out: the table is empty"
