@@ -113,7 +113,7 @@ def _phases(
     for number, phase in enumerate(phases):
         x0, x1 = axis.at(phase.start_min), axis.at(phase.end_min)
         if phase.shaded:
-            items.append(Box(x0, bottom, x1 - x0, top - bottom, "silhouette"))
+            items.append(Box(x0, bottom, x1 - x0, series_top - bottom, "silhouette"))
         if number:
             items.append(rule(x0, series_bottom, x0, series_top, "muted", 0.6))
         words = fitting((phase.label,), size, x1 - x0 - GAP, measure)

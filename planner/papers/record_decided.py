@@ -36,6 +36,16 @@ def write_decided(flow: Flow, desk: Desk) -> None:
     else:
         columns.append(Column(say("decided.by"), 0.26))
         flow.table(columns, [Row((*_cells(desk, one), _by(desk, one))) for one in desk.case.decisions])
+    stale = [
+        say("forecast.part_activity", part=desk.part_name(part.span.part_id), activity=desk.activity(one.activity))
+        for part in desk.plan.parts
+        for one in part.decided
+        if one.stale
+    ]
+    if len(stale) == len(desk.case.decisions):
+        flow.note(say("decided.all_stale"))
+    elif stale:
+        flow.note(say("decided.stale", parts="; ".join(stale)))
     warnings = _warnings(desk)
     if warnings:
         flow.bullets(warnings, scale=0.92)
@@ -60,8 +70,6 @@ def _cells(desk: Desk, decision: Decision) -> tuple[str, ...]:
     if titration is not None:
         model = titration.model_amount_text or say("decided.no_proposal")
     text = decision_text(desk, decision)
-    if decided is not None and decided.stale:
-        text = f"{text}\n{say('decided.stale')}"
     if decided is not None and decided.fault:
         text = f"{text}\n{decided.fault}"
     return name, model, text, _expected(desk, decision)

@@ -126,6 +126,23 @@ def test_the_record_holds_assumptions_and_sources(first):
         assert " ".join(words.split()[:4]) in text
 
 
+def test_decisions_whose_inputs_have_changed_are_named(plans):
+    case = demo_case()
+    fresh = case.decision_digest()
+    for stale in (1, len(case.decisions)):
+        decisions = tuple(
+            d.model_copy(update={"resting_on": "0" * 64 if number < stale else fresh})
+            for number, d in enumerate(case.decisions)
+        )
+        planned = plans(case.model_copy(update={"decisions": decisions}))
+        _, pages = read(make_record(planned[1], planned[0]))
+        text = " ".join(pages)
+        if stale == 1:
+            assert "decided again: Road over the pass, at rest." in text
+        else:
+            assert "since these flows were decided. They need to be decided again." in text
+
+
 def test_a_missing_decision_is_said_and_nothing_is_sized(plans):
     case, result = plans(demo_case().model_copy(update={"decisions": ()}))
     _, pages = read(make_papers(case, result)["record"])
