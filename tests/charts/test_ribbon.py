@@ -1,5 +1,9 @@
+import dataclasses
+
 import numpy as np
 import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
 
 from planner.charts.layout import Band, Marker, Polyline, Text
 from planner.charts.ribbon import Layer, RibbonPart, lay_ribbon
@@ -130,3 +134,40 @@ def test_sixty_parts_still_have_no_overlap(trip):
     assert outside(ribbon.drawing, trip.measure) == []
     assert isinstance(ribbon.drawing.items[0], Band)
     assert any(isinstance(i, Text) for i in ribbon.drawing.items)
+
+
+@given(
+    st.lists(st.tuples(st.floats(5.0, 9000.0), st.floats(-100.0, 5000.0)), min_size=1, max_size=25),
+    st.floats(240.0, 900.0),
+    st.sampled_from([8.0, 12.0, 18.0]),
+    st.booleans(),
+)
+@settings(max_examples=60, deadline=None)
+def test_any_trip_is_drawn_within_its_place_without_overlap(trip, parts, width, text_size, with_layer):
+    starts = np.concatenate([[0.0], np.cumsum([duration for duration, _ in parts])])
+    minutes = np.repeat(starts, 2)[1:-1]
+    altitude = np.repeat([metres for _, metres in parts], 2)
+    ribbon_parts = [
+        RibbonPart(("A long name of a part", "Part"), float(start), duration, "12:34")
+        for start, (duration, _) in zip(starts, parts, strict=False)
+    ]
+    layer = Layer(minutes, altitude / 10.0, "L left", "{:,.0f}".format, least=0.0) if with_layer else None
+    ribbon = lay_ribbon(
+        ribbon_parts,
+        minutes,
+        altitude,
+        layer,
+        width=width,
+        height=12 * text_size,
+        text_size=text_size,
+        measure=trip.measure,
+        altitude_text="{:,.0f} m".format,
+        shortened_text="Long parts are drawn shortened.",
+    )
+    texts = [t for t in ribbon.drawing.texts() if "shortened" not in t.text]
+    assert outside(dataclasses.replace(ribbon.drawing, items=tuple(texts)), trip.measure) == []
+    assert overlapping_texts(ribbon.drawing.items, trip.measure) == []
+    for number, start in enumerate(starts[:-1]):
+        reading = ribbon.read_at(float(start) + parts[number][0] / 2)
+        assert reading.part == number
+        assert reading.altitude_m == pytest.approx(parts[number][1])
