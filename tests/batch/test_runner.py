@@ -107,6 +107,17 @@ def test_each_case_gets_its_plan_and_its_row(finished):
     assert told.states[-1].finished == told.states[-1].total == 3
 
 
+def test_with_papers_each_case_gets_its_pages_and_a_run_without_them_does_not_count(tmp_path):
+    cases = write_cases(tmp_path / "cases.jsonl", ["a1"])
+    out = tmp_path / "out"
+    assert run_batch(cases, out, progress=Told()) == 0
+    told = Told()
+    assert run_batch(cases, out, papers=True, progress=told) == 0
+    assert told.states[0].kept == 0
+    pages = {path.name: path.read_bytes()[:5] for path in out.glob("cases/*/*.pdf")}
+    assert pages == dict.fromkeys(("record.pdf", "carrier.pdf", "supplier.pdf", "traveller.pdf"), b"%PDF-")
+
+
 def test_a_second_run_keeps_what_is_done(finished):
     cases, out, _, _ = finished
     before = {path: path.stat().st_mtime_ns for path in out.glob("cases/*/*")}
