@@ -34,7 +34,6 @@ class CaseRow:
     case_id: str
     title: str
     detail: str
-    when: str
 
 
 class Library:
@@ -68,6 +67,10 @@ class Library:
         """Keep a version. Raises StoreError where it cannot be kept; what was kept before stays."""
         self._opened().save(case_id, case)
 
+    def remove(self, case_id: str) -> None:
+        """Remove a case with all its versions. Raises StoreError where it cannot be."""
+        self._opened().delete(case_id)
+
     def new_id(self) -> str:
         """An id that no case has."""
         return new_case_id()
@@ -87,8 +90,11 @@ class Library:
 
 
 def _row(entry: CaseEntry) -> CaseRow:
+    if entry.fault:
+        return CaseRow(entry.case_id, "This case cannot be read", "Tap it to see why")
     detail = DIAGNOSIS_WORDS.get(entry.diagnosis, "Diagnosis not entered")
     if entry.departs_on:
         detail = f"{detail}, leaving on {date_text(date.fromisoformat(entry.departs_on))}"
     title = entry.initials or entry.reference or "No initials yet"
-    return CaseRow(entry.case_id, title, detail, date_text(entry.saved_at.astimezone().date()))
+    detail = f"{detail} · saved {date_text(entry.saved_at.astimezone().date())}"
+    return CaseRow(entry.case_id, title, detail)

@@ -44,7 +44,7 @@ def test_a_damaged_case_is_listed_and_says_why_when_opened(opened, tmp_path):
     with sqlite3.connect(tmp_path / "data" / "cases.db") as database:
         database.execute("update versions set body = ?", (b"{}",))
     driver = opened()
-    driver.tap("cannot be read")
+    driver.tap("This case cannot be read")
     assert driver.app.shell is None
     assert driver.reads("Not opened.")
     assert driver.reads("is damaged")
@@ -115,3 +115,18 @@ def test_every_demo_opens(opened, number):
     driver.app.shell.go("trip")
     driver.frames(4)
     assert driver.app.session.timeline.total_min > 0
+
+
+def test_a_case_is_removed_only_after_a_second_tap(opened, tmp_path):
+    kept = library(tmp_path / "data")
+    kept.save("a", Case())
+    kept.close()
+    driver = opened()
+    driver.tap("Remove a case")
+    rows = [w for w in driver.widgets() if getattr(w, "text", "") == "No initials yet"]
+    driver.tap(rows[-1])
+    assert driver.reads("It cannot be brought back.")
+    assert len(driver.app.library.rows()) == 1
+    driver.tap("Remove it")
+    assert driver.app.library.rows() == []
+    assert driver.reads("A person with lung disease wants to travel.")

@@ -11,6 +11,7 @@ from kivy.uix.boxlayout import BoxLayout
 
 from planner.case import Case
 from planner.errors import PlannerError
+from ui.library import CaseRow
 from ui.theme import theme
 from ui.widgets.buttons import PlainButton, PrimaryButton
 from ui.widgets.notices import CautionStrip, Notice, paint_ground
@@ -51,9 +52,9 @@ class CasesPage(BoxLayout):
 
     def _fill(self) -> None:
         rows = self.library.rows()
-        self.content.add_widget(Text("[b]Cases[/b]" if rows else "[b]Oxygen and altitude planner[/b]", role="title"))
+        title = Text("[b]Cases[/b]" if rows else "[b]Oxygen and altitude planner[/b]", role="title")
         self.fault = Stack()
-        self.content.add_widget(self.fault)
+        self.content.add_widget(Stack(title, self.fault, gap=2))
         if self.library.fault:
             self.fault.add_widget(Notice(plain(self.library.fault), "stop", title="Cases are not kept."))
         if not rows:
@@ -62,13 +63,15 @@ class CasesPage(BoxLayout):
         else:
             listed = Stack(gap=0)
             for row in rows:
-                listed.add_widget(ListRow(plain(row.title), row.detail, row.when, lambda r=row: self._open(r.case_id)))
+                listed.add_widget(ListRow(plain(row.title), row.detail, "", lambda r=row: self._open(r.case_id)))
             self.content.add_widget(listed)
         self.content.add_widget(PrimaryButton("New case", self.new_case))
         self.content.add_widget(PlainButton("Open a demo", self.open_demo))
         folds = Stack(gap=0)
         folds.add_widget(Fold("Other demos", "Three invented people and trips", self._fill_demos))
         folds.add_widget(Fold("Import a case", "From a file on this device", self._fill_import))
+        if rows:
+            folds.add_widget(Fold("Remove a case", "With all its versions", self._fill_removal))
         self.content.add_widget(folds)
 
     def _fill_demos(self, body: BoxLayout) -> None:
@@ -82,6 +85,23 @@ class CasesPage(BoxLayout):
         self.path = TextEntry("File", longest=1000)
         body.add_widget(self.path)
         body.add_widget(PlainButton("Import this file", lambda: self.import_file(Path(self.path.value).expanduser())))
+
+    def _fill_removal(self, body: BoxLayout) -> None:
+        listed, asked = Stack(gap=0), Stack()
+
+        def ask(row: CaseRow) -> None:
+            words = f"{plain(row.title)}, {row.detail}. It cannot be brought back."
+            asked.hold(Notice(words, "stop", title="Remove this case?", actions=(("Remove it", lambda: remove(row)),)))
+
+        def remove(row: CaseRow) -> None:
+            self._try(lambda: self.library.remove(row.case_id))
+            self.content.clear_widgets()
+            self._fill()
+
+        for row in self.library.rows():
+            listed.add_widget(ListRow(plain(row.title), row.detail, on_tap=lambda r=row: ask(r)))
+        body.add_widget(listed)
+        body.add_widget(asked)
 
     def new_case(self) -> None:
         """Start an empty case."""

@@ -6,13 +6,15 @@ from collections.abc import Callable
 from typing import Any
 
 from kivy.graphics import Color, SmoothLine, SmoothRoundedRectangle
-from kivy.metrics import dp
+from kivy.metrics import dp, sp
 from kivy.properties import BooleanProperty
 from kivy.uix.behaviors import ButtonBehavior
 from kivy.uix.label import Label
 
 from ui.theme import FONT, space, target, theme
 from ui.widgets.reach import Reachable
+
+WIDEST_DP = 420
 
 
 class PlainButton(ButtonBehavior, Reachable, Label):  # type: ignore[misc]
@@ -26,6 +28,7 @@ class PlainButton(ButtonBehavior, Reachable, Label):  # type: ignore[misc]
     ) -> None:
         self.on_tap, self.tone = on_tap, tone
         keywords.setdefault("size_hint_y", None)
+        keywords.setdefault("size_hint_max_x", max(dp(WIDEST_DP), sp(WIDEST_DP)))
         super().__init__(
             text=text,
             font_name=FONT,
