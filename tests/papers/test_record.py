@@ -60,7 +60,7 @@ def test_every_decision_is_there_with_who_and_when(first):
 def test_the_pathway_story_has_each_step_and_its_end(demo):
     flow = demo.upright(9.5)
     write_pathways(flow, demo)
-    text = " ".join(item.text for _, items in flow.panels for item in items if isinstance(item, Text))
+    text = " ".join(i.text for _, items in flow.panels for i in items if isinstance(i, Text)).replace("\u00a0", " ")
     assert demo.plan.pathways
     for pathway in demo.plan.pathways:
         assert pathway.title in text
