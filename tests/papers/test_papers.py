@@ -3,7 +3,7 @@ from datetime import UTC, datetime
 
 import pytest
 
-from planner import Case
+from planner import Case, plan
 from planner.case.confirmation import Confirmation
 from planner.papers import PAPERS, lay_paper, make_papers
 from planner.papers.desk import Desk
@@ -152,3 +152,15 @@ def test_desk_names_a_part_by_its_kind_where_it_has_no_name(first):
         update={"trip": first.case.trip.model_copy(update={"parts": (part, *first.case.trip.parts[1:])})}
     )
     assert Desk.of(case, first.plan).part_name(part.part_id) == "Road"
+
+
+@pytest.mark.parametrize("name", PAPERS)
+def test_a_plan_without_its_kit_gives_papers_that_say_so(name):
+    case = demo_case()
+    paper = lay_paper(name, case, plan(case, through="titration"))
+    shown = " ".join(map(page_words, paper.pages))
+    if name in {"record", "supplier"}:
+        assert "What to carry has not been worked out yet." in shown
+    if name == "traveller":
+        assert "There are no numbers to check yet." in shown
+    assert all(overlaps(page) == [] for page in paper.pages)
