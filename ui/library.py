@@ -55,9 +55,27 @@ class Library:
             self._store.close()
             self._store = None
 
+    @property
+    def protected(self) -> bool:
+        """True if a passphrase is set."""
+        return self._store is not None and self._store.protected
+
+    @property
+    def locked(self) -> bool:
+        """True until the passphrase is entered."""
+        return self._store is not None and self._store.locked
+
+    def unlock(self, passphrase: str) -> None:
+        """Enter the passphrase. Raises StoreError when it is wrong. Takes a quarter of a second, on purpose."""
+        self._opened().unlock(passphrase)
+
+    def protect(self, passphrase: str) -> None:
+        """Set a passphrase; every kept case is sealed with it."""
+        self._opened().protect(passphrase)
+
     def rows(self) -> list[CaseRow]:
         """Every kept case, the last saved first."""
-        return [] if self._store is None else [_row(entry) for entry in self._store.entries()]
+        return [] if self._store is None or self.locked else [_row(entry) for entry in self._store.entries()]
 
     def read(self, case_id: str) -> Case:
         """The last kept version of a case. Raises StoreError where it cannot be read."""

@@ -8,6 +8,8 @@ from typing import Any
 
 from kivy.clock import Clock
 
+from planner.errors import PlannerError
+
 Planner = Callable[..., Any]  # planner.plan: (case, *, memory, through, on_progress, cancelled) -> Plan
 Load = Callable[[], tuple[Planner, Any]]  # planner and its memory; called in the thread, so that it may import
 Deliver = Callable[[Any, Any, str, str], None]  # case, plan or None, what is being done, fault
@@ -81,3 +83,16 @@ class PlanWorker:
 
     def _say(self, case: Any, plan: Any, working_on: str, fault: str) -> None:
         Clock.schedule_once(lambda _dt: self._deliver(case, plan, working_on, fault), 0)
+
+
+def away(work: Callable[[], Any], done: Callable[[Any, PlannerError | None], None]) -> None:
+    """Do one piece of work away from the screen; then done(result, None) or done(None, what was refused)."""
+
+    def run() -> None:
+        try:
+            result, refused = work(), None
+        except PlannerError as error:
+            result, refused = None, error
+        Clock.schedule_once(lambda _dt: done(result, refused), 0)
+
+    threading.Thread(target=run, name="away", daemon=True).start()

@@ -130,3 +130,28 @@ def test_a_case_is_removed_only_after_a_second_tap(opened, tmp_path):
     driver.tap("Remove it")
     assert driver.app.library.rows() == []
     assert driver.reads("A person with lung disease wants to travel.")
+
+
+def test_a_passphrase_seals_the_cases_and_is_asked_at_the_next_start(opened, tmp_path):
+    kept = library(tmp_path / "data")
+    kept.save("a", Case())
+    kept.close()
+    driver = opened()
+    driver.tap("Passphrase")
+    driver.fill(driver.field("Passphrase"), "ripe cherries")
+    driver.fill(driver.field("The same again"), "ripe cherry")
+    driver.tap("Seal the cases")
+    assert driver.reads("Both must be the same, and not empty.")
+    driver.fill(driver.field("The same again"), "ripe cherries")
+    driver.tap("Seal the cases")
+    driver.until(lambda: driver.app.library.protected)
+    driver.close()
+    again = opened()
+    assert again.reads("The cases on this device are sealed.")
+    assert not again.reads("No initials yet")
+    again.fill(again.field("Passphrase"), "ripe berries")
+    again.tap("Unlock")
+    again.until(lambda: again.reads("passphrase does not"))
+    again.fill(again.field("Passphrase"), "ripe cherries")
+    again.tap("Unlock")
+    again.until(lambda: again.reads("No initials yet"))

@@ -14,10 +14,12 @@ from planner.errors import PlannerError
 from ui.library import CaseRow
 from ui.theme import theme
 from ui.widgets.buttons import PlainButton, PrimaryButton
+from ui.widgets.entries import TextEntry
 from ui.widgets.notices import CautionStrip, Notice, paint_ground
 from ui.widgets.page import Page
-from ui.widgets.rows import Fold, ListRow, Stack
+from ui.widgets.rows import Fold, ListRow, Side, Stack
 from ui.widgets.text import Text, plain
+from ui.worker import away
 
 DEMOS = (
     ("copd_layover", "COPD, flights with a layover"),
@@ -51,6 +53,9 @@ class CasesPage(BoxLayout):
             Window.unbind(on_drop_file=self._dropped)
 
     def _fill(self) -> None:
+        if self.library.locked:
+            self._fill_locked()
+            return
         rows = self.library.rows()
         title = Text("[b]Cases[/b]" if rows else "[b]Oxygen and altitude planner[/b]", role="title")
         self.fault = Stack()
@@ -70,6 +75,8 @@ class CasesPage(BoxLayout):
         folds = Stack(gap=0)
         folds.add_widget(Fold("Other demos", "Three invented people and trips", self._fill_demos))
         folds.add_widget(Fold("Import a case", "From a file on this device", self._fill_import))
+        if rows and not self.library.protected:
+            folds.add_widget(Fold("Passphrase", "Seal the cases on this device", self._fill_passphrase))
         if rows:
             folds.add_widget(Fold("Remove a case", "With all its versions", self._fill_removal))
         self.content.add_widget(folds)
@@ -79,12 +86,50 @@ class CasesPage(BoxLayout):
             body.add_widget(PlainButton(words, lambda n=name: self.open_demo(n)))
 
     def _fill_import(self, body: BoxLayout) -> None:
-        from ui.widgets.entries import TextEntry
-
         body.add_widget(Text("Drop a case file on this window, or write where it is.", role="body"))
         self.path = TextEntry("File", longest=1000)
         body.add_widget(self.path)
         body.add_widget(PlainButton("Import this file", lambda: self.import_file(Path(self.path.value).expanduser())))
+
+    def _fill_locked(self) -> None:
+        self.fault = Stack()
+        entry = TextEntry("Passphrase", longest=200)
+        entry.input.password = True
+        words = "The cases on this device are sealed. Enter the passphrase to read them."
+        self.content.add_widget(Stack(Text("[b]Cases[/b]", role="title"), self.fault, Text(words), gap=2))
+        self.content.add_widget(entry)
+        self.content.add_widget(PrimaryButton("Unlock", lambda: self._away(lambda: self.library.unlock(entry.value))))
+
+    def _fill_passphrase(self, body: BoxLayout) -> None:
+        words = (
+            "With a passphrase nothing about a person can be read in the file, not even a name. Without it nobody can "
+            "open the cases again: write it down where it is kept well."
+        )
+        first, again = TextEntry("Passphrase", longest=200), TextEntry("The same again", longest=200)
+        for entry in (first, again):
+            entry.input.password = True
+
+        def seal() -> None:
+            if not first.value or first.value != again.value:
+                again.refuse("Both must be the same, and not empty.")
+                return
+            self._away(lambda: self.library.protect(first.value))
+
+        for widget in (Text(words), Side(first, again), PlainButton("Seal the cases", seal)):
+            body.add_widget(widget)
+
+    def _away(self, work: Callable[[], None]) -> None:
+        """Do what takes longer than a frame, then show what came of it."""
+
+        def done(_result: None, refused: PlannerError | None) -> None:
+            if refused is None:
+                self.content.clear_widgets()
+                self._fill()
+                return
+            self.fault.clear_widgets()
+            self.fault.add_widget(Notice(plain(str(refused)), "stop"))
+
+        away(work, done)
 
     def _fill_removal(self, body: BoxLayout) -> None:
         listed, asked = Stack(gap=0), Stack()
