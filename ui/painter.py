@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from functools import lru_cache
 from typing import Any
 
@@ -12,7 +13,7 @@ from kivy.graphics.instructions import InstructionGroup
 from kivy.metrics import dp
 
 from planner.charts.layout import Band, Box, Drawing, Item, Marker, Polyline, Text
-from ui.theme import FONT, Colour, theme
+from ui.theme import FONT, LIGHT, Colour, Palette, theme
 
 _DASHES = {"dashed": (6.0, 4.0), "dotted": (1.6, 3.2)}
 _TOKENS = {"grid": "line"}
@@ -23,16 +24,38 @@ def measure(text: str, size: float) -> float:
     return _width(text, round(size, 2))
 
 
-def colour_of(role: str) -> Colour:
-    """The theme's colour of a drawing role."""
+def colour_of(role: str, palette: Palette | None = None) -> Colour:
+    """The colour of a drawing role, in the theme's palette or another."""
+    colours: Any = palette or theme
     if role == "caution_soft":
-        return (*theme.caution_ground[:3], 0.75)
-    return theme.colour(_TOKENS.get(role, role))
+        return (*colours.caution_ground[:3], 0.75)
+    colour: Colour = getattr(colours, _TOKENS.get(role, role))
+    return colour
 
 
 def paint(group: InstructionGroup, drawing: Drawing, x: float, y: float) -> None:
     """Fill a group with a drawing whose lower left corner stands at x, y. What was in the group goes."""
     paint_items(group, drawing.items, x, y)
+
+
+def paint_page(group: InstructionGroup, page: Drawing, x: float, y: float, scale: float) -> None:
+    """Fill a group with a page of paper at a scale: in the light palette, its type drawn at the size it is shown."""
+    group.clear()
+    for item in page.items:
+        group.add(Color(*colour_of(item.role, LIGHT)))
+        _PAINTERS[type(item)](group, _scaled(item, scale), x, y)
+
+
+def _scaled(item: Item, scale: float) -> Item:
+    if isinstance(item, Band):
+        return replace(item, x=item.x * scale, low=item.low * scale, high=item.high * scale)
+    if isinstance(item, Polyline):
+        return replace(item, points=item.points * scale, width=item.width * scale)
+    if isinstance(item, Box):
+        return replace(item, x=item.x * scale, y=item.y * scale, width=item.width * scale, height=item.height * scale)
+    if isinstance(item, Marker):
+        return replace(item, x=item.x * scale, y=item.y * scale, radius=item.radius * scale)
+    return replace(item, x=item.x * scale, y=item.y * scale, size=item.size * scale)
 
 
 def paint_items(group: InstructionGroup, items: tuple[Item, ...], x: float, y: float) -> None:

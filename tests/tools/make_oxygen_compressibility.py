@@ -1,6 +1,6 @@
 """Fits the compressibility of oxygen to a reference equation of state; prints the numbers of planner/kit/oxygen_gas.py.
 
-Run: python tests/tools/make_oxygen_compressibility.py. Reference: Schmidt R, Wagner W, Fluid Phase Equilibria 1985;19:175,
+Run: python tests/tools/make_oxygen_compressibility.py. Reference: Schmidt R, Wagner W, Fluid Phase Equilib 1985;19:175,
 as evaluated by CoolProp.
 """
 

@@ -37,6 +37,10 @@ class Step(NamedTuple):
 STEPS = (
     Step("patient", "Patient", "ui.screens.patient:PatientScreen"),
     Step("trip", "Trip", "ui.screens.trip:TripScreen"),
+    Step("forecast", "Forecast", "ui.screens.forecast:ForecastScreen"),
+    Step("oxygen", "Oxygen", "ui.screens.oxygen:OxygenScreen"),
+    Step("kit", "Kit", "ui.screens.kit:KitScreen"),
+    Step("papers", "Papers", "ui.screens.papers:PapersScreen"),
 )
 PAGES = (  # reached from elsewhere than the bar
     Step("display", "Display", "ui.screens.display:DisplayScreen"),

@@ -16,6 +16,7 @@ from ui.widgets.buttons import PlainButton, PrimaryButton
 from ui.widgets.choices import Choice
 from ui.widgets.entries import Entry
 from ui.widgets.notices import CAUTION
+from ui.widgets.paper import PaperView
 from ui.widgets.ribbon import DrawingView, RibbonView
 from ui.widgets.text import Text, plain
 
@@ -48,7 +49,7 @@ def text_of_step(name: str, session: object) -> str:
 
 
 def _lines(widget: Widget) -> list[str]:
-    if isinstance(widget, RibbonView | DrawingView):
+    if isinstance(widget, RibbonView | DrawingView | PaperView):
         return widget.spoken()
     if isinstance(widget, Entry):
         value = widget.input.text or "not entered"

@@ -1,0 +1,184 @@
+"""What happens to the blood: saturation along the ribbon, all methods side by side for one part, and what follows."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from planner.charts.forecast import ForecastRow, Threshold, lay_forecast
+from planner.charts.ribbon import Layer, Reading
+from ui import measures
+from ui.screens.guidance import GuidanceFolds
+from ui.screens.result_screen import ResultScreen
+from ui.screens.trip_ribbon import value_at
+from ui.widgets.buttons import PlainButton, PrimaryButton
+from ui.widgets.notices import Notice
+from ui.widgets.ribbon import DrawingView
+from ui.widgets.rows import Fold, Stack
+from ui.widgets.text import Text, plain, strong
+
+VERDICT_WORDS = {"likely below": "Likely below", "uncertain": "Uncertain", "likely above": "Likely above"}
+AGREEMENT_WORDS = {
+    "agree": "the methods agree",
+    "disagree": "the methods disagree",
+    "one method only": "one method only applies",
+    "none": "no method applies",
+}
+ACTIVITY_WORDS = {"rest": "At rest", "walking": "Walking", "asleep": "Asleep"}
+
+
+class ForecastScreen(ResultScreen):
+    """The forecast on air of the part under the finger."""
+
+    step = "forecast"
+    question = "What happens to the blood?"
+
+    def build_results(self) -> None:
+        """Verdict, methods, other activities, what would narrow it, guidance, how it was worked out."""
+        self.verdict = Text("", role="lead")
+        self.chart = DrawingView()
+        self.others = Stack(gap=0)
+        self.narrow = Text("", tone="muted")
+        self.notes = Stack(gap=2)
+        self.guidance = GuidanceFolds(self.session)
+        self.worked_out = Fold(
+            "How was this worked out", "Formula, inputs and source of each method", self._fill_methods
+        )
+        self.test = PlainButton("Hypoxic challenge test", lambda: self.go("challenge"))
+        self.put(self.verdict, self.chart, self.others, self.narrow, self.notes)
+        self.put(self.test, self.guidance, self.worked_out)
+        self.put(PrimaryButton("On to the oxygen", lambda: self.go("oxygen")))
+
+    def layer(self) -> Layer | None:
+        """SpO2 at rest on air with its spread and the threshold."""
+        plan = self.session.plan
+        if plan is None or plan.along.air is None or self.session.stale:
+            return None
+        air, threshold = plan.along.air, self.session.case.policy.spo2_threshold_percent
+        return Layer(
+            air.minutes,
+            air.spo2_median_percent,
+            "SpO₂ at rest on air, %",
+            lambda value: measures.number_text(value, 0),
+            low=air.spo2_low_percent,
+            high=air.spo2_high_percent,
+            threshold=threshold,
+            threshold_text=f"{threshold:g} %",
+        )
+
+    def tell(self, reading: Reading) -> str:
+        """The blood at this moment."""
+        if reading.median is None or reading.low is None or reading.high is None:
+            return ""
+        timeline, shown = self.session.timeline, measures.pressure(self.session.case.display.pressure)
+        inspired = value_at(timeline, timeline.inspired_po2_mmhg, reading.minute)
+        words = f"at rest on air SpO₂ {strong(f'{reading.median:.0f} %')} ({reading.low:.0f} to {reading.high:.0f})"
+        return words if inspired is None else f"{words}, inspired PO₂ {shown.with_unit(inspired)}"
+
+    def show_part(self, part: Any, plan: Any) -> None:
+        """The verdict and the methods of one part."""
+        forecast = part.forecast
+        rest = forecast.activities[0] if forecast is not None else None
+        self.verdict.text = self._verdict(part, rest)
+        self.chart.show(None if rest is None else lambda **size: self._lay(part, rest, **size))
+        if rest is None:
+            self.chart.height = 0
+        self._show_others(forecast)
+        self.narrow.text = self._narrowing(plan)
+        self._show_notes(plan, forecast)
+        self.guidance.show_plan(plan)
+        if self.worked_out.open:
+            self.worked_out.body.clear_widgets()
+            self._fill_methods(self.worked_out.body)
+
+    # -- inside
+
+    def _verdict(self, part: Any, rest: Any) -> str:
+        if rest is None:
+            return "The air of this part is not known; enter its altitude on the step Trip."
+        if not rest.against:
+            return plain(self.session.plan.lung_refusal or "No method applies to this part.")
+        shown = measures.pressure(self.session.case.display.pressure)
+        first = rest.against[0]
+        sentence = (
+            f"{strong(VERDICT_WORDS[first.verdict])} against {shown.with_unit(first.threshold_mmhg)} in "
+            f"{plain(part.span.name)}, and {AGREEMENT_WORDS[rest.agreement]}."
+        )
+        return f"{sentence} {strong('Test advised.')}" if part.forecast.test_advised else sentence
+
+    def _lay(self, part: Any, rest: Any, **size: Any) -> Any:
+        shown = measures.pressure(self.session.case.display.pressure)
+        policy = self.session.case.policy
+        rows = [self._row(one, shown) for one in rest.predictors]
+        limits = [policy.lower_threshold_mmhg, policy.upper_threshold_mmhg]
+        return lay_forecast(
+            rows,
+            [Threshold(shown.shown(limit), shown.with_unit(limit)) for limit in limits],
+            title=f"PaO₂ in {part.span.name}, at rest on air",
+            unit=shown.unit,
+            tick_text=lambda value: measures.number_text(value, shown.decimals),
+            **size,
+        )
+
+    def _row(self, one: Any, shown: measures.Measure) -> ForecastRow:
+        values = [None if v is None else shown.shown(v) for v in (one.pao2_mmhg, one.low_mmhg, one.high_mmhg)]
+        detail = one.detail if one.applies or not one.reasons else f"{one.detail}. {one.reasons[0]}"
+        kind = "measured" if one.predictor_id == "challenge" else "predicted"
+        text = "–" if one.pao2_mmhg is None else shown.text(one.pao2_mmhg)
+        return ForecastRow(one.label, detail, *values, text, kind if one.applies else "not applicable")
+
+    def _show_others(self, forecast: Any) -> None:
+        self.others.clear_widgets()
+        shown = measures.pressure(self.session.case.display.pressure)
+        for one in forecast.activities if forecast is not None else ():
+            if one.spo2 is None or one.pao2_mmhg is None:
+                continue
+            spo2 = f"{100 * one.spo2.median:.0f} % ({100 * one.spo2.low:.0f} to {100 * one.spo2.high:.0f})"
+            middle = one.pao2_mmhg
+            pao2 = f"PaO₂ {shown.with_unit(middle.median)} ({shown.text(middle.low)} to {shown.text(middle.high)})"
+            if one.below_model_range:
+                spo2, pao2 = "below model range", "Most of the spread lies below what the model covers."
+            self.others.add_widget(
+                Text(f"{strong(ACTIVITY_WORDS[one.activity])}, this lung: SpO₂ {strong(spo2)}, {pao2}")
+            )
+
+    def _narrowing(self, plan: Any) -> str:
+        if not plan.narrowing:
+            return ""
+        best = plan.narrowing[0]
+        shown = measures.pressure(self.session.case.display.pressure)
+        now, then = best.spread_now_mmhg / 2, best.spread_then_mmhg / 2
+        words = best.input_name[:1].upper() + best.input_name[1:]
+        return f"{words} would narrow the spread most: ±{shown.text(now)} to ±{shown.with_unit(then)}."
+
+    def _show_notes(self, plan: Any, forecast: Any) -> None:
+        self.notes.clear_widgets()
+        for sentence in forecast.why if forecast is not None and forecast.test_advised else ():
+            self.notes.add_widget(Notice(plain(sentence), "note", title="Test advised."))
+        for missing in plan.missing:
+            self.notes.add_widget(Notice(plain(missing.would_change), "caution", title=plain(missing.question)))
+        for note in plan.baseline.notes:
+            if note.kind in ("old", "state", "place", "oximetry"):
+                self.notes.add_widget(Notice(plain(note.text), "caution"))
+        for sentence in plan.lung.widened if plan.lung is not None else ():
+            self.notes.add_widget(Notice(plain(sentence), "note", title="Wider spread."))
+
+    def _fill_methods(self, body: Any) -> None:
+        part = self.part
+        if part is None or part.forecast is None:
+            body.add_widget(Text("There is nothing worked out for this part yet.", tone="muted"))
+            return
+        for one in part.forecast.activities[0].predictors:
+            lines = [
+                plain(one.formula),
+                "Inputs: " + ("; ".join(plain(f"{name} {value}") for name, value in one.inputs) or "none"),
+                "Made from: " + plain(one.population),
+                "Source: " + plain(one.source),
+                *(plain(reason) for reason in one.reasons),
+            ]
+            body.add_widget(
+                Stack(
+                    Text(f"{strong(plain(one.label))}, {plain(one.detail)}"),
+                    Text("\n".join(lines), role="label", tone="muted"),
+                    gap=1,
+                )
+            )

@@ -1,0 +1,142 @@
+"""What to hand over: the state of the plan, its confirmation, and the four papers, each with a preview."""
+
+from __future__ import annotations
+
+import subprocess
+import sys
+from datetime import UTC, datetime
+from pathlib import Path
+from typing import Any
+
+import platformdirs
+
+from ui.screens.form import today
+from ui.screens.screen import Screen
+from ui.widgets.buttons import PlainButton, PrimaryButton
+from ui.widgets.choices import Choice
+from ui.widgets.entries import TextEntry
+from ui.widgets.notices import Notice, Section
+from ui.widgets.paper import PaperView
+from ui.widgets.rows import Side, Stack
+from ui.widgets.text import Text, plain
+
+PAPER_WORDS = (
+    ("record", "Clinical record"),
+    ("carrier", "For the carrier"),
+    ("supplier", "For the supplier"),
+    ("traveller", "For the traveller"),
+)
+
+
+class PapersScreen(Screen):
+    """State, confirmation, preview, saving."""
+
+    step = "papers"
+    question = "What to hand over?"
+
+    def build(self) -> None:
+        """The state first, then the papers."""
+        self.state = Stack(gap=2)
+        by, role = self.session.place.get("decided_by", ""), self.session.place.get("role", "")
+        self.by = TextEntry("Prescriber's name", by, longest=80, on_value=lambda v: None)
+        self.role = TextEntry("Role", role, longest=60, on_value=lambda v: None)
+        self.problem = Text("", tone="stop")
+        self.confirm = PrimaryButton("Confirm this plan", self._confirm)
+        self.confirmation = Section("Confirmation", note="It holds for these entries only; any change makes it void.")
+        for widget in (Side(self.by, self.role), self.problem, self.confirm):
+            self.confirmation.add_widget(widget)
+        self.holds = self.form.date("policy.holds_until", "The papers hold until")
+        self.paper = self.session.place.get("paper", "record")
+        self.choice = Choice("Preview", PAPER_WORDS, self.paper, self._choose)
+        self.preview = PaperView()
+        folder = self.session.place.get("papers_folder") or str(
+            Path(platformdirs.user_documents_dir()) / "oxygen papers"
+        )
+        self.folder = TextEntry("Save to the folder", folder, longest=300, on_value=self._keep_folder)
+        self.saved = Text("", tone="muted")
+        self.put(self.state, self.confirmation, self.holds, self.choice, self.preview, self.folder)
+        self.put(PrimaryButton("Save the four papers", self._save), self.saved)
+        self.put(PlainButton("Open the folder to print or send", self._open))
+        self._laid: Any = None
+
+    def refresh(self) -> None:
+        """Show the state and the preview of the plan as it is."""
+        plan = self.session.plan
+        self.state.clear_widgets()
+        if plan is None:
+            self.state.add_widget(Text("The plan is being worked out."))
+            return
+        kind = {"Draft": "caution", "Flows decided": "note", "Confirmed": "good"}[plan.state]
+        self.state.add_widget(Notice(plain(plan.state_reason), kind, title=f"{plan.state}."))
+        self.confirm.disabled = plan.state == "Draft" or self.session.stale
+        self._show_preview(plan)
+        self.grey(self.preview)
+
+    # -- inside
+
+    def _choose(self, name: str) -> None:
+        self.paper = name
+        self.session.place["paper"] = name
+        self.refresh()
+
+    def _show_preview(self, plan: Any) -> None:
+        seen = (plan, self.paper)
+        if self._laid == seen or self.session.stale:
+            return
+        from planner.papers import lay_paper
+
+        self._laid = seen
+        self.preview.show(lay_paper(self.paper, self.session.case, plan))
+
+    def _confirm(self) -> None:
+        from planner.case.confirmation import Confirmation
+
+        name, role = self.by.input.text.strip(), self.role.input.text.strip()
+        if not name or not role:
+            self.problem.text = "A confirmation needs the prescriber's name and role."
+            return
+        confirmation = Confirmation(
+            name=name,
+            role=role,
+            confirmed_at=datetime.now(UTC).replace(microsecond=0),
+            inputs_digest=self.session.case.inputs_digest(),
+        )
+        self.problem.text = plain(self.session.choose("confirmation", confirmation, "the confirmation"))
+
+    def _keep_folder(self, text: str) -> None:
+        self.session.place["papers_folder"] = text
+
+    def _save(self) -> None:
+        from planner.papers import make_papers
+        from planner.records.reading import write_atomically
+
+        plan = self.session.shown_plan
+        if plan is None:
+            self.saved.text = "The plan is being worked out; try again in a moment."
+            return
+        folder = Path(self.folder.input.text.strip()).expanduser()
+        try:
+            folder.mkdir(parents=True, exist_ok=True)
+            for name, content in make_papers(self.session.case, plan).items():
+                write_atomically(folder / f"{self._prefix()}{name}.pdf", content)
+        except OSError as error:
+            self.saved.text = plain(f"Not saved: {folder} cannot be written ({error.strerror}). Choose another folder.")
+            return
+        self.saved.text = plain(f"Four papers saved in {folder}.")
+
+    def _prefix(self) -> str:
+        reference = "".join(
+            letter for letter in self.session.case.patient.reference if letter.isalnum() or letter in "-_"
+        )
+        return f"{reference or 'case'} {today():%Y-%m-%d} "
+
+    def _open(self) -> None:
+        folder = Path(self.folder.input.text.strip()).expanduser()
+        if not folder.is_dir():
+            self.saved.text = "Save the papers first."
+            return
+        opener = {"win32": ["explorer"], "darwin": ["open"]}.get(sys.platform, ["xdg-open"])
+        try:
+            subprocess.Popen([*opener, str(folder)], stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL)
+        except OSError:
+            self.saved.text = plain(f"This system has no way to open folders; the papers are in {folder}.")
