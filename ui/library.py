@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import threading
 from dataclasses import dataclass
 from datetime import date
 from pathlib import Path
@@ -41,6 +42,7 @@ class Library:
 
     def __init__(self, folder: Path) -> None:
         self.fault = ""
+        self._one_at_a_time = threading.Lock()  # a passphrase is worked on away from the screen
         self._store: CaseStore | None = None
         try:
             self._store = CaseStore(folder / FILE_NAME)
@@ -51,9 +53,10 @@ class Library:
 
     def close(self) -> None:
         """Let another start of the app write."""
-        if self._store is not None:
-            self._store.close()
-            self._store = None
+        with self._one_at_a_time:
+            if self._store is not None:
+                self._store.close()
+                self._store = None
 
     @property
     def protected(self) -> bool:
@@ -67,11 +70,13 @@ class Library:
 
     def unlock(self, passphrase: str) -> None:
         """Enter the passphrase. Raises StoreError when it is wrong. Takes a quarter of a second, on purpose."""
-        self._opened().unlock(passphrase)
+        with self._one_at_a_time:
+            self._opened().unlock(passphrase)
 
     def protect(self, passphrase: str) -> None:
         """Set a passphrase; every kept case is sealed with it."""
-        self._opened().protect(passphrase)
+        with self._one_at_a_time:
+            self._opened().protect(passphrase)
 
     def rows(self) -> list[CaseRow]:
         """Every kept case, the last saved first."""
@@ -83,7 +88,8 @@ class Library:
 
     def save(self, case_id: str, case: Case) -> None:
         """Keep a version. Raises StoreError where it cannot be kept; what was kept before stays."""
-        self._opened().save(case_id, case)
+        with self._one_at_a_time:
+            self._opened().save(case_id, case)
 
     def remove(self, case_id: str) -> None:
         """Remove a case with all its versions. Raises StoreError where it cannot be."""

@@ -179,3 +179,12 @@ def test_a_store_that_refuses_is_said_and_asked_again():
     assert session.said == "Not saved: the disk is full"
     assert session._save_due is not None
     assert session.case.patient.age_years == 50.0
+
+
+def test_a_plan_that_arrives_after_the_next_edit_is_dropped(session):
+    asked = session.case
+    session.set("patient.age_years", 50.0)
+    session._planned(asked, "a plan of the case before", "", "")
+    assert session.plan is None
+    session._planned(session.case, "a plan of this case", "", "")
+    assert session.plan == "a plan of this case"
