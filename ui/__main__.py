@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import logging
 import os
 import sys
 from collections.abc import Sequence
@@ -84,6 +85,8 @@ def _prepare_kivy(home: Path, *, without_window: bool) -> None:
         os.environ.setdefault(f"KIVY_{provider}", "sdl2")
     if without_window:
         os.environ["SDL_VIDEODRIVER"] = "offscreen"
+    # Kivy calls it critical when two X11 tools for the middle mouse button are not installed; nothing here needs them.
+    logging.getLogger("kivy").addFilter(lambda record: not str(record.msg).startswith("Cutbuffer"))
     from kivy.config import Config
 
     Config.set("graphics", "width", str(SIZE[0]))

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from datetime import date
+from datetime import date, datetime
 from typing import Annotated, Literal
 
 from pydantic import Field
@@ -132,6 +132,9 @@ class Challenge(Measurement):
     kind: Literal["challenge"] = "challenge"
     challenge_fio2: float | None = Field(None, ge=0.10, le=0.2093, description="Fraction of oxygen in the mixture")
     method: Literal["mask", "venturi_nitrogen", "hood", "tent", "body_box", "hypobaric_chamber"] | None = None
+    started_at: datetime | None = Field(
+        None, strict=False, description="When its clock was started, with its offset; rows count from here"
+    )
     duration_min: float | None = Field(None, gt=0.0, le=180.0)
     ended_early: bool | None = None
     ended_why: str = Field("", max_length=200)

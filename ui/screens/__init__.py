@@ -44,6 +44,7 @@ STEPS = (
 )
 PAGES = (  # reached from elsewhere than the bar
     Step("display", "Display", "ui.screens.display:DisplayScreen"),
+    Step("challenge", "Challenge test", "ui.screens.challenge:ChallengeScreen"),
     Step("text", "As text", "ui.screens.as_text:TextScreen"),
 )
 

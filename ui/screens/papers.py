@@ -17,7 +17,7 @@ from ui.widgets.choices import Choice
 from ui.widgets.entries import TextEntry
 from ui.widgets.notices import Notice, Section
 from ui.widgets.paper import PaperView
-from ui.widgets.rows import Side, Stack
+from ui.widgets.rows import Fold, Side, Stack
 from ui.widgets.text import Text, plain
 
 PAPER_WORDS = (
@@ -26,6 +26,8 @@ PAPER_WORDS = (
     ("supplier", "For the supplier"),
     ("traveller", "For the traveller"),
 )
+
+PLACES = (("documents", "Documents"), ("downloads", "Downloads"), ("home", "Home folder"))
 
 
 class PapersScreen(Screen):
@@ -49,12 +51,9 @@ class PapersScreen(Screen):
         self.paper = self.session.place.get("paper", "record")
         self.choice = Choice("Preview", PAPER_WORDS, self.paper, self._choose)
         self.preview = PaperView()
-        folder = self.session.place.get("papers_folder") or str(
-            Path(platformdirs.user_documents_dir()) / "oxygen papers"
-        )
-        self.folder = TextEntry("Save to the folder", folder, longest=300, on_value=self._keep_folder)
+        self.where = Fold("Save to another folder", str(self.folder), self._fill_folder)
         self.saved = Text("", tone="muted")
-        self.put(self.state, self.confirmation, self.holds, self.choice, self.preview, self.folder)
+        self.put(self.state, self.confirmation, self.holds, self.choice, self.preview, self.where)
         self.put(PrimaryButton("Save the four papers", self._save), self.saved)
         self.put(PlainButton("Open the folder to print or send", self._open))
         self._laid: Any = None
@@ -103,8 +102,25 @@ class PapersScreen(Screen):
         )
         self.problem.text = plain(self.session.choose("confirmation", confirmation, "the confirmation"))
 
-    def _keep_folder(self, text: str) -> None:
-        self.session.place["papers_folder"] = text
+    @property
+    def folder(self) -> Path:
+        """Where the papers are saved."""
+        place = self.session.place.get("papers_place", PLACES[0][0])
+        name = self.session.place.get("papers_folder", "").strip() or "oxygen papers"
+        return _place(place) / name
+
+    def _fill_folder(self, body: Any) -> None:
+        chosen = self.session.place.get("papers_place", PLACES[0][0])
+        body.add_widget(Choice("Inside", PLACES, chosen, lambda value: self._keep_folder("papers_place", value)))
+        body.add_widget(
+            TextEntry(
+                "Folder", self.folder.name, longest=24, on_value=lambda text: self._keep_folder("papers_folder", text)
+            )
+        )
+
+    def _keep_folder(self, name: str, value: str) -> None:
+        self.session.place[name] = value
+        self.where.summary = plain(str(self.folder))
 
     def _save(self) -> None:
         from planner.papers import make_papers
@@ -114,7 +130,7 @@ class PapersScreen(Screen):
         if plan is None:
             self.saved.text = "The plan is being worked out; try again in a moment."
             return
-        folder = Path(self.folder.input.text.strip()).expanduser()
+        folder = self.folder
         try:
             folder.mkdir(parents=True, exist_ok=True)
             for name, content in make_papers(self.session.case, plan).items():
@@ -131,7 +147,7 @@ class PapersScreen(Screen):
         return f"{reference or 'case'} {today():%Y-%m-%d} "
 
     def _open(self) -> None:
-        folder = Path(self.folder.input.text.strip()).expanduser()
+        folder = self.folder
         if not folder.is_dir():
             self.saved.text = "Save the papers first."
             return
@@ -140,3 +156,12 @@ class PapersScreen(Screen):
             subprocess.Popen([*opener, str(folder)], stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL)
         except OSError:
             self.saved.text = plain(f"This system has no way to open folders; the papers are in {folder}.")
+
+
+def _place(name: str) -> Path:
+    places = {
+        "documents": platformdirs.user_documents_dir,
+        "downloads": platformdirs.user_downloads_dir,
+        "home": lambda: str(Path.home()),
+    }
+    return Path(places[name]())

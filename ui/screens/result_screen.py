@@ -67,7 +67,7 @@ class ResultScreen(Screen):
         if not timeline.parts:
             self.show_nothing()
             return
-        minute = self.session.place.get("minute", 0.0) if again else self.ribbon.plot.minute
+        minute = self.ribbon.plot.minute
         index = next(
             (i for i, span in enumerate(timeline.parts) if minute < span.start_min + span.duration_min),
             len(timeline.parts) - 1,
