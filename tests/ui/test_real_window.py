@@ -91,7 +91,8 @@ def test_a_new_case_is_begun_by_mouse_filled_by_keys_and_found_again(display, tm
     folder = tmp_path / "kept"
     command = [sys.executable, "-m", "ui", "--data", str(folder)]
     window = Window(display, tmp_path)
-    app = subprocess.Popen(command, cwd=ROOT, env=environment, stderr=subprocess.DEVNULL)
+    said = open(tmp_path / "said", "w+")  # noqa: SIM115
+    app = subprocess.Popen(command, cwd=ROOT, env=environment, stderr=said)
     try:
         first = window.until(has_primary_button)
         window.click(195, middle_of_lowest_button(first))
@@ -106,6 +107,9 @@ def test_a_new_case_is_begun_by_mouse_filled_by_keys_and_found_again(display, tm
     finally:
         app.kill()  # as a battery that runs out
         app.wait(10)
+    said.seek(0)
+    assert "Traceback" not in said.read()
+    said.close()
     with CaseStore(folder / "cases.db") as store:
         (entry,) = store.entries()
         assert entry.diagnosis == "copd"
