@@ -6,7 +6,7 @@ take no part in the verdict. Every number here is for air; delivery adds oxygen.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from math import erf, sqrt
 from typing import Literal
@@ -92,35 +92,80 @@ def forecast(
     spans: Sequence[PartSpan], baseline: Baseline, fitted: FittedLung | None, policy: Policy
 ) -> tuple[PartForecast, ...]:
     """The forecast of every part whose air is known, at its worst moment."""
-    return tuple(_part(span, baseline, fitted, policy) for span in spans if span.lowest_barometric_mmhg is not None)
+    known = [span for span in spans if span.lowest_barometric_mmhg is not None]
+    blood = {} if fitted is None else _blood_of(known, fitted)
+    return tuple(_part(span, baseline, fitted, blood, policy) for span in known)
 
 
-def _part(span: PartSpan, baseline: Baseline, fitted: FittedLung | None, policy: Policy) -> PartForecast:
-    wanted: list[Activity] = ["rest", *(name for name in ("walking", "asleep") if span.shares[name] > 0.0)]
-    activities = tuple(_activity(span, name, baseline, fitted, policy) for name in wanted)
+@dataclass(frozen=True, eq=False)
+class _Blood:
+    """The draws of one activity in one part."""
+
+    po2_mmhg: Array
+    saturation: Array
+    paco2_mmhg: Array
+    below_range: bool
+
+
+def _activities(span: PartSpan) -> list[Activity]:
+    return ["rest", *(name for name in ("walking", "asleep") if span.shares[name] > 0.0)]
+
+
+def _blood_of(spans: Sequence[PartSpan], fitted: FittedLung) -> dict[tuple[str, Activity], _Blood]:
+    """Arterial blood of every part and activity, one call of the lung for each activity."""
+    found: dict[tuple[str, Activity], _Blood] = {}
+    for activity in ("rest", "walking", "asleep"):
+        here = [span for span in spans if activity in _activities(span)]
+        if not here:
+            continue
+        blood = fitted.arterial(
+            np.array([span.lowest_inspired_po2_mmhg for span in here], dtype=np.float64),
+            np.array([span.lowest_barometric_mmhg for span in here], dtype=np.float64),
+            activity=activity,
+            hours_at_altitude=np.array(
+                [span.hours_at_altitude if span.altitude_kind == "ground" else 0.0 for span in here]
+            ),
+        )
+        for column, span in enumerate(here):
+            found[span.part_id, activity] = _Blood(
+                blood.po2_mmhg[:, column],
+                blood.saturation[:, column],
+                blood.paco2_mmhg[:, column],
+                bool(blood.below_range[column]),
+            )
+    return found
+
+
+def _part(
+    span: PartSpan,
+    baseline: Baseline,
+    fitted: FittedLung | None,
+    blood: Mapping[tuple[str, Activity], _Blood],
+    policy: Policy,
+) -> PartForecast:
+    activities = tuple(
+        _activity(span, name, baseline, fitted, blood.get((span.part_id, name)), policy) for name in _activities(span)
+    )
     why = _why_test(activities, baseline, policy)
     return PartForecast(span.part_id, activities, bool(why), why)
 
 
 def _activity(
-    span: PartSpan, activity: Activity, baseline: Baseline, fitted: FittedLung | None, policy: Policy
+    span: PartSpan,
+    activity: Activity,
+    baseline: Baseline,
+    fitted: FittedLung | None,
+    blood: _Blood | None,
+    policy: Policy,
 ) -> ActivityForecast:
-    assert span.lowest_barometric_mmhg is not None
-    assert span.lowest_inspired_po2_mmhg is not None
     predictors: list[PredictorResult] = []
     po2: Array | None = None
     spo2: Array | None = None
     paco2: Middle | None = None
     below_range = False
-    if fitted is not None:
-        blood = fitted.arterial(
-            span.lowest_inspired_po2_mmhg,
-            span.lowest_barometric_mmhg,
-            activity=activity,
-            hours_at_altitude=span.hours_at_altitude if span.altitude_kind == "ground" else 0.0,
-        )
-        po2, spo2, below_range = blood.po2_mmhg[:, 0], blood.saturation[:, 0], bool(blood.below_range[0])
-        paco2 = _middle(blood.paco2_mmhg[:, 0])
+    if fitted is not None and blood is not None:
+        po2, spo2, below_range = blood.po2_mmhg, blood.saturation, blood.below_range
+        paco2 = _middle(blood.paco2_mmhg)
         predictors.append(_lung_predictor(_middle(po2), fitted, baseline, below_range))
     if activity == "rest":
         measured = challenge_predictor(baseline, span)
