@@ -170,6 +170,10 @@ class Session(EventDispatcher):
             del self._undo[:-UNDO_STEPS]
         self._last_edit = (key, now)
 
+    def show_again(self) -> None:
+        """Ask what is on screen to show the case again: something beside the case has changed."""
+        self.revision += 1
+
     # -- answering
 
     def _show(self, case: Case) -> None:

@@ -101,6 +101,27 @@ def test_oxygen_at_home_asks_for_flows_only_when_it_is_used(new_case):
     assert case(new_case).prescription.walking is None
 
 
+def test_a_flow_is_not_kept_as_a_setting_when_the_device_changes(new_case):
+    driver = new_case
+    driver.app.session.set("prescription.uses_oxygen", True)
+    driver.frames(4)
+    driver.fill(driver.field("On exertion"), "2")
+    driver.tap("By which device")
+    exertion = [w for w in driver.widgets() if getattr(w, "label", "") == "On exertion"][-1]
+    driver.tap(next(chip for chip in exertion.chips if chip.words == "Reservoir cannula"))
+    assert case(driver).prescription.walking.flow_l_min == 2.0
+    exertion = [w for w in driver.widgets() if getattr(w, "label", "") == "On exertion"][-1]
+    driver.tap(next(chip for chip in exertion.chips if chip.value == "pulse_concentrator"))
+    assert case(driver).prescription.walking is None
+    field = driver.field("On exertion")
+    assert (field.input.text, field.unit.text) == ("", "setting")
+    driver.fill(field, "3")
+    line = case(driver).prescription.walking
+    assert (line.device_id, line.flow_l_min, line.setting) == ("pulse_concentrator", None, 3.0)
+    asleep = [w for w in driver.widgets() if getattr(w, "label", "") == "Asleep"][-1]
+    assert all("pulse" not in chip.value for chip in asleep.chips)
+
+
 def test_measurements_are_added_opened_and_removed(new_case):
     driver = new_case
     driver.tap("All measurements")

@@ -6,7 +6,6 @@ from typing import Any
 
 from kivy.uix.boxlayout import BoxLayout
 
-from planner.case.prescription import PrescribedOxygen
 from planner.case.trip import Part
 from ui import measures
 from ui.progress import patient_open
@@ -15,6 +14,7 @@ from ui.screens.measured import Measured, newest
 from ui.screens.patient_cautions import fill_cautions
 from ui.screens.patient_cautions import summary as cautions_summary
 from ui.screens.patient_more import fill_measurements, fill_person, fill_policy, fill_risk
+from ui.screens.prescribed import Prescribed
 from ui.screens.screen import Screen
 from ui.widgets.buttons import PrimaryButton, QuietButton
 from ui.widgets.choices import Choice
@@ -36,7 +36,6 @@ DIAGNOSES = (
     ("other", "Other"),
 )
 HOURS = measures.Measure("h", 2, lambda minutes: minutes / 60, lambda hours: hours * 60)
-FLOW = measures.plain_measure("L/min", 1)
 
 
 class PatientScreen(Screen):
@@ -112,38 +111,9 @@ class PatientScreen(Screen):
         section = Section("3 · Oxygen at home")
         section.add_widget(self.form.choice("prescription.uses_oxygen", ""))
 
-        def signature() -> Any:
-            prescription = self.session.case.prescription
-            lines = (prescription.rest, prescription.walking, prescription.asleep)
-            return prescription.uses_oxygen, tuple(line is not None and line.setting is not None for line in lines)
-
-        section.add_widget(self.form.live(signature, self._fill_flows))
+        prescribed = Prescribed(self.session)
+        section.add_widget(self.form.live(prescribed.signature, prescribed.fill))
         self.put(section)
-
-    def _fill_flows(self, group: Live, form: Form) -> None:
-        if self.session.case.prescription.uses_oxygen is not True:
-            return
-        fields = []
-        for name, label in (("rest", "At rest"), ("walking", "On exertion"), ("asleep", "Asleep")):
-            line = getattr(self.session.case.prescription, name)
-            by_setting = line is not None and line.setting is not None
-            amount = "setting" if by_setting else "flow_l_min"
-            entry = NumberEntry(
-                label, None, measure=measures.plain_measure("pulse setting", 1) if by_setting else FLOW, low=0.1,
-                high=10.0 if by_setting else 15.0, why="Leave empty for none",
-                on_value=lambda value, n=name, a=amount: self._prescribe(n, a, value),
-                on_fault=lambda sentence, n=name: self.session.fault(f"prescription.{n}", sentence),
-            )  # fmt: skip
-            fields.append(
-                form.keep(entry, lambda n=name, a=amount: getattr(self.session.get(f"prescription.{n}"), a, None))
-            )
-        group.add_widget(Side(*fields, least_sp=110))
-
-    def _prescribe(self, name: str, amount: str, value: float | None) -> None:
-        line = self.session.get(f"prescription.{name}")
-        device = line.device_id if line is not None else "cannula"
-        made = None if value is None else PrescribedOxygen(device_id=device, **{amount: value})
-        self.session.set(f"prescription.{name}", made, f"oxygen prescribed, {name}")
 
     def _risk(self) -> None:
         section = Section("4 · Could oxygen raise the carbon dioxide?")
