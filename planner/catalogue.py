@@ -10,6 +10,7 @@ from __future__ import annotations
 import json
 import os
 import tomllib
+from functools import lru_cache
 from importlib import resources
 from importlib.resources.abc import Traversable
 from pathlib import Path
@@ -102,7 +103,9 @@ def _listed(folder: Traversable | Path, prefix: str) -> list[str]:
     return [start + item.name for item in folder.iterdir() if item.name.endswith(_SUFFIXES)]
 
 
+@lru_cache(maxsize=64)
 def _parsed(name: str, text: str) -> dict[str, Any]:
+    """The table of a file's text; parsed once for the same text, so it must not be changed."""
     try:
         table = json.loads(text) if name.endswith(".json") else tomllib.loads(text)
     except (ValueError, RecursionError) as error:

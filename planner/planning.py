@@ -7,7 +7,7 @@ rests on, so that a typed digit redoes only what it touches; the slow one, kit, 
 from __future__ import annotations
 
 from collections.abc import Callable
-from typing import Any, Literal, TypeVar
+from typing import Any, TypeVar
 
 from planner import stages
 from planner.case import Case
@@ -15,11 +15,10 @@ from planner.evidence.baseline import read_baseline
 from planner.evidence.forecast import forecast
 from planner.guidance.cautions import review
 from planner.guidance.hypercapnia import carbon_dioxide_risk
-from planner.results import Plan
+from planner.results import Plan, Through
 from planner.trip.itinerary import lay_out
 
 Result = TypeVar("Result")
-Through = Literal["titration", "kit"]
 DRAWS = 1000
 
 
@@ -51,9 +50,10 @@ def plan(
 ) -> Plan:
     """The plan of a case: the same case always gives the same plan.
 
-    Ages are counted to policy.assessed_on, intervals to the day of travel. through: "titration" leaves out the kit.
-    draws: samples of the fitted lung. Never raises for a valid case: what could not be worked out is said in the plan.
-    Raises kit.programme.Cancelled when cancelled while the kit is worked out.
+    Ages are counted to policy.assessed_on, intervals to the day of travel. through: "titration" leaves out the kit,
+    "forecast" all that comes after the forecast, whose state is then not to be read. draws: samples of the fitted lung.
+    Never raises for a valid case: what could not be worked out is said in the plan. Raises kit.programme.Cancelled when
+    cancelled while the kit is worked out.
     """
     keep = (memory or StageMemory()).keep
     patient, trip, policy = case.patient, case.trip, case.policy
@@ -86,6 +86,11 @@ def plan(
         (case.cautions, case.prescription, case.measurements, timeline, travel),
         lambda: review(case, timeline, travel),
     )
+    if through == "forecast":
+        along = stages.along_on_air(timeline, lung.fitted)
+        return stages.assembled(
+            case, timeline, baseline, lung, forecasts, risk, pathways, cautions, (), (), along, (), None, through
+        )
     dosing = keep(
         "dosing",
         (baseline, lung, case.prescription, case.decisions, policy, risk),
@@ -107,5 +112,18 @@ def plan(
             lambda: stages.kit(case, timeline, on_progress, cancelled),
         )
     return stages.assembled(
-        case, timeline, baseline, lung, forecasts, risk, pathways, cautions, titrations, decided, along, narrowing, kit
+        case,
+        timeline,
+        baseline,
+        lung,
+        forecasts,
+        risk,
+        pathways,
+        cautions,
+        titrations,
+        decided,
+        along,
+        narrowing,
+        kit,
+        through,
     )

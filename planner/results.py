@@ -18,6 +18,7 @@ from planner.lung.fitting import FittedLung, Narrowing
 from planner.trip.itinerary import PartSpan, Timeline
 
 State = Literal["Draft", "Flows decided", "Confirmed"]
+Through = Literal["forecast", "titration", "kit"]
 
 
 @dataclass(frozen=True)
@@ -95,6 +96,7 @@ class Plan:
     narrowing: tuple[Narrowing, ...]
     missing: tuple[Missing, ...]
     trace: tuple[TraceLine, ...]
+    through: Through  # how far it was worked out; what comes after is empty
 
     def part(self, part_id: str) -> PartPlan:
         """The part with this id; KeyError if the trip has none."""

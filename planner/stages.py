@@ -29,7 +29,7 @@ from planner.lung import fitting
 from planner.lung.fitting import FittedLung, Narrowing, fit_lung, narrowing
 from planner.lung.subset import thinned
 from planner.plan_state import missing_entries, plan_state
-from planner.results import Along, DecidedOxygen, PartPlan, Plan
+from planner.results import Along, DecidedOxygen, PartPlan, Plan, Through
 from planner.trace import trace_lines
 from planner.trip.itinerary import PartSpan, Timeline
 
@@ -204,6 +204,13 @@ def _decided(decision: Decision, condition: Condition | None, needs: Dosing, dig
     )
 
 
+def along_on_air(timeline: Timeline, lung: FittedLung | None) -> Along:
+    """Blood at rest over the trip on air alone."""
+    if lung is None or not timeline.parts:
+        return Along(None, None)
+    return Along(blood_along(thinned(lung, TITRATION_DRAWS), timeline), None)
+
+
 def along(case: Case, timeline: Timeline, needs: Dosing) -> Along:
     """Blood at rest over the trip, on air and with the oxygen decided for rest."""
     if needs.fitted is None or needs.spread is None or not timeline.parts:
@@ -262,6 +269,7 @@ def assembled(
     along_trip: Along,
     narrower: tuple[Narrowing, ...],
     kit_plan: KitPlan | None,
+    through: Through,
 ) -> Plan:
     """The plan, gathered by part, with its state and its trace."""
     by_part = {one.part_id: one for one in forecasts}
@@ -292,4 +300,5 @@ def assembled(
         narrowing=narrower,
         missing=missing_entries(case, timeline, baseline, pathways, risk),
         trace=trace_lines(case, timeline, baseline, lung.fitted, pathways),
+        through=through,
     )

@@ -99,11 +99,13 @@ def forecast(
 
 @dataclass(frozen=True, eq=False)
 class _Blood:
-    """The draws of one activity in one part."""
+    """One activity in one part: its draws, and their middles."""
 
     po2_mmhg: Array
     saturation: Array
-    paco2_mmhg: Array
+    po2: Middle
+    spo2: Middle
+    paco2: Middle
     below_range: bool
 
 
@@ -126,11 +128,14 @@ def _blood_of(spans: Sequence[PartSpan], fitted: FittedLung) -> dict[tuple[str, 
                 [span.hours_at_altitude if span.altitude_kind == "ground" else 0.0 for span in here]
             ),
         )
+        po2, spo2, paco2 = (_middles(one) for one in (blood.po2_mmhg, blood.saturation, blood.paco2_mmhg))
         for column, span in enumerate(here):
             found[span.part_id, activity] = _Blood(
                 blood.po2_mmhg[:, column],
                 blood.saturation[:, column],
-                blood.paco2_mmhg[:, column],
+                po2[column],
+                spo2[column],
+                paco2[column],
                 bool(blood.below_range[column]),
             )
     return found
@@ -159,14 +164,8 @@ def _activity(
     policy: Policy,
 ) -> ActivityForecast:
     predictors: list[PredictorResult] = []
-    po2: Array | None = None
-    spo2: Array | None = None
-    paco2: Middle | None = None
-    below_range = False
     if fitted is not None and blood is not None:
-        po2, spo2, below_range = blood.po2_mmhg, blood.saturation, blood.below_range
-        paco2 = _middle(blood.paco2_mmhg)
-        predictors.append(_lung_predictor(_middle(po2), fitted, baseline, below_range))
+        predictors.append(_lung_predictor(blood.po2, fitted, baseline, blood.below_range))
     if activity == "rest":
         measured = challenge_predictor(baseline, span)
         predictors += [] if measured is None else [measured]
@@ -174,23 +173,27 @@ def _activity(
         predictors.append(_ratio(span, baseline))
     applying = [one for one in predictors if one.applies]
     thresholds = (policy.lower_threshold_mmhg, policy.upper_threshold_mmhg)
+    draws = None if blood is None else blood.po2_mmhg
     return ActivityForecast(
         activity=activity,
         share=span.shares[activity],
         predictors=tuple(predictors),
-        pao2_mmhg=None if po2 is None else _middle(po2),
-        spo2=None if spo2 is None else _middle(spo2),
-        paco2_mmhg=paco2,
-        against=tuple(_against(threshold, applying, po2) for threshold in thresholds) if applying else (),
-        spo2_chance_below=None if spo2 is None else float(np.mean(spo2 < policy.spo2_threshold_percent / 100.0)),
+        pao2_mmhg=None if blood is None else blood.po2,
+        spo2=None if blood is None else blood.spo2,
+        paco2_mmhg=None if blood is None else blood.paco2,
+        against=tuple(_against(threshold, applying, draws) for threshold in thresholds) if applying else (),
+        spo2_chance_below=None
+        if blood is None
+        else float(np.mean(blood.saturation < policy.spo2_threshold_percent / 100.0)),
         agreement=_agreement(applying, policy.lower_threshold_mmhg),
-        below_model_range=below_range,
+        below_model_range=blood is not None and blood.below_range,
     )
 
 
-def _middle(values: Array) -> Middle:
-    low, median, high = np.quantile(values, (LOW, 0.5, HIGH))
-    return Middle(float(median), float(low), float(high))
+def _middles(values: Array) -> list[Middle]:
+    """Median and spread of each column of draws."""
+    low, median, high = np.quantile(values, (LOW, 0.5, HIGH), axis=0).tolist()
+    return [Middle(*one) for one in zip(median, low, high, strict=True)]
 
 
 def _lung_predictor(blood: Middle, fitted: FittedLung, baseline: Baseline, below_range: bool) -> PredictorResult:
