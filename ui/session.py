@@ -29,6 +29,7 @@ class Session(EventDispatcher):
 
     case = ObjectProperty(None, allownone=True)
     plan = ObjectProperty(None, allownone=True)
+    preview = ObjectProperty(None, allownone=True)  # a quick forecast of this case while the plan is stale
     revision = NumericProperty(0)
     stale = BooleanProperty(False)
     working_on = StringProperty("")  # what the worker does now, a sentence, empty when idle
@@ -181,6 +182,7 @@ class Session(EventDispatcher):
         self.said = ""
         if self._worker is not None:
             self.stale = True
+            self.preview = None
             self._worker.ask(case)
         self.revision += 1
 
@@ -191,7 +193,10 @@ class Session(EventDispatcher):
         if fault:
             self.said = fault
             return
-        if plan is not None:
+        if plan is not None and plan.through == "forecast":
+            self.preview = plan
+        elif plan is not None:
+            self.preview = None
             self.stale = False
             self.plan = plan
 

@@ -39,7 +39,7 @@ class Shell(BoxLayout):
         self._show_again = Clock.create_trigger(self._show, -1)
         paint_ground(self, theme.ground)
         self._build()
-        names = ("revision", "plan", "stale", "said", "working_on")
+        names = ("revision", "plan", "preview", "stale", "said", "working_on")
         self._bindings = {name: lambda *_: self._show_again() for name in names}
         session.bind(**self._bindings)
 

@@ -10,18 +10,21 @@ from kivy.clock import Clock
 
 from planner.errors import PlannerError
 
+QUICK_DRAWS = 200  # a first answer while a digit is typed; the refined one follows at once
 Planner = Callable[..., Any]  # planner.plan: (case, *, memory, through, on_progress, cancelled) -> Plan
 Load = Callable[[], tuple[Planner, Any]]  # planner and its memory; called in the thread, so that it may import
 Deliver = Callable[[Any, Any, str, str], None]  # case, plan or None, what is being done, fault
 
 
 class PlanWorker:
-    """One thread that answers the last case asked for: first through titration, then with the kit."""
+    """One thread that answers the last case asked for: the forecast from few draws, then all through titration, then
+    with the kit."""
 
     def __init__(self, load: Load, deliver: Deliver) -> None:
         self._load, self._deliver = load, deliver
         self._planner: Planner | None = None  # with its memory of stages: only the thread touches them
         self._memory: Any = None
+        self._quick_memory: Any = None
         self._wanted: Any = None
         self._turn = 0
         self._changed = threading.Condition()
@@ -49,16 +52,18 @@ class PlanWorker:
 
     def _run(self) -> None:
         self._planner, self._memory = self._load()
+        self._quick_memory = type(self._memory)() if self._memory is not None else None
         while True:
             with self._changed:
                 while self._wanted is None:
                     self._changed.wait()
                 case, turn = self._wanted, self._turn
                 self._wanted = None
-            if self._work(case, turn, "titration"):
-                self._work(case, turn, "kit")
+            quick = self._work(case, turn, "forecast", self._quick_memory, draws=QUICK_DRAWS)
+            if quick and self._work(case, turn, "titration", self._memory):
+                self._work(case, turn, "kit", self._memory)
 
-    def _work(self, case: Any, turn: int, through: str) -> bool:
+    def _work(self, case: Any, turn: int, through: str, memory: Any, **keywords: Any) -> bool:
         def given_up() -> bool:
             return self._turn != turn
 
@@ -69,7 +74,9 @@ class PlanWorker:
             return False
         try:
             assert self._planner is not None
-            plan = self._planner(case, memory=self._memory, through=through, on_progress=progress, cancelled=given_up)
+            plan = self._planner(
+                case, memory=memory, through=through, on_progress=progress, cancelled=given_up, **keywords
+            )
         except (
             Exception
         ) as error:  # shown to the person: a worker that dies in silence would leave old numbers standing

@@ -9,6 +9,7 @@ from planner.charts.ribbon import Layer, Reading
 from ui import measures
 from ui.screens.guidance import GuidanceFolds
 from ui.screens.result_screen import ResultScreen
+from ui.screens.screen import GREY
 from ui.screens.trip_ribbon import value_at
 from ui.widgets.buttons import PlainButton, PrimaryButton
 from ui.widgets.notices import Notice
@@ -48,10 +49,24 @@ class ForecastScreen(ResultScreen):
         self.put(self.test, self.guidance, self.worked_out)
         self.put(PrimaryButton("On to the oxygen", lambda: self.go("oxygen")))
 
+    @property
+    def answer(self) -> Any:
+        """The quick forecast of what is being typed, until the plan follows."""
+        return self.session.preview or self.session.plan
+
+    @property
+    def _current(self) -> bool:
+        return not self.session.stale or self.session.preview is not None
+
+    def grey(self, *widgets: Any) -> None:
+        """Grey only while there is not even a quick forecast."""
+        for widget in widgets:
+            widget.opacity = 1.0 if self._current else GREY
+
     def layer(self) -> Layer | None:
         """SpO2 at rest on air with its spread and the threshold."""
-        plan = self.session.plan
-        if plan is None or plan.along.air is None or self.session.stale:
+        plan = self.answer
+        if plan is None or plan.along.air is None or not self._current:
             return None
         air, threshold = plan.along.air, self.session.case.policy.spo2_threshold_percent
         return Layer(
@@ -83,7 +98,8 @@ class ForecastScreen(ResultScreen):
         if rest is None:
             self.chart.height = 0
         self._show_others(forecast)
-        self.narrow.text = self._narrowing(plan)
+        if plan.through != "forecast":
+            self.narrow.text = self._narrowing(plan)
         self._show_notes(plan, forecast)
         self.guidance.show_plan(plan)
         if self.worked_out.open:
@@ -96,7 +112,7 @@ class ForecastScreen(ResultScreen):
         if rest is None:
             return "The air of this part is not known; enter its altitude on the step Trip."
         if not rest.against:
-            return plain(self.session.plan.lung_refusal or "No method applies to this part.")
+            return plain(self.answer.lung_refusal or "No method applies to this part.")
         shown = measures.pressure(self.session.case.display.pressure)
         first = rest.against[0]
         sentence = (

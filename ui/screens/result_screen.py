@@ -46,9 +46,14 @@ class ResultScreen(Screen):
         """Show that there is no plan."""
 
     @property
+    def answer(self) -> Any:
+        """The plan to show."""
+        return self.session.plan
+
+    @property
     def part(self) -> Any:
         """The PartPlan under the finger, or None."""
-        plan = self.session.plan
+        plan = self.answer
         if plan is None or not plan.parts:
             return None
         return plan.parts[min(max(self.part_index, 0), len(plan.parts) - 1)]
@@ -75,7 +80,7 @@ class ResultScreen(Screen):
         if index == self.part_index and not again:
             return
         self.part_index = index
-        plan = self.session.plan
+        plan = self.answer
         seen = (plan, index, self.session.case.display, self.session.stale)
         if plan is None or len(plan.parts) != len(timeline.parts):
             self.show_nothing()
