@@ -132,6 +132,7 @@ def test_a_gas_of_66_kpa_is_asked_about_and_may_be_kept(bench):
     driver, _, got = gas(bench, "kPa")
     driver.fill(driver.field("PaO2"), "66")
     assert driver.reads("Was 66 mmHg meant?")
+    assert got[-1] is None  # nothing is taken until the question is answered
     driver.tap("No, 66 kPa is right")
     assert not driver.reads("meant?")
     assert got[-1] == pytest.approx(495.04, abs=0.01)

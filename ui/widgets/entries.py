@@ -149,8 +149,8 @@ class NumberEntry(Entry):
         self.measure = measure or plain_measure("")
         self.low, self.high, self.usual, self.value = low, high, usual, value
         self.why, self._also = why, also
-        super().__init__(label, NumberLine(), unit=self.measure.unit, **keywords)
         self._question: BoxLayout | None = None
+        super().__init__(label, NumberLine(), unit=self.measure.unit, **keywords)
         self._agreed: float | None = None
         self.input.bind(on_refused=self._refused)
         self.show(value)
@@ -167,6 +167,7 @@ class NumberEntry(Entry):
         same = value is not None and typed is not None and abs(self.measure.stored(typed) - value) < 1e-9
         if not same and not (value is None and not self.input.text):
             self._put("" if value is None else self.measure.typed(value))
+            self._drop_question()
             self._say_fault("")
         self._say_hint()
 
@@ -202,15 +203,19 @@ class NumberEntry(Entry):
             )
             return
         stored = self.measure.stored(number)
+        meant = self._meant_in_other_unit(number)
         if not self._allowed(stored):
             sentence = f"{self._range_text()} can be used here; {text.strip()} {self.measure.unit} was typed."
             begins = self.low is not None and 0 <= stored < self.low and self.measure.other is None
             (self.hold if begins else self.refuse)(sentence)
-            self._ask(number, inside=False)
-            return
-        self._accept(stored)
-        self._ask(number, inside=True)
-        self._say_hint()
+            if meant is not None:
+                self._ask(number, meant, may_be_right=False)
+        elif meant is not None and self._agreed != number:
+            self.refuse(f"{number:g} {self.measure.unit} is not taken until you say which unit is meant.")
+            self._ask(number, meant, may_be_right=True)
+        else:
+            self._accept(stored)
+            self._say_hint()
 
     def _allowed(self, stored: float) -> bool:
         # half a unit in the last shown place: the range as shown may be typed
@@ -219,25 +224,25 @@ class NumberEntry(Entry):
         too_high = self.high is not None and stored > self.high and stored - self.high > slack
         return not too_low and not too_high
 
-    def _ask(self, number: float, *, inside: bool) -> None:
+    def _meant_in_other_unit(self, number: float) -> float | None:
+        """What the number would be in the unit it may have been meant in, where only that is usual."""
         other = self.measure.other
-        if other is None or self._agreed == number:
-            return
         low, high = self.usual or (self.low, self.high)
-        if low is None or high is None or low <= self.measure.stored(number) <= high:
-            return
+        if other is None or low is None or high is None or low <= self.measure.stored(number) <= high:
+            return None
         meant = other.stored(number)
-        if not low <= meant <= high:
-            return
-        words = f"{number:g} {self.measure.unit} is unusual here. Was {number:g} {other.unit} meant?"
+        return meant if low <= meant <= high else None
+
+    def _ask(self, number: float, meant: float, *, may_be_right: bool) -> None:
+        unit = self.measure.other.unit if self.measure.other is not None else ""
+        here, other = f"{number:g} {self.measure.unit}", f"{number:g} {unit}"
         self._question = BoxLayout(orientation="vertical", size_hint_y=None, height=0, spacing=space(1))
         self._question.bind(minimum_height=self._question.setter("height"))
+        words = f"{here} is unusual here. Was {other} meant?"
         self._question.add_widget(Text(words, role="label", tone="caution"))
-        self._question.add_widget(PlainButton(f"Yes, {number:g} {other.unit}", lambda: self._take_other(meant)))
-        if inside:
-            self._question.add_widget(
-                PlainButton(f"No, {number:g} {self.measure.unit} is right", lambda: self._keep(number))
-            )
+        self._question.add_widget(PlainButton(f"Yes, {other}", lambda: self._take_other(meant)))
+        if may_be_right:
+            self._question.add_widget(PlainButton(f"No, {here} is right", lambda: self._keep(number)))
         self.add_widget(self._question)
 
     def _take_other(self, stored: float) -> None:
@@ -249,6 +254,8 @@ class NumberEntry(Entry):
     def _keep(self, number: float) -> None:
         self._agreed = number
         self._drop_question()
+        self._accept(self.measure.stored(number))
+        self._say_hint()
 
     def _drop_question(self) -> None:
         if self._question is not None:
