@@ -79,6 +79,20 @@ def test_every_screen_of_an_empty_case_is_whole(answered):
     assert faults_of_all_screens(answered(390, 844, 1.5, demo=False), 1.5) == {}
 
 
+@pytest.mark.parametrize("scale", [1.0, 1.5])
+def test_a_step_with_faults_and_a_question_is_whole(opened, scale):
+    driver = opened((320, 568), scale)
+    driver.app.cases.open_demo()
+    driver.frames(4)
+    driver.fill(driver.field("Carbon dioxide, PaCO₂"), "99")
+    driver.fill(driver.field("Taken on"), "31 Feb 2026")
+    driver.fill(driver.field("Oxygen, PaO₂"), "66")
+    driver.bring(driver.says("Yes, 66 mmHg"))
+    found = checks.all_faults(driver)
+    assert found == {}
+    assert driver.reads("31 Feb 2026 is not a day of the calendar.")
+
+
 @pytest.mark.parametrize(("width", "height", "scale"), [(390, 844, 1.0), (320, 568, 1.5), (1180, 820, 1.0)])
 def test_the_list_of_cases_is_whole(opened, width, height, scale):
     driver = opened((width, height), scale)
