@@ -186,14 +186,14 @@ class Session(EventDispatcher):
             self._worker.ask(case)
         self.revision += 1
 
-    def _planned(self, case: Case, plan: Any, working_on: str, fault: str) -> None:
+    def _planned(self, case: Case, plan: Any, through: str, working_on: str, fault: str) -> None:
         if case is not self.case:
             return
         self.working_on = working_on
         if fault:
             self.said = fault
             return
-        if plan is not None and plan.through == "forecast":
+        if plan is not None and through == "forecast":
             self.preview = plan
         elif plan is not None:
             self.preview = None

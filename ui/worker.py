@@ -13,7 +13,7 @@ from planner.errors import PlannerError
 QUICK_DRAWS = 200  # a first answer while a digit is typed; the refined one follows at once
 Planner = Callable[..., Any]  # planner.plan: (case, *, memory, through, on_progress, cancelled) -> Plan
 Load = Callable[[], tuple[Planner, Any]]  # planner and its memory; called in the thread, so that it may import
-Deliver = Callable[[Any, Any, str, str], None]  # case, plan or None, what is being done, fault
+Deliver = Callable[[Any, Any, str, str, str], None]  # case, plan or None, how far it goes, what is done now, fault
 
 
 class PlanWorker:
@@ -68,7 +68,7 @@ class PlanWorker:
             return self._turn != turn
 
         def progress(what: str, share: float) -> None:
-            self._say(case, None, f"{what}, {share * 100:.0f} %", "")
+            self._say(case, None, through, f"{what}, {share * 100:.0f} %", "")
 
         if given_up():
             return False
@@ -81,15 +81,15 @@ class PlanWorker:
             Exception
         ) as error:  # shown to the person: a worker that dies in silence would leave old numbers standing
             if not given_up():
-                self._say(case, None, "", f"The plan could not be worked out: {error}")
+                self._say(case, None, through, "", f"The plan could not be worked out: {error}")
             return False
         if given_up():
             return False
-        self._say(case, plan, "Working out what to carry" if through == "titration" else "", "")
+        self._say(case, plan, through, "Working out what to carry" if through == "titration" else "", "")
         return True
 
-    def _say(self, case: Any, plan: Any, working_on: str, fault: str) -> None:
-        Clock.schedule_once(lambda _dt: self._deliver(case, plan, working_on, fault), 0)
+    def _say(self, case: Any, plan: Any, through: str, working_on: str, fault: str) -> None:
+        Clock.schedule_once(lambda _dt: self._deliver(case, plan, through, working_on, fault), 0)
 
 
 def away(work: Callable[[], Any], done: Callable[[Any, PlannerError | None], None]) -> None:

@@ -184,7 +184,7 @@ def test_a_store_that_refuses_is_said_and_asked_again():
 def test_a_plan_that_arrives_after_the_next_edit_is_dropped(session):
     asked = session.case
     session.set("patient.age_years", 50.0)
-    session._planned(asked, "a plan of the case before", "", "")
+    session._planned(asked, "a plan of the case before", "kit", "", "")
     assert session.plan is None
-    session._planned(session.case, "a plan of this case", "", "")
+    session._planned(session.case, "a plan of this case", "kit", "", "")
     assert session.plan == "a plan of this case"
