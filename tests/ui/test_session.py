@@ -188,3 +188,27 @@ def test_a_plan_that_arrives_after_the_next_edit_is_dropped(session):
     assert session.plan is None
     session._planned(session.case, "a plan of this case", "kit", "", "")
     assert session.plan == "a plan of this case"
+
+
+def test_a_quick_forecast_is_a_preview_and_never_the_plan():
+    from ui.session import Session
+
+    gate = threading.Event()
+
+    def planner(case, *, through, **_):
+        if through != "forecast":
+            gate.wait(5)
+        return f"answer through {through}"
+
+    session = Session(load_planner=lambda: (planner, None))
+    session.open(Case(), "a")
+    run(20)
+    assert session.preview == "answer through forecast"
+    assert session.stale
+    assert session.shown_plan is None
+    gate.set()
+    run()
+    assert session.preview is None
+    assert session.shown_plan == "answer through kit"
+    session.set("patient.age_years", 50.0)
+    assert session.preview is None
