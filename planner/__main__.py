@@ -6,6 +6,7 @@ Exit status: 0 done; 1 something in a batch failed; 2 bad input, with a sentence
 from __future__ import annotations
 
 import argparse
+import os
 import sys
 from collections.abc import Sequence
 from pathlib import Path
@@ -16,6 +17,7 @@ from planner.errors import PlannerError
 if TYPE_CHECKING:
     from planner.case import Case
 
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # the arrays are small: a second thread only costs; before numpy loads
 DEMO_NAMES = ("copd_layover", "fibrosis_mountain_hotel", "neuromuscular_car_and_plane")
 
 
