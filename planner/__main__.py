@@ -17,7 +17,7 @@ from planner.errors import PlannerError
 if TYPE_CHECKING:
     from planner.case import Case
 
-os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # the arrays are small: a second thread only costs; before numpy loads
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # small arrays: more threads only cost; set before numpy loads
 DEMO_NAMES = ("copd_layover", "fibrosis_mountain_hotel", "neuromuscular_car_and_plane")
 
 

@@ -9,7 +9,7 @@ import sys
 from collections.abc import Sequence
 from pathlib import Path
 
-os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # the arrays are small: a second thread only costs; before numpy loads
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # small arrays: more threads only cost; set before numpy loads
 NO_DISPLAY = 3
 SIZE = (390, 844)
 
