@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, field, replace
 from functools import cached_property
 
@@ -28,6 +29,7 @@ MOST_DEPRESSION = 0.4
 LOWEST_PCO2_MMHG, HIGHEST_PCO2_MMHG = 12.0, 120.0
 LOWEST_PCO2_SHARE, PCO2_MARGIN_MMHG = 0.6, 4.0  # how far from that at rest the tables reach
 LEAST_MMHG = 25.0  # an arterial PO2 below is "below model range"
+LOG_SD_SNAP, SHUNT_SNAP, PCO2_SNAP_MMHG = 0.4, 0.05, 4.0
 BLOCK = 125  # draws worked together; their arrays stay in the processor's cache
 WALKING_STRAIN = 2.0  # of the share that diffusion takes: 19 % of the gradient at rest, 40 % on exercise (Agusti 1991)
 CURVE_POINTS = 16
@@ -164,15 +166,16 @@ class FittedLung:
                     oxygen_uptake_l_min=body.oxygen_uptake_l_min * ventilation.WALKING_UPTAKE_FACTOR,
                     cardiac_output_l_min=body.cardiac_output_l_min * ventilation.WALKING_OUTPUT_FACTOR,
                 )
+            # Spans are rounded outwards, so that the solved tables stay the same while a digit is typed.
             lowest = max(LOWEST_PCO2_SHARE * float(self.paco2_mmhg.min()), LOWEST_PCO2_MMHG)
             highest = float(self.paco2_mmhg.max()) + PCO2_MARGIN_MMHG + rise
             if depressed:
                 highest /= 1.0 - MOST_DEPRESSION
             self._solved[walking, depressed] = SolvedLungs(
                 body,
-                (float(self.log_sd.min()), min(worse * float(self.log_sd.max()), HIGHEST_LOG_SD)),
-                (float(self.shunt.min()), float(self.shunt.max())),
-                (lowest, min(highest, HIGHEST_PCO2_MMHG)),
+                _outwards(float(self.log_sd.min()), worse * float(self.log_sd.max()), LOG_SD_SNAP, HIGHEST_LOG_SD),
+                (0.0, _outwards(0.0, float(self.shunt.max()), SHUNT_SNAP)[1]),
+                _outwards(lowest, highest, PCO2_SNAP_MMHG, HIGHEST_PCO2_MMHG),
             )
         return self._solved[walking, depressed]
 
@@ -227,6 +230,11 @@ class FittedLung:
             nearest = np.min([np.abs(model_distance(anchor, inspired)) for anchor in self.anchors_mmhg], axis=0)
             error = error + ANCHORED_SHARE * STRUCTURAL_SD_MMHG * self.anchored_z[rows, None] * nearest
         return error
+
+
+def _outwards(least: float, most: float, step: float, limit: float = math.inf) -> tuple[float, float]:
+    """A span rounded outwards to whole steps, up to the limit."""
+    return step * math.floor(least / step), min(step * math.ceil(most / step), limit)
 
 
 def model_distance(base_inspired_mmhg: float, inspired_mmhg: FloatOrArray) -> FloatOrArray:

@@ -57,6 +57,7 @@ LOG_SD_PRIOR = (0.8, 0.45)
 PACO2_PRIOR_MMHG = (39.5, 3.5)
 PACO2_BOUNDED_PRIOR_MMHG = (46.0, 6.0)
 PACO2_BETWEEN = 2.0  # a second reading's PaCO2 counts with this many of its SD: days differ; planning assumption
+BASE_EXCESS_DECIMALS = 1  # finer changes saturation by less than 0.05 points, and solved tables stay while typing
 EXPECTED_FALL_MMHG = 1.8  # mean of the published falls of PaCO2, sea level to about 8000 ft; see ventilation
 
 NARROWING_DRAWS = 400
@@ -284,7 +285,8 @@ def _body(ordered: Sequence[LungReading], person: Person) -> Body:
     if gas is None or gas.ph is None or gas.paco2_mmhg is None:
         return Body(haemoglobin, 0.0)
     saturated = gas.spo2_fraction or float(blood.saturation(gas.pao2_mmhg or 70.0, gas.ph, gas.paco2_mmhg))
-    excess = float(blood.base_excess_mmol_l(gas.ph, gas.paco2_mmhg, saturated, haemoglobin))
+    told = float(blood.base_excess_mmol_l(gas.ph, gas.paco2_mmhg, saturated, haemoglobin))
+    excess = round(told, BASE_EXCESS_DECIMALS)
     require_within("ph", "Base excess from pH and PaCO2", excess, -25.0, 30.0, "mmol/L")
     return Body(haemoglobin, excess)
 

@@ -10,7 +10,7 @@ solution: at most 0.35 mmHg on air between 30 and 100 mmHg of arterial PO2, and 
 from __future__ import annotations
 
 from dataclasses import dataclass
-from functools import cached_property
+from functools import cached_property, lru_cache
 
 import numpy as np
 
@@ -229,9 +229,16 @@ class ContentCurve:
 def contents(body: Body, log_sd: Array, shunt: Array, inspired_mmhg: Array, dry_mmhg: Array, pco2_mmhg: Array) -> Array:
     """Standard oxygen content (mL/dL) at the arterial PO2 of the solved lung, over (log SD, shunt, condition...).
 
-    NaN where the model has no answer. The three conditions share one shape.
+    NaN where the model has no answer. The three conditions share one shape. Solved once for the same nodes: while a
+    digit is typed the nodes stay, and only the draws between them move. The result must not be changed.
     """
-    shape = inspired_mmhg.shape
+    grids = (log_sd, shunt, inspired_mmhg, dry_mmhg, pco2_mmhg)
+    return _contents(body, inspired_mmhg.shape, *(np.ascontiguousarray(one).tobytes() for one in grids))
+
+
+@lru_cache(maxsize=24)
+def _contents(body: Body, shape: tuple[int, ...], *grids: bytes) -> Array:
+    log_sd, shunt, inspired_mmhg, dry_mmhg, pco2_mmhg = (np.frombuffer(one) for one in grids)
     grid_sd, grid_shunt, index = np.meshgrid(log_sd, shunt, np.arange(inspired_mmhg.size), indexing="ij")
     solved = exchange(
         inspired_mmhg.reshape(-1)[index],
@@ -249,7 +256,9 @@ def contents(body: Body, log_sd: Array, shunt: Array, inspired_mmhg: Array, dry_
     known = ~solved.below_range
     content = np.full(known.shape, np.nan)
     content[known] = ContentCurve(body.haemoglobin_g_dl).content_ml_dl(solved.po2_mmhg[known])
-    return content.reshape((log_sd.size, shunt.size, *shape))
+    content = content.reshape((log_sd.size, shunt.size, *shape))
+    content.flags.writeable = False
+    return content
 
 
 def _air_fraction(inspired_mmhg: Array) -> Array:

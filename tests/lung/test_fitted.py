@@ -258,3 +258,13 @@ def test_air_that_cannot_be_is_refused_by_name(copd, air, how, field):
     with pytest.raises(InputError) as caught:
         copd.arterial(*air, **how)
     assert caught.value.field == field
+
+
+def test_the_solved_lungs_stay_while_a_digit_is_typed():
+    before, after = (
+        fit_lung([LungReading(760.0, 0.2093, pao2_mmhg=pao2, paco2_mmhg=39.5)], Person("copd")) for pao2 in (69.0, 70.0)
+    )
+    nodes = [one._solved_lungs(False, False) for one in (before, after)]
+    assert np.array_equal(nodes[0].log_sd_nodes, nodes[1].log_sd_nodes)
+    assert np.array_equal(nodes[0].shunt_nodes, nodes[1].shunt_nodes)
+    assert nodes[0].air.content is not None

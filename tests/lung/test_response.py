@@ -6,7 +6,7 @@ import pytest
 from planner.lung import blood
 from planner.lung.draws import Draws
 from planner.lung.gas_exchange import CONVERGED_NODES, exchange
-from planner.lung.response import RESPIRATORY_QUOTIENT, Body, ContentCurve, Response, SolvedLungs
+from planner.lung.response import RESPIRATORY_QUOTIENT, Body, ContentCurve, Response, SolvedLungs, contents
 
 # log SD mean and SD, PaCO2 mean and SD, body: a gas at rest, oximetry alone, severe with carbon dioxide retained,
 # walking.
@@ -99,3 +99,14 @@ def test_content_and_pressure_are_each_others_inverse():
     pressures = np.linspace(1.0, 700.0, 900)
     assert curve.po2_mmhg(curve.content_ml_dl(pressures)) == pytest.approx(pressures, abs=0.02)
     assert curve.po2_mmhg(np.array([-3.0]))[0] == 0.0
+
+
+def test_lungs_solved_at_the_same_nodes_are_solved_once():
+    body = Body(14.5, 0.0)
+    nodes = np.array([0.3, 0.8]), np.array([0.0, 0.1])
+    air = np.array([[100.0]]), np.array([[600.0]]), np.array([[38.0]])
+    first = contents(body, *nodes, *air)
+    assert contents(body, *nodes, *air) is first
+    assert contents(Body(14.5, 3.0), *nodes, *air) is not first
+    with pytest.raises(ValueError, match="read-only"):
+        first[0] = 0.0
