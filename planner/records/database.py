@@ -15,6 +15,8 @@ from planner.records.migrations import SCHEMA, migrate
 
 APPLICATION_ID = 0x4F324341
 BUSY_MS = 5000
+# What reading a damaged file can raise: the library's own errors, and text in the file that is no text any more.
+DAMAGE = (sqlite3.Error, UnicodeError, OverflowError)
 
 
 class Database:
@@ -32,7 +34,7 @@ class Database:
         except OSError as error:
             self._release()
             raise StoreError(f"{path.parent} cannot be used for the cases: {error.strerror}.") from error
-        except sqlite3.Error as error:
+        except DAMAGE as error:
             self._release()
             raise StoreError(f"{path.name} cannot be read: {error}.") from error
         except StoreError:
@@ -43,7 +45,7 @@ class Database:
         """All rows of a reading statement."""
         try:
             return self._db.execute(statement, values).fetchall()
-        except sqlite3.Error as error:
+        except DAMAGE as error:
             raise StoreError(f"{self.path.name} cannot be read: {error}.") from error
 
     def row(self, statement: str, *values: object) -> Any:
