@@ -6,8 +6,12 @@ milliseconds, doses and the ratio. Run: python tests/benchmarks/bench_titration.
 
 from __future__ import annotations
 
+import sys
 import time
 from collections.abc import Callable
+from pathlib import Path
+
+sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
 
 from planner.air.atmosphere import isa_pressure_mmhg
 from planner.delivery.devices import load_devices
