@@ -93,7 +93,7 @@ def plan(
         )
     dosing = keep(
         "dosing",
-        (baseline, lung, case.prescription, case.decisions, policy, risk),
+        (baseline, lung, case.prescription, case.decisions, policy, risk, case.kit.breathing_rate_min),
         lambda: stages.dosing(case, baseline, lung.fitted, risk),
     )
     titrations = keep("titration", (trip, timeline, dosing), lambda: stages.titrated(case, timeline, dosing))

@@ -54,6 +54,7 @@ class Dosing:
     target: Target
     spread: DeliverySpread | None
     notes: tuple[str, ...]
+    breathing_rate_min: float | None  # with a pulse device; None: the usual one of each activity
 
 
 def assessed_on(case: Case) -> date | None:
@@ -106,7 +107,7 @@ def walked(case: Case, baseline: Baseline, risk: CarbonDioxideFinding) -> tuple[
 def dosing(case: Case, baseline: Baseline, lung: FittedLung | None, risk: CarbonDioxideFinding) -> Dosing:
     """Devices, target and delivery of this person; a response on the ground teaches the delivery."""
     known = load_devices()
-    prescription = case.prescription
+    prescription, rate = case.prescription, case.kit.breathing_rate_min
     prescribed = [one.device_id for one in (prescription.rest, prescription.walking, prescription.asleep) if one]
     chosen = [one.device_id for one in case.decisions if one.device_id is not None]
     target = Target(
@@ -116,7 +117,7 @@ def dosing(case: Case, baseline: Baseline, lung: FittedLung | None, risk: Carbon
         carbon_dioxide_risk=risk.level,
     )
     if lung is None:
-        return Dosing(None, shortlist(known, [*chosen, *prescribed]), known, target, None, ())
+        return Dosing(None, shortlist(known, [*chosen, *prescribed]), known, target, None, (), rate)
     lung = thinned(lung, TITRATION_DRAWS)
     spread = usual_spread(lung.log_sd.size)
     notes: list[str] = []
@@ -130,7 +131,7 @@ def dosing(case: Case, baseline: Baseline, lung: FittedLung | None, risk: Carbon
         spread = learn_gain(lung, spread, responses)
     except InputError as error:
         notes.append(error.message)
-    return Dosing(lung, shortlist(known, [*chosen, *prescribed]), known, target, spread, tuple(notes))
+    return Dosing(lung, shortlist(known, [*chosen, *prescribed]), known, target, spread, tuple(notes), rate)
 
 
 def titrated(case: Case, timeline: Timeline, needs: Dosing) -> tuple[Titration, ...]:
@@ -144,7 +145,7 @@ def titrated(case: Case, timeline: Timeline, needs: Dosing) -> tuple[Titration, 
         needs.devices,
         needs.target,
         spread=needs.spread,
-        breathing_rate_min=case.kit.breathing_rate_min,
+        breathing_rate_min=needs.breathing_rate_min,
     )
 
 
@@ -186,7 +187,15 @@ def _decided(decision: Decision, condition: Condition | None, needs: Dosing, dig
     fault = ""
     if needs.fitted is not None and condition is not None and (decision.no_oxygen or device is not None):
         try:
-            expected = with_decision(needs.fitted, condition, device, amount or 0.0, needs.target, spread=needs.spread)
+            expected = with_decision(
+                needs.fitted,
+                condition,
+                device,
+                amount or 0.0,
+                needs.target,
+                spread=needs.spread,
+                breathing_rate_min=needs.breathing_rate_min,
+            )
         except InputError as error:
             fault = error.message
     return DecidedOxygen(
@@ -224,7 +233,7 @@ def along(case: Case, timeline: Timeline, needs: Dosing) -> Along:
             continue
         try:
             rises[one.part_id] = inspired_rise(
-                device, amount, pressure, needs.spread, breathing_rate_min=case.kit.breathing_rate_min
+                device, amount, pressure, needs.spread, breathing_rate_min=needs.breathing_rate_min
             )
         except InputError:
             continue  # decided() says what does not fit

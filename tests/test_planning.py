@@ -27,6 +27,14 @@ def with_gas(case, pao2_mmhg):
     return changed(case, measurements=measured)
 
 
+def with_a_pulse_device(case):
+    decided = json.loads(case.model_dump_json())["decisions"]
+    for one in decided:
+        if (one["part_id"], one["activity"]) == ("flight_1", "rest"):
+            one.update(device_id="pulse_concentrator_fixed_bolus", flow_l_min=None, setting=2.0)
+    return changed(case, decisions=decided)
+
+
 @pytest.fixture(scope="module")
 def copd():
     return plan(demo())
@@ -77,11 +85,35 @@ def test_a_memory_keeps_stages_whose_inputs_did_not_change(copd):
     assert moved.kit is not first.kit
 
 
-def test_a_memory_never_gives_an_old_answer():
-    case, memory = demo(), StageMemory()
+def _as_dict(case):
+    return json.loads(case.model_dump_json())
+
+
+MEMORY_CHANGES = {
+    "a gas": lambda case: with_gas(case, 60.0),
+    "breathing rate": lambda case: changed(case, kit=_as_dict(case)["kit"] | {"breathing_rate_min": 30.0}),
+    "confidence": lambda case: changed(case, policy=_as_dict(case)["policy"] | {"confidence": 0.8}),
+    "cabin": lambda case: changed(case, policy=_as_dict(case)["policy"] | {"planning_cabin_altitude_m": 2000.0}),
+    "day": lambda case: changed(case, policy=_as_dict(case)["policy"] | {"assessed_on": "2027-01-10"}),
+    "age": lambda case: changed(case, patient=_as_dict(case)["patient"] | {"age_years": 80.0}),
+    "no decisions": lambda case: changed(case, decisions=[]),
+    "no oxygen at home": lambda case: changed(case, prescription={"uses_oxygen": False}),
+}
+
+
+@pytest.mark.parametrize("change", MEMORY_CHANGES)
+def test_a_memory_never_gives_an_old_answer(change):
+    case, memory = with_a_pulse_device(demo()), StageMemory()
     plan(case, memory=memory)
-    other = with_gas(case, 60.0)
+    other = MEMORY_CHANGES[change](case)
     assert plan_as_json(plan(other, memory=memory)) == plan_as_json(plan(other))
+
+
+def test_the_breathing_rate_entered_changes_what_pulses_give():
+    case = with_a_pulse_device(demo())
+    faster = changed(case, kit=_as_dict(case)["kit"] | {"breathing_rate_min": 35.0})
+    slow, fast = (plan(one, through="titration").part("flight_1").decided[0].expected for one in (case, faster))
+    assert slow.spo2_median != fast.spo2_median
 
 
 def test_a_changed_measurement_takes_decided_flows_back_to_draft_with_the_reason():

@@ -12,7 +12,7 @@ from datetime import date
 from typing import Literal, TypeVar
 
 from planner.air.atmosphere import station_pressure_mmhg
-from planner.air.inspired import AIR_OXYGEN
+from planner.air.inspired import AIR_OXYGEN, WATER_VAPOUR_MMHG
 from planner.case import Case
 from planner.case.measurements import (
     BloodGas,
@@ -25,6 +25,7 @@ from planner.case.measurements import (
     Place,
     WalkTest,
 )
+from planner.delivery.cannula import GAIN_MEDIAN_MMHG_PER_L_MIN, GAIN_VARIATION, SEA_LEVEL_MMHG
 from planner.errors import InputError
 from planner.lung.blood import saturation
 from planner.lung.reading import LungReading, Person
@@ -37,9 +38,9 @@ AT_ALTITUDE_M = 300.0  # above it a ground value is not a sea-level value; plann
 CONTRADICTION = 0.06  # saturation apart by more than this between oximeter and gas of the same day; planning assumption
 CANNOT_HYPERVENTILATE = {"neuromuscular", "chest_wall", "obesity_hypoventilation"}
 HYPERCAPNIA_MMHG = 45.0  # 6 kPa, the usual definition
-# Spread of the fraction inspired by cannula at one flow between people: 0.237 to 0.349 at 2 L/min, Bazuaye EA et al.,
-# Thorax 1992;47:609, as SD per L/min.
-CANNULA_FRACTION_PER_L_MIN, CANNULA_SPREAD_PER_L_MIN = 0.035, 0.014
+# Fraction of oxygen that a cannula adds at rest, from the gain that titration uses, so that both mean the same breath.
+CANNULA_FRACTION_PER_L_MIN = GAIN_MEDIAN_MMHG_PER_L_MIN / (SEA_LEVEL_MMHG - WATER_VAPOUR_MMHG)
+CANNULA_SPREAD_PER_L_MIN = GAIN_VARIATION * CANNULA_FRACTION_PER_L_MIN
 
 Kind = TypeVar("Kind", bound=Measurement)
 

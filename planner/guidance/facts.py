@@ -76,7 +76,7 @@ def gather_facts(
     facts = {
         "age_years": _number("age_years", age, "Age"),
         "child": Fact(None if age is None else age < CHILD_YEARS, "Age not known" if age is None else f"Age {age:g}"),
-        "diagnosis": Fact(patient.diagnosis, f"Diagnosis group {patient.diagnosis or 'not known'}"),
+        "diagnosis": Fact(patient.diagnosis, f"Diagnosis group: {_diagnosis_words(patient.diagnosis)}"),
         "spo2_percent": _spo2(baseline),
         "pao2_mmhg": _pressure("PaO₂", baseline.pao2_mmhg),
         "fev1_percent": _number("fev1_percent", baseline.fev1_percent, "FEV₁"),
@@ -94,6 +94,12 @@ def gather_facts(
         "exercise_spo2_below_95": _exercise(baseline),
     }
     return facts | _challenge_facts(baseline, case)
+
+
+def _diagnosis_words(diagnosis: str | None) -> str:
+    if diagnosis is None:
+        return "not known"
+    return "COPD" if diagnosis == "copd" else diagnosis.replace("_", " ")
 
 
 def _number(name: str, value: float | None, words: str) -> Fact:

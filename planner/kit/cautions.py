@@ -71,7 +71,9 @@ def kit_cautions(
             )
     if found is not None and found.concentrator and power is not None:
         cautions.append(_batteries(power, batteries))
-        alone = [leg.name for leg, use in zip(legs, found.uses, strict=True) if set(use.hours_by) == {"battery"}]
+        alone = dict.fromkeys(
+            leg.name for leg, use in zip(legs, found.uses, strict=True) if set(use.hours_by) == {"battery"}
+        )
         if alone:
             cautions.append(
                 KitCaution(
@@ -86,6 +88,7 @@ def kit_cautions(
 
 
 def _batteries(power: Power, count: int) -> KitCaution:
+    packs = "1 pack" if count == 1 else f"{count} packs"
     source = "IATA/ICAO rules and 49 CFR 175.10(a)(18) (from memory); 14 CFR 382.133 for 150 %"
     if power.nominal_wh > CONSENT_WH:
         return KitCaution(
@@ -103,7 +106,7 @@ def _batteries(power: Power, count: int) -> KitCaution:
         )
     return KitCaution(
         "Batteries in the cabin.",
-        f"{count} packs of {power.nominal_wh:.0f} Wh, each up to 100 Wh: spares in the cabin only, terminals covered. "
+        f"{packs} of {power.nominal_wh:.0f} Wh, each up to 100 Wh: spares in the cabin only, terminals covered. "
         "US rules ask for charged packs for 150 % of the longest flight.",
         source,
     )

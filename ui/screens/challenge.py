@@ -1,40 +1,27 @@
-"""The hypoxic challenge test: planned for this laboratory, recorded during the test with one hand, and read.
-
-Rows are kept in the case as they are tapped, so nothing is lost when the page is left or the app is stopped. The clock
-runs from the kept start of the test.
-"""
+"""The hypoxic challenge test: planned for this laboratory, recorded, and read."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
-from datetime import UTC, datetime
 from itertools import pairwise
 from typing import Any
 
 import numpy as np
-from kivy.clock import Clock
 from kivy.metrics import sp
 
 from planner.charts.challenge import Phase, lay_challenge
 from ui import measures
 from ui.screens.challenge_gases import GasEntries
+from ui.screens.challenge_live import PHASES, DuringTest
 from ui.screens.form import today
 from ui.screens.screen import Screen
 from ui.theme import theme
 from ui.widgets.buttons import PlainButton, PrimaryButton, QuietButton
-from ui.widgets.choices import Choice
-from ui.widgets.notices import Notice, Section
+from ui.widgets.notices import Notice
 from ui.widgets.ribbon import DrawingView
 from ui.widgets.rows import Fold, ListRow, Side, Stack
-from ui.widgets.text import Text, plain, strong
+from ui.widgets.text import plain, strong
 
-PHASES = (
-    ("before", "Before"),
-    ("challenge", "On the mixture"),
-    ("on_oxygen", "On oxygen"),
-    ("walking", "Walking"),
-    ("recovery", "After"),
-)
 METHODS = (
     ("mask", "Mask"),
     ("venturi_nitrogen", "Venturi mask with nitrogen"),
@@ -49,7 +36,6 @@ TITRATED = (
     ("chamber", "In a chamber"),
     ("other", "Another way"),
 )
-STEPS_PERCENT = (-5, -1, 1, 5)
 CHART_SP = 210
 
 
@@ -66,7 +52,6 @@ class ChallengeScreen(Screen):
         self.body = self.form.live(self._signature, self._fill)
         self.put(self.reading, self.start, self.body)
         self.put(PlainButton("Back to the forecast", lambda: self.go("forecast")))
-        self._tick: Any = None
 
     @property
     def index(self) -> int | None:
@@ -88,7 +73,6 @@ class ChallengeScreen(Screen):
         if test is None:
             return
         self._show_reading(test)
-        self._show_clock()
 
     def escape(self) -> bool:
         """Escape goes back to the forecast."""
@@ -180,31 +164,14 @@ class ChallengeScreen(Screen):
         if self.index is None:
             return
         path = f"measurements.{self.index}"
-        self.path = path
-        self.clock = Text("", role="numeral")
-        self.spo2 = self.session.place.setdefault("challenge_spo2", 95)
-        self.phase = self.session.place.setdefault("challenge_phase", "before")
-        self.value = Text("", role="numeral")
-        buttons = [
-            PrimaryButton(f"{step:+d} %".replace("-", "−"), lambda s=step: self._nudge(s)) for step in STEPS_PERCENT
-        ]
-        during = Section("During the test", note="Each tap of Write keeps a row at the minute of the clock.")
-        for widget in (
-            Side(self.clock, self.value, least_sp=96),
-            Choice("", PHASES, self.phase, self._choose_phase),
-            Side(*buttons, least_sp=70),
-            Side(PrimaryButton("Write SpO₂", self._write_row), PlainButton("Take the last row back", self._drop_row)),
-            PlainButton("Start the clock from 0", self._restart),
-        ):
-            during.add_widget(widget)
-        group.add_widget(during)
+        self.during = DuringTest(self.session, path)
+        group.add_widget(self.during)
         group.add_widget(self.chart)
         group.add_widget(self._rows())
         group.add_widget(GasEntries(self.session, form, path))
         how = "Laboratory, mixture, method"
         group.add_widget(Fold("How it was done", how, lambda body: self._fill_how(body, form, path)))
         group.add_widget(QuietButton("Remove this test", self._remove))
-        self._show_value()
 
     def _fill_how(self, body: Any, form: Any, path: str) -> None:
         display = self.session.case.display
@@ -232,53 +199,15 @@ class ChallengeScreen(Screen):
         rows = Stack(gap=0)
         for row in reversed(self.test.rows[-6:]):
             value = "–" if row.spo2_percent is None else f"{row.spo2_percent:g} %"
-            rows.add_widget(ListRow(f"{row.at_min:.0f} min", names[row.phase], value))
+            detail = [names[row.phase]]
+            if row.flow_l_min is not None:
+                detail.append(f"{row.flow_l_min:g} L/min")
+            if row.heart_rate_min is not None:
+                detail.append(f"heart rate {row.heart_rate_min:g} a minute")
+            if row.symptoms:
+                detail.append(row.symptoms)
+            rows.add_widget(ListRow(f"{row.at_min:.0f} min", plain(", ".join(detail)), value))
         return rows
-
-    def _nudge(self, step: int) -> None:
-        self.spo2 = min(100, max(50, self.spo2 + step))
-        self.session.place["challenge_spo2"] = self.spo2
-        self._show_value()
-
-    def _show_value(self) -> None:
-        self.value.text = strong(f"{self.spo2} %")
-
-    def _choose_phase(self, phase: str) -> None:
-        self.phase = phase
-        self.session.place["challenge_phase"] = phase
-
-    def _minutes(self) -> float:
-        """Minutes of the clock; the start is kept in the case, so that it goes on after the app was stopped."""
-        begun = self.test.started_at
-        if begun is None:
-            return 0.0
-        return float(min(max((datetime.now(UTC) - begun).total_seconds() / 60.0, 0.0), 180.0))
-
-    def _restart(self) -> None:
-        self.session.choose(f"{self.path}.started_at", datetime.now(UTC).replace(microsecond=0), "the clock")
-
-    def _show_clock(self, *_: Any) -> None:
-        minutes = self._minutes()
-        self.clock.text = f"{int(minutes)} min {int(60 * (minutes % 1)):02d} s"
-        if self._tick is None:
-            self._tick = Clock.schedule_interval(self._on_tick, 1.0)
-
-    def _on_tick(self, _dt: float) -> bool:
-        if self.get_parent_window() is None:
-            self._tick = None
-            return False
-        self._show_clock()
-        return True
-
-    def _write_row(self) -> None:
-        from planner.case.measurements import ChallengeRow
-
-        row = ChallengeRow(at_min=round(self._minutes(), 2), phase=self.phase, spo2_percent=float(self.spo2))
-        self.session.choose(f"{self.path}.rows", (*self.test.rows, row), "a row of the test")
-
-    def _drop_row(self) -> None:
-        if self.test.rows:
-            self.session.choose(f"{self.path}.rows", self.test.rows[:-1], "a row of the test")
 
     def _remove(self) -> None:
         kept = tuple(one for i, one in enumerate(self.session.case.measurements) if i != self.index)

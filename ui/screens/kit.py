@@ -153,14 +153,17 @@ class KitScreen(ResultScreen):
 
     def _show_items(self, kit: Any) -> None:
         self.item_rows.clear_widgets()
+        alike: dict[tuple[Any, ...], list[str]] = {}
         for item in kit.items if kit is not None else ():
             mass = f"{item.mass_kg:.1f} kg" if item.each_kg else ""
-            row = ListRow(plain(f"{item.count} × {item.what}"), plain(f"{item.where} · {item.brought_by}"), mass)
-            self.item_rows.add_widget(row)
+            alike.setdefault((f"{item.count} × {item.what}", item.brought_by, mass), []).append(item.where)
+        for (what, brought_by, mass), places in alike.items():
+            self.item_rows.add_widget(ListRow(plain(what), plain(f"{', '.join(places)} · {brought_by}"), mass))
 
     def _show_turn_back(self, kit: Any) -> None:
         self.readings.clear_widgets()
         shown = measures.gauge(self.session.case.display.gauge)
+        alike: dict[tuple[str, str], list[str]] = {}
         for one in kit.turn_back if kit is not None else ():
             values = [f"{name} {shown.with_unit(bar)}" for name, bar in one.gauge_bar]
             if one.battery_percent is not None:
@@ -168,7 +171,9 @@ class KitScreen(ResultScreen):
             detail = f"cylinder at {one.temperature_c:g} °C" if one.gauge_bar else "all packs together"
             if one.fresh_cylinders:
                 detail += f", and {one.fresh_cylinders} full beside it"
-            self.readings.add_widget(ListRow(plain(f"Starting: {one.name}"), detail, ", ".join(values)))
+            alike.setdefault((detail, ", ".join(values)), []).append(one.name)
+        for (detail, value), names in alike.items():
+            self.readings.add_widget(ListRow(plain(f"Starting: {', '.join(dict.fromkeys(names))}"), detail, value))
 
     def _show_cautions(self, kit: Any) -> None:
         self.cautions.clear_widgets()

@@ -248,14 +248,18 @@ def _rule(case: Any, plan: Any) -> tuple[str, str]:
     """The flow of the first pathway that names one, and where it is from."""
     from planner.delivery.target import rule_amount
 
-    usual = case.prescription.rest.flow_l_min if case.prescription.rest is not None else None
+    prescribed = case.prescription
+    usual = prescribed.rest.flow_l_min if prescribed.rest is not None else None
+    if prescribed.uses_oxygen is False:
+        usual = 0.0
     for result in plan.pathways:
         if result.flow_rule is not None:
             amount, _ = rule_amount(result.flow_rule.kind, result.flow_rule.l_min, usual)
             if result.flow_rule.kind == "fixed":
                 return f"{result.flow_rule.l_min:g} L/min", result.title
             shown = f"{amount:g} L/min" if amount is not None else "–"
-            return shown, f"{result.title}: usual + {result.flow_rule.l_min:g} L/min"
+            unknown = "; no usual flow at rest is entered" if usual is None else ""
+            return shown, f"{result.title}: usual + {result.flow_rule.l_min:g} L/min{unknown}"
     return "–", "no pathway names a flow"
 
 
