@@ -17,7 +17,7 @@ SPREAD_TO_SD = 1.645
 def challenge_predictor(baseline: Baseline, span: PartSpan) -> PredictorResult | None:
     """What the challenge test measured, for this part; None where no gas was taken on the mixture.
 
-    It applies where the part's inspired PO2 is that of the test, or higher. For lower air it is greyed.
+    It applies where the part's inspired PO2 is that of the test, within SAME_AIR_MMHG; greyed in thinner or richer air.
     """
     reading = next((one for one in baseline.lung_readings if one.challenge and one.pao2_mmhg is not None), None)
     test = baseline.challenge
