@@ -197,6 +197,21 @@ def test_any_facts_end_in_advice_or_in_a_named_missing_fact(values, pathway_id):
     assert found.status in ("advice", "missing", "not for this person")
 
 
+@pytest.mark.parametrize(
+    ("changes", "kind"),
+    [
+        ({"hypercapnia_risk": True}, "challenge_on_oxygen"),
+        ({"hypercapnia_risk": None}, "challenge_on_oxygen"),
+        ({"hypercapnia_risk": False}, "challenge"),
+        ({"uses_oxygen": True, "hypercapnia_risk": True}, "challenge_on_oxygen"),
+        ({"uses_oxygen": True, "hypercapnia_risk": False}, "oxygen_usual_plus"),
+    ],
+)
+def test_a_fall_on_exertion_does_not_hide_a_carbon_dioxide_risk_or_home_oxygen(changes, kind):
+    person = {"diagnosis": "interstitial", "spo2_percent": 93.0, "exercise_spo2_below_95": True} | changes
+    assert ended("bts_2022_adult", **person).advice.kind == kind
+
+
 LOWER_IS_SICKER = ("spo2_percent", "pao2_mmhg", "fev1_percent", "tlco_percent", "walk_lowest_percent")
 YES_IS_SICKER = ("hypercapnia_risk", "symptoms_on_past_flight", "risk_factor", "exercise_spo2_below_95")
 known = st.fixed_dictionaries(
