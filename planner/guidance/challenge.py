@@ -154,7 +154,8 @@ def _band_text(pao2: float | None, lowest: float | None, below: bool | None, pol
     if lowest is not None:
         seen.append(f"lowest SpO₂ {lowest:g} %")
     side = "below" if below else "not below"
-    return f"{' and '.join(seen)}: {side} {limit}."
+    found = " and ".join(seen)
+    return f"{found[0].upper()}{found[1:]}: {side} {limit}."
 
 
 def _asks(test: Challenge, pao2: float | None, lowest: float | None) -> list[str]:

@@ -54,12 +54,12 @@ class DuringTest(Section):
         for widget in (
             Side(self.clock, self.value, least_sp=96),
             Choice("", PHASES, self.phase, self._choose_phase),
-            Side(*_steps(SPO2_STEPS, "%", self._nudge_spo2), least_sp=70),
             self.oxygen,
+            Side(*_steps(SPO2_STEPS, "%", self._nudge_spo2), least_sp=70),
+            Side(PrimaryButton("Write the row", self.write), PlainButton("Take it back", self._drop)),
             self.heart_value,
             Side(*_steps(HEART_STEPS, "", self._nudge_heart), least_sp=70),
-            Choice("Symptom", SYMPTOMS, self.symptom, self._choose_symptom),
-            Side(PrimaryButton("Write the row", self.write), PlainButton("Take the last row back", self._drop)),
+            Choice("Symptom, kept with the next row", SYMPTOMS, self.symptom, self._choose_symptom),
             PlainButton("Start the clock from 0", self._restart),
         ):
             self.add_widget(widget)

@@ -1,0 +1,197 @@
+"""The second half of the job, by touch and typing in the real app: decide, size, confirm, save, record a test."""
+
+import platformdirs
+import pytest
+
+from tests.ui.driver import Driver
+from ui.app import PlannerApp, load_planner
+from ui.screens import form
+
+
+@pytest.fixture(scope="module")
+def planner():
+    """One planner with one memory: the demo case is worked out once."""
+    loaded = load_planner()
+    return lambda: loaded
+
+
+@pytest.fixture
+def answered(planner, tmp_path, monkeypatch):
+    """The demo case with its whole plan, papers going to a folder of the test."""
+    monkeypatch.setattr(platformdirs, "user_documents_dir", lambda: str(tmp_path / "documents"))
+    driver = Driver(PlannerApp(data_folder=tmp_path / "data", load_planner=planner), (390, 844), 1.0)
+    driver.app.cases.open_demo()
+    settle(driver)
+    yield driver
+    driver.close()
+
+
+def settle(driver):
+    session = driver.app.session
+    driver.until(lambda: session.shown_plan is not None and not session.working_on, frames=20000)
+    driver.frames(6)
+
+
+def go(driver, step):
+    driver.app.shell.go(step)
+    driver.frames(8)
+
+
+def case(driver):
+    return driver.app.session.case
+
+
+def decision(driver, part, activity):
+    return next(one for one in case(driver).decisions if (one.part_id, one.activity) == (part, activity))
+
+
+def at_part(driver, part_id):
+    """Touch the ribbon in the middle of a part."""
+    spans = driver.app.session.timeline.parts
+    span = next(one for one in spans if one.part_id == part_id)
+    driver.app.shell.screen.ribbon.plot.minute = span.start_min + span.duration_min / 2
+    driver.frames(6)
+
+
+def test_a_decision_is_written_with_its_device_its_flow_and_who_decided(answered):
+    go(answered, "oxygen")
+    at_part(answered, "flight_1")
+    answered.tap("3")
+    answered.fill(answered.field("Decided by"), "Dr Example")
+    answered.tap("Write this decision")
+    written = decision(answered, "flight_1", "rest")
+    assert (written.device_id, written.flow_l_min, written.decided_by) == ("cannula", 3.0, "Dr Example")
+    assert written.decided_on == form.today()
+    settle(answered)
+    assert answered.reads("With 3 L/min by nasal cannula SpO₂ would be")
+
+
+def test_a_flow_without_a_name_is_no_decision(answered):
+    go(answered, "oxygen")
+    at_part(answered, "flight_1")
+    before = case(answered).decisions
+    answered.app.shell.screen.decide.by.input.text = ""
+    answered.tap("3")
+    answered.tap("Write this decision")
+    assert answered.reads("Who decided? Enter a name; a flow without one is not a decision.")
+    assert case(answered).decisions == before
+
+
+def test_one_touch_decides_all_flights_alike(answered):
+    go(answered, "oxygen")
+    at_part(answered, "flight_1")
+    answered.fill(answered.field("Decided by"), "Dr Example")
+    answered.tap("2.5")
+    answered.tap("The same for every part of this kind")
+    flights = [one.part_id for one in case(answered).trip.parts if one.kind == "flight"]
+    assert len(flights) == 4
+    assert {decision(answered, part, "rest").flow_l_min for part in flights} == {2.5}
+
+
+def test_a_changed_gas_takes_the_plan_back_to_draft_with_the_reason(answered):
+    gas = next(i for i, one in enumerate(case(answered).measurements) if one.kind == "blood_gas")
+    answered.app.session.set(f"measurements.{gas}.pao2_mmhg", 58.0)
+    assert answered.app.session.stale
+    settle(answered)
+    go(answered, "papers")
+    assert answered.reads("Draft.")
+    assert answered.reads("changed since")
+    assert answered.app.shell.screen.confirm.disabled
+
+
+def test_the_kit_shows_what_is_left_when_every_flight_is_three_hours_late(answered):
+    go(answered, "kit")
+    answered.tap("On time")
+    settle(answered)
+    assert not answered.reads("if 3 h late")
+    answered.tap("3 h late")
+    settle(answered)
+    assert case(answered).policy.stress_late_min == 180.0
+    assert answered.reads("if 3 h late")
+    assert answered.reads("No smoking or flames within 3 m.")
+
+
+def test_a_confirmation_needs_name_and_role_and_is_void_after_a_change(answered):
+    go(answered, "papers")
+    screen = answered.app.shell.screen
+    screen.by.input.text, screen.role.input.text = "", ""
+    answered.tap("Confirm this plan")
+    assert answered.reads("A confirmation needs the prescriber's name and role.")
+    assert case(answered).confirmation is None
+    answered.fill(answered.field("Prescriber's name"), "Dr Example")
+    answered.fill(answered.field("Role"), "Physician")
+    answered.tap("Confirm this plan")
+    settle(answered)
+    assert answered.app.session.plan.state == "Confirmed"
+    answered.app.session.set("patient.mass_kg", 99.0)
+    settle(answered)
+    assert answered.app.session.plan.state != "Confirmed"
+    assert answered.reads("void") or answered.reads("changed since")
+
+
+def test_four_papers_are_saved_and_a_folder_that_cannot_be_made_is_said(answered, tmp_path):
+    go(answered, "papers")
+    answered.tap("Save the four papers")
+    saved = sorted((tmp_path / "documents").rglob("*.pdf"))
+    assert len(saved) == 4
+    assert all(one.read_bytes().startswith(b"%PDF") for one in saved)
+    (tmp_path / "taken").write_text("a file")
+    platformdirs.user_documents_dir = lambda: str(tmp_path / "taken")
+    answered.tap("Save the four papers")
+    assert answered.reads("Not saved: ")
+
+
+def test_each_paper_has_its_preview(answered):
+    go(answered, "papers")
+    pages = {}
+    for words in ("Clinical record", "For the carrier", "For the supplier", "For the traveller"):
+        answered.tap(words)
+        pages[words] = len(answered.app.shell.screen.preview.paper.pages)
+    assert pages["For the carrier"] == 1
+    assert pages["Clinical record"] > pages["For the supplier"]
+
+
+def test_a_challenge_test_is_recorded_with_one_hand_and_read(answered):
+    go(answered, "challenge")
+    answered.tap("Record a test")
+    screen = answered.app.shell.screen
+    path = f"measurements.{screen.index}"
+    answered.app.session.set_many({f"{path}.place.elevation_m": 0.0, f"{path}.challenge_fio2": 0.15})
+    answered.frames(6)
+    answered.tap("Start the clock from 0")
+    answered.tap("On the mixture")
+    for _ in range(2):
+        answered.tap("−5 %")
+    answered.tap("+10")
+    answered.tap("Breathless")
+    answered.tap("Write the row")
+    row = screen.test.rows[-1]
+    assert (row.phase, row.spo2_percent, row.heart_rate_min, row.symptoms) == ("challenge", 85.0, 90.0, "breathless")
+    answered.tap("−1 %")
+    answered.tap("Write the row")
+    assert screen.test.rows[-1].spo2_percent == 84.0
+    assert answered.reads("Lowest SpO₂ 84 %: below")
+    answered.tap("On oxygen")
+    answered.tap("2")
+    answered.tap("Write the row")
+    assert (screen.test.rows[-1].phase, screen.test.rows[-1].flow_l_min) == ("on_oxygen", 2.0)
+
+
+def test_a_row_of_the_test_is_taken_back_and_all_is_there_after_leaving(answered):
+    go(answered, "challenge")
+    answered.tap("Record a test")
+    for _ in range(3):
+        answered.tap("Write the row")
+    answered.tap("Take it back")
+    go(answered, "kit")
+    go(answered, "challenge")
+    assert len(answered.app.shell.screen.test.rows) == 2
+    answered.tap(answered.app.shell.undo)
+    assert len(answered.app.shell.screen.test.rows) == 3
+
+
+def test_how_a_number_was_worked_out_is_one_touch_away(answered):
+    go(answered, "forecast")
+    answered.tap("How was this worked out")
+    for words in ("Gong 1984", "Am Rev Respir Dis 1984"):
+        assert answered.reads(words)
