@@ -151,6 +151,29 @@ def test_each_paper_has_its_preview(answered):
     assert pages["Clinical record"] > pages["For the supplier"]
 
 
+def test_each_half_of_a_page_is_shown_larger_and_the_screen_still_scrolls(answered):
+    go(answered, "papers")
+    screen, page = answered.app.shell.screen, answered.app.shell.page
+    frame, view = screen.frame, screen.preview
+    answered.tap("Left half")
+    answered.frames(6)
+    assert view.width > 1.8 * frame.width
+    assert view.x == frame.x
+    assert frame.height == view.height
+    answered.tap("Right half")
+    answered.frames(6)
+    assert view.right == pytest.approx(frame.right)
+    answered.tap("Whole")
+    answered.frames(6)
+    assert view.width == frame.width
+    answered.tap("Right half")
+    page.scroll_y = 0.5
+    answered.frames(4)
+    answered.drag((200, 300), (200, 600))
+    answered.frames(30)
+    assert page.scroll_y != 0.5
+
+
 def test_a_challenge_test_is_recorded_with_one_hand_and_read(answered):
     go(answered, "challenge")
     answered.tap("Record a test")

@@ -16,7 +16,7 @@ from ui.widgets.buttons import PlainButton, PrimaryButton
 from ui.widgets.choices import Choice
 from ui.widgets.entries import TextEntry
 from ui.widgets.notices import Notice, Section
-from ui.widgets.paper import PaperView
+from ui.widgets.paper import PaperFrame
 from ui.widgets.rows import Fold, Side, Stack
 from ui.widgets.text import Text, plain
 
@@ -27,6 +27,7 @@ PAPER_WORDS = (
     ("traveller", "For the traveller"),
 )
 
+HALVES = (("", "Whole"), ("left", "Left half"), ("right", "Right half"))
 PLACES = (("documents", "Documents"), ("downloads", "Downloads"), ("home", "Home folder"))
 
 
@@ -50,10 +51,12 @@ class PapersScreen(Screen):
         self.holds = self.form.date("policy.holds_until", "The papers hold until")
         self.paper = self.session.place.get("paper", "record")
         self.choice = Choice("Preview", PAPER_WORDS, self.paper, self._choose)
-        self.preview = PaperView()
+        self.frame = PaperFrame()
+        self.preview = self.frame.view
+        self.halves = Choice("Pages", HALVES, "", self.frame.show_half)
         self.where = Fold("Save to another folder", str(self.folder), self._fill_folder)
         self.saved = Text("", tone="muted")
-        self.put(self.state, self.confirmation, self.holds, self.choice, self.preview, self.where)
+        self.put(self.state, self.confirmation, self.holds, self.choice, self.halves, self.frame, self.where)
         self.put(PrimaryButton("Save the four papers", self._save), self.saved)
         self.put(PlainButton("Open the folder to print or send", self._open))
         self._laid: Any = None

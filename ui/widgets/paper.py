@@ -1,4 +1,4 @@
-"""A paper on the screen: the pages as they will print, scaled to the width."""
+"""A paper on the screen: the pages as they will print, as wide as the screen or half by half."""
 
 from __future__ import annotations
 
@@ -8,12 +8,14 @@ from kivy.clock import Clock
 from kivy.graphics import Color, Rectangle
 from kivy.graphics.instructions import InstructionGroup
 from kivy.metrics import dp
+from kivy.uix.stencilview import StencilView
 from kivy.uix.widget import Widget
 
 from ui.painter import paint_page
 from ui.theme import theme
 
 GAP_DP = 12
+LARGER = 1.9  # two halves with an overlap, so that no word is cut in both
 
 
 class PaperView(Widget):
@@ -56,3 +58,28 @@ class PaperView(Widget):
             self.canvas.add(group)
             paint_page(group, page, self.x, y, scale)
             y -= dp(GAP_DP)
+
+
+class PaperFrame(StencilView):
+    """A paper as wide as the frame, or `LARGER` with its left or right half in the frame.
+
+    Halves and not a sideways drag: a finger on the pages goes on moving the screen up and down.
+    """
+
+    def __init__(self, **keywords: Any) -> None:
+        super().__init__(size_hint_y=None, height=0, **keywords)
+        self.view = PaperView()
+        self.half = ""
+        self.add_widget(self.view)
+        self.view.bind(height=self.setter("height"))
+        self.bind(pos=self._fit, size=self._fit)
+
+    def show_half(self, half: str) -> None:
+        """Show "left" or "right" larger, or "" for the whole pages."""
+        self.half = half
+        self._fit()
+
+    def _fit(self, *_: Any) -> None:
+        self.view.width = self.width * (LARGER if self.half else 1.0)
+        hidden = self.view.width - self.width if self.half == "right" else 0.0
+        self.view.pos = (self.x - hidden, self.y)
