@@ -11,6 +11,7 @@ from planner.trip import places
 from ui import measures
 from ui.measures import plain_measure
 from ui.screens.form import Form
+from ui.screens.trip_route import RouteEntry
 from ui.theme import space
 from ui.widgets.entries import NumberEntry
 from ui.widgets.journey_entries import DurationEntry, SearchEntry
@@ -120,8 +121,7 @@ class PartForm(Stack):
                 number(f"{self.path}.end_elevation_m", "End elevation", altitude, also=self._also),
             )
         )
-        if self.session.get(self.path).profile:
-            self.add_widget(Text("A recorded track gives the altitude along the way.", role="label", tone="muted"))
+        self.add_widget(RouteEntry(self.session, self.path))
 
     def _elevation_entry(self, label: str, names: tuple[str, ...], why: str) -> NumberEntry:
         low, high = self.form.limits(f"{self.path}.{names[0]}")

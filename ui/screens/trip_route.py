@@ -1,0 +1,65 @@
+"""A recorded or planned route, read from a file, as the altitude along one part of the trip."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import Any
+
+from ui import measures
+from ui.widgets.buttons import PlainButton, QuietButton
+from ui.widgets.entries import TextEntry
+from ui.widgets.rows import Fold, Stack
+from ui.widgets.text import Text, plain
+
+
+class RouteEntry(Stack):
+    """What the part knows of its route, and a file to read. path: of the part in the case."""
+
+    def __init__(self, session: Any, path: str) -> None:
+        super().__init__(gap=0)
+        self.session, self.path = session, path
+        self.add_widget(Fold("Altitude from a recorded route", self._summary(), self._fill))
+
+    def _summary(self) -> str:
+        profile = self.session.get(self.path).profile
+        if not profile:
+            return "A GPX file of the drive, with its passes"
+        shown = measures.altitude(self.session.case.display.altitude)
+        highest = max(point.elevation_m for point in profile)
+        return f"Used instead of the elevations above: up to {shown.with_unit(highest)}"
+
+    def _fill(self, body: Any) -> None:
+        self.file, self.problem = TextEntry("GPX file", longest=1000), Text("", tone="stop")
+        body.add_widget(self.file)
+        body.add_widget(self.problem)
+        body.add_widget(PlainButton("Read this route", self._read))
+        if self.session.get(self.path).profile:
+            body.add_widget(QuietButton("Take the route out", self._remove))
+
+    def _read(self) -> None:
+        from planner.case.trip import ProfilePoint
+        from planner.errors import InputError
+        from planner.trip.track import MOST_BYTES, read_track
+
+        part = self.session.get(self.path)
+        try:
+            with Path(self.file.input.text.strip()).expanduser().open("rb") as file:
+                content = file.read(MOST_BYTES + 1)
+            track = read_track(content, part.duration_min)
+        except OSError as error:
+            self.problem.text = plain(f"The file cannot be read ({error.strerror}). Write where it is, with its name.")
+            return
+        except InputError as error:
+            self.problem.text = plain(error.message)
+            return
+        points = tuple(
+            ProfilePoint(at_min=float(minute), elevation_m=float(elevation))
+            for minute, elevation in zip(track.minutes, track.elevation_m, strict=True)
+        )
+        changes: dict[str, Any] = {f"{self.path}.profile": points}
+        if track.timed and part.kind == "road":
+            changes[f"{self.path}.duration_min"] = float(round(track.minutes[-1]))
+        self.problem.text = plain(self.session.set_many(changes, "a recorded route"))
+
+    def _remove(self) -> None:
+        self.session.choose(f"{self.path}.profile", (), "the recorded route")
