@@ -90,23 +90,23 @@ def kit_cautions(
 def _batteries(power: Power, count: int) -> KitCaution:
     packs = "1 pack" if count == 1 else f"{count} packs"
     source = "IATA/ICAO rules and 49 CFR 175.10(a)(18) (from memory); 14 CFR 382.133 for 150 %"
-    if power.nominal_wh > CONSENT_WH:
+    if power.rated_wh > CONSENT_WH:
         return KitCaution(
             "Batteries too large for aircraft.",
-            f"A pack of {power.nominal_wh:.0f} Wh is above 160 Wh and is not carried at all.",
+            f"A pack of {power.rated_wh:.0f} Wh is above 160 Wh and is not carried at all.",
             source,
         )
-    if power.nominal_wh > NO_CONSENT_WH:
+    if power.rated_wh > NO_CONSENT_WH:
         spare = max(count - power.inside, 0)
         return KitCaution(
             "Batteries need consent.",
-            f"Packs of {power.nominal_wh:.0f} Wh are above 100 Wh: at most two spares, with the carrier's consent; "
+            f"Packs of {power.rated_wh:.0f} Wh are above 100 Wh: at most two spares, with the carrier's consent; "
             f"{spare} spares are planned. Spares go in the cabin with their terminals covered.",
             source,
         )
     return KitCaution(
         "Batteries in the cabin.",
-        f"{packs} of {power.nominal_wh:.0f} Wh, each up to 100 Wh: spares in the cabin only, terminals covered. "
+        f"{packs} of {power.rated_wh:.0f} Wh, each up to 100 Wh: spares in the cabin only, terminals covered. "
         "US rules ask for charged packs for 150 % of the longest flight.",
         source,
     )

@@ -11,6 +11,7 @@ from planner.delivery.devices import Device
 from planner.delivery.pulse import BREATHING_RATE_MIN, bolus_ml
 from planner.errors import InputError
 from planner.kit.legs import Leg
+from planner.kit.liquid import AIR_RULE, liquid_needed_kg
 from planner.kit.sizes import Concentrator
 from planner.trip.itinerary import PartSpan
 
@@ -74,6 +75,9 @@ def demand(
             f"{concentrator.name} is for up to {concentrator.ceiling_m:.0f} m; {span.name} reaches "
             f"{span.highest_m:.0f} m."
         )
+    if uses_concentrator and concentrator is not None and span.kind == "flight" and not concentrator.cabin_use:
+        uses_concentrator = False
+        faults.append(f"{concentrator.name} is not for use in an aircraft cabin; {span.name} needs another source.")
     needs_oxygen = on_share > 0.0
     if needs_oxygen and not source:
         faults.append(f"No oxygen source is allowed in {span.name}; choose one, or it stays uncovered.")
@@ -95,6 +99,8 @@ def demand(
         asleep=span.shares.get("asleep", 0.0) > 0.0,
     )
     litres = litres_per_h * span.duration_min / 60.0 if needs_oxygen else 0.0
+    if needs_oxygen and "liquid" in source:
+        faults.append(_about_liquid(span, litres))
     return Demand(
         leg=leg,
         litres=litres,
@@ -117,6 +123,16 @@ def _litres_per_h(device: Device, decision: Decision, activity: Activity, breath
         return bolus_ml(device, decision.setting, min(rate, 50.0)) * rate * 60.0 / 1000.0
     assert decision.flow_l_min is not None
     return decision.flow_l_min * 60.0
+
+
+def _about_liquid(span: PartSpan, litres: float) -> str:
+    if span.kind == "flight":
+        return f"{span.name}: {AIR_RULE}"
+    mass = liquid_needed_kg(litres, span.duration_min / 60.0)
+    return (
+        f"{span.name}: liquid oxygen is allowed but is not part of the sized set; {litres:,.0f} L of gas would take "
+        f"about {mass:.1f} kg of liquid, with what boils away."
+    )
 
 
 def _more_watts(

@@ -54,10 +54,10 @@ class Assumptions:
 
 @dataclass(frozen=True)
 class Carried:
-    """What is there: usable litres that come in at each leg, and the packs."""
+    """What is there, by leg: usable litres of the cylinders that come in, and of all cylinders carried when full."""
 
     litres_new: tuple[float, ...]
-    litres_kept: tuple[bool, ...]  # whether cylinders may be with the traveller in the leg
+    litres_most: tuple[float, ...]  # what was left behind or swapped is gone; 0 where none may be carried
     batteries: int
 
 
@@ -123,7 +123,10 @@ def draw_trips(
 
 
 def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draws, assumed: Assumptions) -> Played:
-    """Play the trips. A wait before a flight is spent where the leg before was, on what is allowed there."""
+    """Play the trips. A wait before a flight is spent where the leg before was, on what is allowed there.
+
+    Where the trip begins with a flight, its wait is spent in that leg. power: None where no concentrator is carried.
+    """
     draws, count = drawn.waits_h.shape
     short, down = np.zeros((draws, count)), np.zeros((draws, count), dtype=bool)
     failed = np.zeros((draws, count), dtype=bool)
@@ -132,8 +135,10 @@ def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draw
     full_wh = (0.0 if power is None else power.nominal_wh * carried.batteries) * drawn.battery
     energy, clock = full_wh.copy(), np.zeros(draws)
     for number, leg in enumerate(legs):
-        litres = (litres if carried.litres_kept[number] else np.zeros(draws)) + carried.litres_new[number] * drawn.fill
+        litres = np.minimum(litres + carried.litres_new[number] * drawn.fill, carried.litres_most[number] * drawn.fill)
         hours = np.maximum(leg.hours + drawn.longer_h[:, number], 0.25 * leg.hours)
+        if number == 0:
+            hours = hours + drawn.waits_h[:, 0]
         wait = drawn.waits_h[:, number + 1] if number + 1 < count else np.zeros(draws)
         share = leg.oxygen_h / leg.hours
         needed = (hours + wait) * share

@@ -51,7 +51,8 @@ class Power:
     name: str
     mass_kg: float
     battery_wh: float  # usable, aged
-    nominal_wh: float
+    nominal_wh: float  # aged
+    rated_wh: float  # printed on the pack; carriage rules go by it
     battery_mass_kg: float
     inside: int
     charge_w: float

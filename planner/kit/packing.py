@@ -38,7 +38,7 @@ def items_to_carry(
         batteries = stronger.carried.batteries
         if batteries:
             items.append(
-                Item(f"Battery, {power.nominal_wh:.0f} Wh", batteries, power.battery_mass_kg, legs[0].name, before)
+                Item(f"Battery, {power.rated_wh:.0f} Wh", batteries, power.battery_mass_kg, legs[0].name, before)
             )  # fmt: skip
     for use, leg in zip(found.uses, legs, strict=True):
         if use.hours_by.get("airline"):

@@ -1,8 +1,9 @@
 """The lightest set that covers the trip, by mixed-integer programming in an elastic form.
 
 What cannot be covered is reported by part as hours without oxygen, never as "infeasible". Objectives in order:
-nothing uncovered, the reserve kept, the peak mass carried, the number of items. Gas of one size is pooled: cylinders
-are swapped one after another. The form follows the textbook lot-sizing programme; solved by HiGHS.
+no weight limit exceeded, nothing uncovered, the reserve kept, the peak mass carried, the number of items. Gas of one
+size is pooled: cylinders are swapped one after another. The form follows the textbook lot-sizing programme; solved by
+HiGHS.
 """
 
 from __future__ import annotations
@@ -17,6 +18,7 @@ FLIGHT_RULE = 1.5  # charged packs for 150 % of the flight: 14 CFR 382.133(f)(2)
 CHARGE_SHARE = 0.9  # of the charger's power that ends up in the pack; planning assumption
 MOST_OF_A_SIZE = 12
 NEGLIGIBLE_H = 1e-4
+NEGLIGIBLE_KG = 1e-3
 ITEM_KG = 0.05  # an item more counts as this much mass, so that fewer are preferred; planning assumption
 
 
@@ -34,6 +36,7 @@ class LegUse:
     litres_used: dict[str, float]
     watt_hours_at_start: float
     mass_kg: float
+    over_limit_kg: float  # above the leg's limit: only where more packs were asked for than it allows
 
 
 @dataclass(frozen=True)
@@ -78,6 +81,7 @@ def select(
     model = Programme()
     built = _Built(model, legs, choices, power, reserve_fraction, batteries)
     objectives = (
+        *([dict.fromkeys(built.over_limit, 1.0)] if built.over_limit else []),
         dict.fromkeys(built.slack, 1.0),
         dict.fromkeys(built.reserve_slack, 1.0),
         {built.peak: 1.0} | dict.fromkeys(built.items, ITEM_KG),
@@ -102,6 +106,7 @@ class _Built:
         self.peak = model.variable()
         self.slack: list[int] = []
         self.reserve_slack: list[int] = []
+        self.over_limit: list[int] = []
         self.items: list[int] = []
         self.columns: list[dict[str, int]] = []
         packs = 0 if power is None else power.most_batteries if batteries is None else batteries
@@ -185,10 +190,11 @@ class _Built:
             model.row({**gained, before["battery"]: self._watt_before}, upper=0.0)
         self._watt_before = watt
         model.row({columns["battery"]: watt, columns["energy"]: -1.0}, upper=0.0)
-        model.row({columns["battery"]: 1.0, columns["plugged"]: 1.0, self.has_power: -leg.oxygen_h}, upper=0.0)
-        if leg.flight and watt > 0.0:
+        running = {columns["battery"]: 1.0, columns["plugged"]: 1.0}
+        model.row({**running, self.has_power: -leg.oxygen_h}, upper=0.0)
+        if leg.flight and watt > 0.0:  # the rule asks for charged packs whether or not the seat has a plug
             columns["on board"] = model.variable(0.0, 1.0, whole=True)
-            model.row({columns["battery"]: 1.0, columns["on board"]: -leg.oxygen_h}, upper=0.0)
+            model.row({**running, columns["on board"]: -leg.oxygen_h}, upper=0.0)
             model.row({columns["energy"]: 1.0, columns["on board"]: -FLIGHT_RULE * watt * leg.hours}, lower=0.0)
 
     def _charge_wh(self, leg: Leg) -> float:
@@ -226,7 +232,9 @@ class _Built:
         model.row({**mass, columns["mass"]: -1.0}, 0.0, 0.0)
         model.row({columns["mass"]: 1.0, self.peak: -1.0}, upper=0.0)
         if leg.carry_limit_kg is not None:
-            model.row({columns["mass"]: 1.0}, upper=leg.carry_limit_kg)
+            columns["over"] = model.variable()
+            self.over_limit.append(columns["over"])
+            model.row({columns["mass"]: 1.0, columns["over"]: -1.0}, upper=leg.carry_limit_kg)
 
     def read(self, values: tuple[float, ...], gap: float, finished: bool) -> Selection:
         """The solution in words of the kit."""
@@ -241,6 +249,7 @@ class _Built:
             litres = {size: value(f"used {size}") for size in sizes}
             by["cylinder"] = sum(litres.values()) / leg.cylinder_l_per_h if leg.cylinder_l_per_h else 0.0
             uncovered, missing = value("slack"), value("reserve")
+            over = value("over") if "over" in columns else 0.0
             uses.append(
                 LegUse(
                     part_id=leg.part_id,
@@ -253,6 +262,7 @@ class _Built:
                     litres_used=litres,
                     watt_hours_at_start=value("energy"),
                     mass_kg=value("mass"),
+                    over_limit_kg=over if over > NEGLIGIBLE_KG else 0.0,
                 )
             )
         return Selection(

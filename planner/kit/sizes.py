@@ -13,6 +13,7 @@ from planner.kit.cylinder import contents_l, oxygen_mass_kg
 CYLINDERS, CONCENTRATORS = "cylinders.toml", "concentrators.toml"
 REGULATOR_KG = 0.35  # a light regulator, 0.3 to 0.7 kg (from memory)
 AIR_GROSS_LIMIT_KG = 5.0  # gross mass of a cylinder allowed with the operator's consent: IATA/ICAO rules, table 2.3.A
+CONSENT_SPARES = 2  # packs between 100 and 160 Wh beside those in the device: same rules
 NO_CONSENT_WH, CONSENT_WH = 100.0, 160.0  # lithium-ion packs: same rules; US 49 CFR 175.10(a)(18) (from memory)
 
 

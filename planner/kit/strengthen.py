@@ -1,7 +1,8 @@
 """Adds what makes running out rarer: batteries and cylinders on top of the set that covers the plan.
 
 The planned set covers the trip when it is on time. Sets a little larger are played on the same draws, in the order of
-their mass; the first whose chance is as low as asked for is taken, and confirmed on draws of its own.
+their mass; the first whose chance is as low as asked for is taken, and confirmed on draws of its own. A set above a
+leg's weight limit, or with more packs than may be carried, is not tried.
 """
 
 from __future__ import annotations
@@ -24,6 +25,7 @@ class Stronger:
     extra_batteries: int
     extra_cylinders: int
     choice: Choice | None
+    peak_kg: float
     chosen_on: RunOut
     reached: bool
 
@@ -31,6 +33,7 @@ class Stronger:
 def strengthen(
     legs: Sequence[Leg],
     carried: Carried,
+    masses_kg: Sequence[float],
     choices: Sequence[Choice],
     power: Power | None,
     drawn: Draws,
@@ -41,23 +44,38 @@ def strengthen(
 ) -> Stronger:
     """The lightest larger set with a chance of running out up to wanted_chance; else the one with the lowest chance.
 
-    Only the set's own lightest cylinder is added, and only where cylinders are carried or may be at the start.
+    masses_kg: what the planned set weighs in each leg; power: None where no concentrator is carried. Only the set's
+    own lightest cylinder is added, and only where cylinders are carried or may be at the start.
     """
     choice = min((one for one in choices if one.most is None), key=lambda one: one.gross_kg, default=None)
     may_carry = choice is not None and legs[0].cylinder_l_per_h is not None
     battery_kg = 0.0 if power is None else power.battery_mass_kg
-    may_charge = more_batteries and power is not None and carried.batteries > 0
+    more_packs = 0
+    if more_batteries and power is not None and carried.batteries > 0:
+        more_packs = max(min(MOST_EXTRA, power.most_batteries - carried.batteries), 0)
     grid = [
         (batteries * battery_kg + cylinders * (choice.gross_kg if choice else 0.0), batteries, cylinders)
-        for batteries in range(MOST_EXTRA + 1 if may_charge else 1)
+        for batteries in range(more_packs + 1)
         for cylinders in range(MOST_EXTRA + 1 if may_carry else 1)
     ]
     best: Stronger | None = None
     for _, batteries, cylinders in sorted(grid)[:SCREENED]:
-        larger = _with(carried, legs, choice, batteries, cylinders, assumed)
+        added = batteries * battery_kg
+        cylinder_kg = cylinders * choice.gross_kg if choice else 0.0
+        kept = _kept_legs(legs, choice) if cylinders else 0
+        heavier = [mass + added + (cylinder_kg if leg < kept else 0.0) for leg, mass in enumerate(masses_kg)]
+        if (batteries or cylinders) and _too_heavy(legs, heavier):
+            continue
+        larger = _with(carried, choice, batteries, cylinders, kept, assumed)
         chance = run_out(play(legs, larger, power, drawn, assumed))
         found = Stronger(
-            larger, batteries, cylinders, choice if cylinders else None, chance, chance.chance <= wanted_chance
+            carried=larger,
+            extra_batteries=batteries,
+            extra_cylinders=cylinders,
+            choice=choice if cylinders else None,
+            peak_kg=max(heavier),
+            chosen_on=chance,
+            reached=chance.chance <= wanted_chance,
         )
         if found.reached:
             return found
@@ -67,17 +85,27 @@ def strengthen(
     return best
 
 
+def _kept_legs(legs: Sequence[Leg], choice: Choice | None) -> int:
+    """In how many legs from the start a cylinder of this size may be with the traveller."""
+    for number, leg in enumerate(legs):
+        if leg.flight and not (choice is not None and choice.air_allowed and leg.cylinder_l_per_h is not None):
+            return number
+    return len(legs)
+
+
+def _too_heavy(legs: Sequence[Leg], masses_kg: Sequence[float]) -> bool:
+    return any(
+        leg.carry_limit_kg is not None and mass > leg.carry_limit_kg for leg, mass in zip(legs, masses_kg, strict=True)
+    )
+
+
 def _with(
-    carried: Carried, legs: Sequence[Leg], choice: Choice | None, batteries: int, cylinders: int, assumed: Assumptions
+    carried: Carried, choice: Choice | None, batteries: int, cylinders: int, kept: int, assumed: Assumptions
 ) -> Carried:
-    """The set with more batteries, and more cylinders at the start that are kept until cylinders may not go on."""
+    """The set with more batteries, and more cylinders at the start that stay for so many legs."""
     larger = replace(carried, batteries=carried.batteries + batteries)
     if choice is None or cylinders == 0:
         return larger
     litres = cylinders * choice.usable_l / assumed.fill_mean
-    kept = list(larger.litres_kept)
-    for number, leg in enumerate(legs):
-        if leg.flight and not (choice.air_allowed and leg.cylinder_l_per_h is not None):
-            break
-        kept[number] = True
-    return replace(larger, litres_new=(larger.litres_new[0] + litres, *larger.litres_new[1:]), litres_kept=tuple(kept))
+    most = tuple(room + litres if leg < kept else room for leg, room in enumerate(larger.litres_most))
+    return replace(larger, litres_new=(larger.litres_new[0] + litres, *larger.litres_new[1:]), litres_most=most)

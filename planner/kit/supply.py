@@ -8,10 +8,11 @@ from dataclasses import replace
 import numpy as np
 
 from planner.case.decisions import Decision
-from planner.case.kit import Kit
+from planner.case.kit import Kit, OwnedCylinder
 from planner.case.policy import Policy
 from planner.case.trip import Part
 from planner.delivery.devices import load_devices
+from planner.errors import InputError
 from planner.kit.cautions import kit_cautions
 from planner.kit.cylinder import contents_l
 from planner.kit.demand import Demand, by_part_and_activity, demand
@@ -27,15 +28,20 @@ from planner.kit.endurance import (
 )
 from planner.kit.kit_plan import Item, KitPlan, Left, PartSupply
 from planner.kit.legs import Choice, Leg, Power
+from planner.kit.oxygen_gas import LITRE_TEMPERATURE_C
 from planner.kit.packing import items_to_carry, left_over
 from planner.kit.selection import LegUse, Selection, select
 from planner.kit.sizes import (
     AIR_GROSS_LIMIT_KG,
+    CONSENT_SPARES,
+    CONSENT_WH,
+    NO_CONSENT_WH,
     Concentrator,
     CylinderSize,
     cylinder_size,
     load_concentrators,
     load_cylinders,
+    require_gauge,
 )
 from planner.kit.strengthen import Stronger, strengthen
 from planner.kit.turn_back import turn_back
@@ -83,12 +89,29 @@ def plan_kit(
     if not decided or not legs:
         return _nothing_sized(needs, undecided, tuple(faults))
     told("Choosing the lightest set that covers the trip", 0.1)
-    offered = _offered(kit, sizes)
-    choices = [_choice(size, kit, policy) for size in offered]
-    power = None if concentrator is None else _power(concentrator, kit)
+    offered, left_out = _offered(kit, sizes)
+    if left_out:
+        faults.append(f"At most {MOST_SIZES} sizes are compared; left out: {', '.join(left_out)}.")
+    owned, refused = _owned(kit, sizes)
+    faults += refused
+    choices = [_choice(size, owned, policy) for size in offered]
+    offered_power = None if concentrator is None else _power(concentrator, kit, legs)
+    batteries, refused_packs = _own_packs(kit, offered_power)
+    faults += refused_packs
     found = select(
-        legs, choices, power, reserve_fraction=policy.reserve_fraction, batteries=kit.batteries, cancelled=cancelled
+        legs,
+        choices,
+        offered_power,
+        reserve_fraction=policy.reserve_fraction,
+        batteries=batteries,
+        cancelled=cancelled,
     )
+    faults += [
+        f"{leg.name}: the {use.mass_kg:.1f} kg carried are above the {leg.carry_limit_kg:g} kg that can be carried."
+        for leg, use in zip(legs, found.uses, strict=True)
+        if use.over_limit_kg > 0.0
+    ]
+    power = offered_power if found.concentrator else None
     told("Playing the trip with delays", 0.6)
     assumed = Assumptions()
     rng = np.random.default_rng(SEED)
@@ -96,7 +119,15 @@ def plan_kit(
     drawn = draw_trips(legs, waits, longer, rng, assumed)
     planned_set = _carried(found, choices)
     stronger = strengthen(
-        legs, planned_set, choices, power, drawn, assumed, policy.run_out_chance, more_batteries=kit.batteries is None
+        legs,
+        planned_set,
+        [use.mass_kg for use in found.uses],
+        choices,
+        power,
+        drawn,
+        assumed,
+        policy.run_out_chance,
+        more_batteries=kit.batteries is None,
     )
     told("Confirming it on other trips", 0.8)
     confirming = np.random.default_rng(SEED + 1)
@@ -112,7 +143,7 @@ def plan_kit(
     )
     return KitPlan(
         items=items_to_carry(found, stronger, choices, power, legs),
-        peak_kg=_peak_kg(found, stronger, power),
+        peak_kg=stronger.peak_kg,
         parts=tuple(
             _part_supply(need, use, leg_chance)
             for need, use, leg_chance in zip(needs, found.uses, chance.by_leg, strict=True)
@@ -163,17 +194,49 @@ def _nothing_sized(needs: Sequence[Demand], undecided: tuple[str, ...], faults: 
     )
 
 
-def _offered(kit: Kit, sizes: dict[str, CylinderSize]) -> list[CylinderSize]:
-    """Sizes to choose from: those owned, those offered, else the country's portable ones."""
+def _offered(kit: Kit, sizes: dict[str, CylinderSize]) -> tuple[list[CylinderSize], list[str]]:
+    """Sizes to choose from: those owned, those offered, else the country's portable ones; and names of those beyond."""
     wanted = [cylinder_size(owned.size_id) for owned in kit.owned_cylinders]
     wanted += [cylinder_size(size_id) for size_id in kit.offered_size_ids]
     if not wanted:
         wanted = [size for size in sizes.values() if size.country == kit.country and size.portable]
-    return list({size.id: size for size in wanted}.values())[:MOST_SIZES]
+    each = list({size.id: size for size in wanted}.values())
+    return each[:MOST_SIZES], [size.name for size in each[MOST_SIZES:]]
 
 
-def _choice(size: CylinderSize, kit: Kit, policy: Policy) -> Choice:
-    owned = [one for one in kit.owned_cylinders if one.size_id == size.id]
+def _owned(kit: Kit, sizes: dict[str, CylinderSize]) -> tuple[list[OwnedCylinder], list[str]]:
+    """Own cylinders with a gauge they can have; the others are not counted, and said."""
+    counted, refused = [], []
+    for one in kit.owned_cylinders:
+        try:
+            if one.gauge_bar is not None:
+                require_gauge(sizes[one.size_id], one.gauge_bar)
+            counted.append(one)
+        except InputError as error:
+            refused.append(f"{error.message} It counts as empty.")
+            counted.append(one.model_copy(update={"gauge_bar": 0.0}))
+    return counted, refused
+
+
+def _own_packs(kit: Kit, power: Power | None) -> tuple[int | None, list[str]]:
+    """How many packs there are, where that was entered, and what is said when the rules of flight allow fewer."""
+    if power is None:
+        return None, []
+    if power.rated_wh > CONSENT_WH and power.most_batteries == 0:
+        return None, [
+            f"A pack of {power.rated_wh:.0f} Wh is above the {CONSENT_WH:.0f} Wh that may be carried on aircraft; the "
+            "trip is planned without packs."
+        ]
+    if kit.batteries is None or kit.batteries <= power.most_batteries:
+        return kit.batteries, []
+    return power.most_batteries, [
+        f"{kit.batteries} batteries of {power.rated_wh:.0f} Wh were entered; {power.most_batteries} are planned, the "
+        "most that may be carried on this trip or that this plan counts."
+    ]
+
+
+def _choice(size: CylinderSize, owned_cylinders: Sequence[OwnedCylinder], policy: Policy) -> Choice:
+    owned = [one for one in owned_cylinders if one.size_id == size.id]
     fill = Assumptions().fill_mean
     usable = size.usable_l(policy.residual_bar, fill)
     most: int | None = None
@@ -181,18 +244,22 @@ def _choice(size: CylinderSize, kit: Kit, policy: Policy) -> Choice:
         most = sum(one.count for one in owned)
         left = contents_l(size.water_capacity_l, policy.residual_bar, size.reference_c)
         litres = [
-            contents_l(size.water_capacity_l, one.gauge_bar, 15.0 if one.temperature_c is None else one.temperature_c)
-            - left
+            max(contents_l(size.water_capacity_l, one.gauge_bar, _or_15(one.temperature_c)) - left, 0.0)
             if one.gauge_bar is not None
             else usable
             for one in owned
             for _ in range(one.count)
         ]
-        usable = max(sum(litres) / most, 0.0)
+        usable = sum(litres) / most
     return Choice(size.id, size.name, usable, size.full_l, size.gross_kg, most, size.gross_kg <= AIR_GROSS_LIMIT_KG)
 
 
-def _power(concentrator: Concentrator, kit: Kit) -> Power:
+def _or_15(temperature_c: float | None) -> float:
+    return LITRE_TEMPERATURE_C if temperature_c is None else temperature_c
+
+
+def _power(concentrator: Concentrator, kit: Kit, legs: Sequence[Leg]) -> Power:
+    flies = any(leg.flight for leg in legs)
     faded = max(1.0 - FADE_PER_YEAR * (kit.battery_age_years or 0.0), 0.3)
     return Power(
         concentrator_id=concentrator.id,
@@ -201,18 +268,28 @@ def _power(concentrator: Concentrator, kit: Kit) -> Power:
         battery_wh=concentrator.battery_wh * USABLE_SHARE * faded,
         nominal_wh=concentrator.battery_wh * faded,
         battery_mass_kg=concentrator.battery_mass_kg,
+        rated_wh=concentrator.battery_wh,
         inside=concentrator.batteries_inside,
         charge_w=concentrator.charge_w,
-        most_batteries=MOST_BATTERIES if concentrator.battery_wh > 0.0 else 0,
+        most_batteries=_most_packs(concentrator, flies),
     )
 
 
+def _most_packs(concentrator: Concentrator, flies: bool) -> int:
+    """Packs that may be carried: on a trip with a flight none above 160 Wh, and two spares above 100 Wh."""
+    if concentrator.battery_wh <= 0.0 or (flies and concentrator.battery_wh > CONSENT_WH):
+        return 0
+    if flies and concentrator.battery_wh > NO_CONSENT_WH:
+        return concentrator.batteries_inside + CONSENT_SPARES
+    return MOST_BATTERIES
+
+
 def _carried(found: Selection, choices: Sequence[Choice]) -> Carried:
-    """Full contents of new cylinders before the fill is drawn, and where cylinders are kept."""
+    """Full contents, before the fill is drawn, of the cylinders that are new and of all that are carried."""
     usable = {choice.size_id: choice.usable_l / Assumptions().fill_mean for choice in choices}
     new = tuple(sum(count * usable[size] for size, count in use.new_cylinders.items()) for use in found.uses)
-    kept = tuple(bool(use.cylinders) for use in found.uses)
-    return Carried(new, kept, found.batteries)
+    most = tuple(sum(count * usable[size] for size, count in use.cylinders.items()) for use in found.uses)
+    return Carried(new, most, found.batteries)
 
 
 def _part_supply(need: Demand, use: LegUse, chance: float) -> PartSupply:
@@ -228,12 +305,6 @@ def _part_supply(need: Demand, use: LegUse, chance: float) -> PartSupply:
         undecided=need.undecided,
         run_out_chance=chance,
     )
-
-
-def _peak_kg(found: Selection, stronger: Stronger, power: Power | None) -> float:
-    batteries = 0.0 if power is None else stronger.extra_batteries * power.battery_mass_kg
-    cylinders = 0.0 if stronger.choice is None else stronger.extra_cylinders * stronger.choice.gross_kg
-    return found.peak_kg + batteries + cylinders
 
 
 def _lighter(

@@ -48,10 +48,13 @@ def turn_back(
         readings: list[tuple[str, float]] = []
         fresh = 0
         if litres > 0.0:
+            usable = {one: sizes[one].usable_l(residual_bar) * count for one, count in use.cylinders.items()}
             for size_id, count in use.cylinders.items():
-                reading, fresh_here = _reading(sizes[size_id], count, litres, residual_bar, temperature_c)
+                beside = sum(usable.values()) - usable[size_id]  # the cylinders of other sizes, full
+                own = max(litres - beside, 0.0)
+                reading, fresh_here = _reading(sizes[size_id], count, own, residual_bar, temperature_c)
                 readings.append((sizes[size_id].name, reading))
-                fresh = max(fresh, fresh_here)
+                fresh = max(fresh, fresh_here + sum(use.cylinders.values()) - count)
         percent = _battery_percent(legs, uses, number, power, batteries)
         if readings or percent is not None:
             found.append(

@@ -11,7 +11,7 @@ from planner.kit.legs import Leg, Power
 ASSUMED = Assumptions(flow_sd=0.0, fill_sd=0.0, battery_sd=0.0, left_running=0.0)
 ROAD = Leg("r", "Road", 2.0, 2.0, 120.0, None, False, False, False, False, False, False, None, False)
 FLIGHT = Leg("f", "Flight", 3.0, 3.0, None, 50.0, False, False, False, False, True, False, None, False)
-POWER = Power("c", "Concentrator", 6.0, 90.0, 100.0, 0.8, 1, 100.0, 10)
+POWER = Power("c", "Concentrator", 6.0, 90.0, 100.0, 100.0, 0.8, 1, 100.0, 10)
 
 
 def certain(legs, waits_h=None, **changes):
@@ -29,19 +29,19 @@ def trips(legs, draws=4000, seed=1, waits_min=None):
 
 
 def test_a_trip_on_time_uses_what_it_needs():
-    played = play([ROAD], Carried((300.0,), (True,), 0), None, certain([ROAD]), ASSUMED)
+    played = play([ROAD], Carried((300.0,), (1e6,), 0), None, certain([ROAD]), ASSUMED)
     assert played.short_h[0, 0] == 0.0
     assert played.litres_left[0, 0] == pytest.approx(60.0)
 
 
 def test_what_is_missing_is_told_in_hours():
-    played = play([ROAD], Carried((120.0,), (True,), 0), None, certain([ROAD]), ASSUMED)
+    played = play([ROAD], Carried((120.0,), (1e6,), 0), None, certain([ROAD]), ASSUMED)
     assert played.short_h[0, 0] == pytest.approx(1.0)
 
 
 def test_a_flights_delay_is_spent_waiting_in_the_part_before_it():
     legs = [ROAD, FLIGHT]
-    carried = Carried((300.0, 0.0), (True, False), 2)
+    carried = Carried((300.0, 0.0), (1e6, 0.0), 2)
     late = play(legs, carried, POWER, certain(legs, waits_h=[0.0, 1.0]), ASSUMED)
     assert late.short_h[0, 0] == pytest.approx(0.5)  # three hours at 120 L/h need 360 L
     assert late.short_h[0, 1] == 0.0
@@ -49,7 +49,7 @@ def test_a_flights_delay_is_spent_waiting_in_the_part_before_it():
 
 def test_the_carriers_oxygen_comes_first_and_the_battery_stays_full():
     leg = replace(FLIGHT, airline=True)
-    played = play([leg], Carried((0.0,), (False,), 1), POWER, certain([leg]), ASSUMED)
+    played = play([leg], Carried((0.0,), (0.0,), 1), POWER, certain([leg]), ASSUMED)
     assert played.short_h[0, 0] == 0.0
     assert played.watt_hours_left[0, 0] == pytest.approx(100.0)
 
@@ -57,7 +57,7 @@ def test_the_carriers_oxygen_comes_first_and_the_battery_stays_full():
 def test_when_the_carriers_oxygen_is_missing_the_battery_helps_and_the_cause_is_named():
     leg = replace(FLIGHT, airline=True)
     no_airline = certain([leg], airline_ok=np.zeros((1, 1), dtype=bool))
-    played = play([leg], Carried((0.0,), (False,), 1), POWER, no_airline, ASSUMED)
+    played = play([leg], Carried((0.0,), (0.0,), 1), POWER, no_airline, ASSUMED)
     assert played.short_h[0, 0] == pytest.approx(1.0)  # 100 Wh at 50 W cover 2 of 3 h
     assert run_out(played).by_cause["promised oxygen was missing"] == 1.0
 
@@ -65,7 +65,7 @@ def test_when_the_carriers_oxygen_is_missing_the_battery_helps_and_the_cause_is_
 def test_charge_for_the_next_flight_is_kept_and_the_cylinder_used_before_it():
     road = replace(ROAD, concentrator_w=50.0)
     legs = [road, replace(FLIGHT, hours=2.0, oxygen_h=2.0)]
-    played = play(legs, Carried((240.0, 0.0), (True, False), 2), POWER, certain(legs), ASSUMED)
+    played = play(legs, Carried((240.0, 0.0), (1e6, 0.0), 2), POWER, certain(legs), ASSUMED)
     assert played.short_h.sum() == 0.0
     assert played.litres_left[0, 0] == pytest.approx(120.0)  # 50 Wh may be spent, 150 Wh wait for the flight
     assert played.watt_hours_left[0, 0] == pytest.approx(150.0)
@@ -74,13 +74,13 @@ def test_charge_for_the_next_flight_is_kept_and_the_cylinder_used_before_it():
 def test_a_plug_gives_oxygen_and_charges():
     wait = replace(ROAD, cylinder_l_per_h=None, concentrator_w=50.0, mains=True)
     legs = [FLIGHT, wait]
-    played = play(legs, Carried((0.0, 0.0), (False, False), 2), POWER, certain(legs), ASSUMED)
+    played = play(legs, Carried((0.0, 0.0), (0.0, 0.0), 2), POWER, certain(legs), ASSUMED)
     assert played.watt_hours_left[0].tolist() == pytest.approx([50.0, 200.0])
 
 
 def test_a_broken_concentrator_is_named_as_the_cause():
     broken = certain([FLIGHT], failure_h=np.array([1.0]))
-    played = play([FLIGHT], Carried((0.0,), (False,), 3), POWER, broken, ASSUMED)
+    played = play([FLIGHT], Carried((0.0,), (0.0,), 3), POWER, broken, ASSUMED)
     assert played.short_h[0, 0] == pytest.approx(3.0)
     assert run_out(played).by_cause["concentrator failed"] == 1.0
 
@@ -89,7 +89,7 @@ def test_parts_and_causes_add_up_to_the_chance():
     legs = [ROAD, FLIGHT, replace(ROAD, part_id="b")]
     waits = np.random.default_rng(3).exponential(30.0, (4000, 3))
     found = run_out(
-        play(legs, Carried((700.0, 0, 0), (True, True, True), 3), POWER, trips(legs, waits_min=waits), ASSUMED)
+        play(legs, Carried((700.0, 0, 0), (1e6, 1e6, 1e6), 3), POWER, trips(legs, waits_min=waits), ASSUMED)
     )
     assert 0.0 < found.chance < 1.0
     assert sum(found.by_leg) == pytest.approx(found.chance)
@@ -102,8 +102,8 @@ def test_more_of_anything_never_raises_the_chance_on_the_same_trips(more):
     legs = [replace(ROAD, concentrator_w=50.0), FLIGHT, replace(ROAD, part_id="b", concentrator_w=50.0)]
     waits = np.random.default_rng(3).exponential(40.0, (4000, 3))
     drawn = trips(legs, waits_min=waits)
-    carried = Carried((250.0, 0.0, 0.0), (True, True, True), 3)
-    larger = Carried((250.0 + more.get("litres", 0.0), 0.0, 0.0), (True, True, True), 3 + more.get("batteries", 0))
+    carried = Carried((250.0, 0.0, 0.0), (1e6, 1e6, 1e6), 3)
+    larger = Carried((250.0 + more.get("litres", 0.0), 0.0, 0.0), (1e6, 1e6, 1e6), 3 + more.get("batteries", 0))
     before, after = (run_out(play(legs, one, POWER, drawn, Assumptions())).chance for one in (carried, larger))
     assert after <= before
 
@@ -128,3 +128,28 @@ def test_draws_follow_their_assumptions():
 def test_the_stress_case_makes_every_flight_late_and_nothing_else():
     drawn = on_time([ROAD, FLIGHT], 180.0)
     assert drawn.waits_h.tolist() == [[0.0, 3.0]]
+
+
+def test_gas_left_behind_before_a_flight_is_not_there_after_it():
+    # Two cylinders of 300 L; only one may fly on, though nothing of the other was used.
+    still = replace(ROAD, oxygen_h=0.0)
+    legs = [still, replace(ROAD, part_id="b", hours=4.0, oxygen_h=4.0)]
+    played = play(legs, Carried((600.0, 0.0), (600.0, 300.0), 0), None, certain(legs), ASSUMED)
+    assert played.short_h[0, 1] == pytest.approx(1.5)  # 300 of 480 L
+
+
+def test_swapped_cylinders_do_not_add_to_what_was_left_in_the_old_ones():
+    legs = [replace(ROAD, hours=1.0, oxygen_h=1.0), replace(ROAD, part_id="b")]
+    played = play(legs, Carried((300.0, 300.0), (300.0, 300.0), 0), None, certain(legs), ASSUMED)
+    assert played.litres_left[0].tolist() == pytest.approx([180.0, 60.0])
+
+
+def test_the_wait_before_a_trip_that_begins_with_a_flight_is_spent_on_its_own_oxygen():
+    played = play([FLIGHT], Carried((0.0,), (0.0,), 2), POWER, certain([FLIGHT], waits_h=[2.0]), ASSUMED)
+    assert played.short_h[0, 0] == pytest.approx(1.0)  # 200 Wh at 50 W cover 4 of 5 h
+
+
+def test_a_plug_gives_nothing_where_no_concentrator_is_carried():
+    wait = replace(ROAD, cylinder_l_per_h=None, concentrator_w=50.0, mains=True)
+    played = play([wait], Carried((0.0,), (0.0,), 0), None, certain([wait]), ASSUMED)
+    assert played.short_h[0, 0] == pytest.approx(2.0)

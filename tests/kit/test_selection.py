@@ -29,7 +29,7 @@ LEG = Leg(
 )
 SMALL = Choice("small", "1 L", 190.0, 212.0, 2.1, None, True)
 LARGE = Choice("large", "3 L", 580.0, 636.0, 5.2, None, False)
-POWER = Power("c", "Concentrator", 6.0, 90.0, 95.0, 0.8, 1, 120.0, 10)
+POWER = Power("c", "Concentrator", 6.0, 90.0, 95.0, 95.0, 0.8, 1, 120.0, 10)
 
 
 def flight(**changes):
@@ -181,3 +181,23 @@ def test_a_fixed_number_of_batteries_is_kept():
 def test_the_search_can_be_stopped():
     with pytest.raises(Cancelled):
         chosen([LEG], cancelled=lambda: True)
+
+
+def test_a_plug_at_the_seat_does_not_replace_the_charge_for_150_percent():
+    leg = replace(flight(), hours=4.0, oxygen_h=4.0, mains=True)
+    assert chosen([leg], power=POWER).batteries * POWER.battery_wh >= FLIGHT_RULE * 50.0 * 4.0
+    assert chosen([leg], power=POWER, batteries=1).uncovered_h == pytest.approx(4.0)
+
+
+def test_more_own_batteries_than_can_be_carried_are_said_as_weight_above_the_limit():
+    found = chosen([replace(flight(), carry_limit_kg=5.0)], power=POWER, batteries=10)
+    assert found.batteries == 10
+    assert found.uses[0].over_limit_kg == pytest.approx(found.uses[0].mass_kg - 5.0, abs=1e-3)
+    within = chosen([replace(flight(), carry_limit_kg=15.0)], power=POWER, batteries=10)
+    assert within.uses[0].over_limit_kg == 0.0
+
+
+def test_no_more_batteries_are_chosen_than_may_be_carried():
+    found = chosen([replace(flight(), hours=6.0, oxygen_h=6.0)], power=replace(POWER, most_batteries=3))
+    assert found.batteries <= 3
+    assert found.uncovered_h == pytest.approx(6.0)

@@ -9,9 +9,12 @@ from planner.case import Case
 from planner.catalogue import profile_text
 from planner.errors import InputError
 from planner.kit.cylinder import contents_l
+from planner.kit.legs import Leg
 from planner.kit.programme import Cancelled
+from planner.kit.selection import LegUse
 from planner.kit.sizes import load_cylinders
 from planner.kit.supply import plan_kit
+from planner.kit.turn_back import turn_back
 from planner.trip.itinerary import lay_out
 
 
@@ -179,3 +182,120 @@ def test_work_can_be_stopped_and_tells_how_far_it_is():
     assert [share for _, share in told] == sorted(share for _, share in told)
     with pytest.raises(Cancelled):
         kit_of(cylinder_road(), cancelled=lambda: True)
+
+
+def own_packs(tmp_path, monkeypatch, watt_hours):
+    """A service's own concentrator class, like the dual one with other packs."""
+    text = profile_text("concentrators.toml")
+    entry = "[[entry]]" + next(one for one in text.split("[[entry]]") if 'id = "portable_dual"' in one)
+    entry = entry.replace("portable_dual", "own").replace("battery_wh = 95", f"battery_wh = {watt_hours}")
+    header = 'format = "oxygen-concentrators"\nversion = 1\n'
+    (tmp_path / "concentrators.toml").write_text(header + entry)
+    monkeypatch.setenv("PLANNER_PROFILES_DIR", str(tmp_path))
+
+
+def flight_on_concentrator(minutes=300, concentrator_id="own", part=None, **kit):
+    """A flight on a concentrator at 2 L/min (100 W)."""
+    leg = {"part_id": "f", "kind": "flight", "duration_min": minutes, "sources": ["concentrator"]} | (part or {})
+    decision = {"part_id": "f", "activity": "rest", "device_id": "cannula", "flow_l_min": 2.0}
+    kit = {"country": "EU", "concentrator_id": concentrator_id} | kit
+    return demo("copd_layover", trip={"parts": [leg]}, decisions=[decision], kit=kit)
+
+
+def packs(plan):
+    return sum(item.count for item in plan.items if item.what.startswith("Battery"))
+
+
+def test_at_most_two_spares_above_100_wh_fly(tmp_path, monkeypatch):
+    own_packs(tmp_path, monkeypatch, 150)
+    plan = kit_of(flight_on_concentrator(180))
+    assert 0 < packs(plan) <= 4  # two in the device and two spares
+    longer = kit_of(flight_on_concentrator(600))
+    assert longer.uncovered_h == pytest.approx(10.0)
+    entered = kit_of(flight_on_concentrator(180, batteries=7))
+    assert packs(entered) <= 4
+    assert any("7 batteries of 150 Wh were entered; 4 are planned" in fault for fault in entered.faults)
+
+
+def test_the_rule_goes_by_the_energy_printed_on_an_old_pack(tmp_path, monkeypatch):
+    own_packs(tmp_path, monkeypatch, 105)
+    plan = kit_of(flight_on_concentrator(60, battery_age_years=3.0))
+    assert any(one.lead == "Batteries need consent." for one in plan.cautions)
+
+
+def test_packs_above_160_wh_are_not_planned_on_a_trip_with_a_flight(tmp_path, monkeypatch):
+    own_packs(tmp_path, monkeypatch, 180)
+    plan = kit_of(flight_on_concentrator(60))
+    assert packs(plan) == 0
+    assert plan.uncovered_h == pytest.approx(1.0)
+    assert any("above the 160 Wh" in fault for fault in plan.faults)
+
+
+def test_a_stationary_concentrator_is_not_planned_in_a_cabin_with_a_plug():
+    plan = kit_of(flight_on_concentrator(120, "stationary_5", part={"power": "mains"}))
+    assert plan.uncovered_h == pytest.approx(2.0)
+    assert any("not for use in an aircraft cabin" in fault for fault in plan.faults)
+
+
+def test_own_batteries_above_the_weight_that_can_be_carried_are_said():
+    part = {"carry_limit_kg": 5.0}
+    plan = kit_of(flight_on_concentrator(120, "portable_dual", part=part, batteries=8))
+    assert any("kg carried are above the 5 kg" in fault for fault in plan.faults)
+
+
+def test_a_gauge_above_what_the_cylinder_can_have_counts_as_empty_and_is_said():
+    owned = [{"size_id": "eu_2", "count": 1, "gauge_bar": 340.0, "temperature_c": 15.0}]
+    plan = kit_of(cylinder_road(2.0, 240, owned_cylinders=owned))
+    assert plan.uncovered_h == pytest.approx(4.0)
+    assert any("340 bar" in fault and "counts as empty" in fault for fault in plan.faults)
+
+
+def test_an_empty_own_cylinder_takes_nothing_from_a_full_one():
+    def uncovered(*gauges):
+        owned = [{"size_id": "eu_2", "count": 1, "gauge_bar": gauge, "temperature_c": 15.0} for gauge in gauges]
+        return kit_of(cylinder_road(2.0, 240, owned_cylinders=owned)).uncovered_h
+
+    assert uncovered(100.0, 2.0) == pytest.approx(uncovered(100.0), abs=0.01)
+
+
+def test_sizes_beyond_those_compared_are_named():
+    plan = kit_of(cylinder_road(offered_size_ids=["eu_1", "eu_2", "eu_3", "eu_5", "eu_10"]))
+    assert any("left out: 10 L, 200 bar" in fault for fault in plan.faults)
+
+
+def test_liquid_is_said_with_its_mass_and_never_for_a_flight():
+    def faults(kind):
+        part = {"part_id": "r", "kind": kind, "duration_min": 240, "sources": ["liquid"]}
+        decision = {"part_id": "r", "activity": "rest", "device_id": "cannula", "flow_l_min": 2.0}
+        return kit_of(demo("copd_layover", trip={"parts": [part]}, decisions=[decision], kit={})).faults
+
+    assert any("0.7 kg of liquid" in fault for fault in faults("road"))
+    assert any("never carried on aircraft" in fault for fault in faults("flight"))
+
+
+def test_with_a_full_cylinder_of_another_size_beside_it_the_reading_is_lower():
+    leg = Leg("r", "Road", 4.0, 4.0, 120.0, None, False, False, False, False, False, False, None, False)
+    sizes = load_cylinders()
+
+    def reading(cylinders):
+        use = LegUse("r", 0.0, 0.0, {"cylinder": 4.0}, cylinders, cylinders, {}, {"eu_3": 480.0}, 0.0, 5.0, 0.0)
+        found = turn_back([leg], [use], sizes, None, 0, reserve_fraction=0.0, residual_bar=14.0)
+        return dict(found[0].gauge_bar)["3 L, 200 bar"], found[0].fresh_cylinders
+
+    alone, _ = reading({"eu_3": 1})
+    beside, fresh = reading({"eu_3": 1, "eu_1": 1})
+    held = contents_l(3.0, beside) - contents_l(3.0, 14.0)
+    assert held == pytest.approx(480.0 - (contents_l(1.0, 200.0) - contents_l(1.0, 14.0)), rel=0.01)
+    assert beside < alone
+    assert fresh == 1
+
+
+def test_a_concentrator_left_at_home_gives_nothing_at_a_plug():
+    case = cylinder_road(1.0, 60)
+    part = json.loads(case.trip.model_dump_json())["parts"][0]
+    part |= {"sources": ["cylinder", "concentrator"], "power": "mains"}
+    decisions = json.loads(case.model_dump_json())["decisions"]
+    kit = {"country": "EU", "concentrator_id": "portable_dual"}
+    plan = kit_of(demo("copd_layover", trip={"parts": [part]}, decisions=decisions, kit=kit))
+    assert all("oncentrator" not in item.what for item in plan.items)
+    assert plan.left.litres[-1] == pytest.approx(plan.left.litres[0] - 60 * 1.05, abs=0.5)  # with 5 % left running

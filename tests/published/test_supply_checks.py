@@ -8,10 +8,12 @@ import pytest
 
 from planner.air.atmosphere import isa_pressure_mmhg
 from planner.delivery.cannula import mass_flow_l_min
+from planner.delivery.pulse import INHALED_SHARE
 from planner.kit.cylinder import contents_l, duration_min, gauge_bar, oxygen_mass_kg, textbook_minutes
 from planner.kit.endurance import wilson
+from planner.kit.liquid import gas_l_of_mass, gas_l_of_volume
 from planner.kit.selection import FLIGHT_RULE
-from planner.units import bar_from_psi, m_from_ft
+from planner.units import bar_from_psi, kg_from_lb, m_from_ft
 
 CHECKS = {one["id"]: one for one in json.loads((Path(__file__).parent / "supply.json").read_text())["checks"]}
 
@@ -74,6 +76,33 @@ def test_masses_of_oxygen():
 
 def test_a_full_cylinder_at_50_degrees():
     near("eos-05", gauge_bar(contents_l(1.0, 200.0, 15.0), 1.0, 50.0))
+
+
+def test_days_on_a_liquid_reservoir():
+    # The test bank counts 344 L to the pound at 21 degC; by mass at 15 degC it is 2 to 3 % less.
+    given = CHECKS["lox-01"]["input"]
+    litres = gas_l_of_mass(kg_from_lb(float(given["lb"])))
+    days = duration_min(litres, float(given["flow"])) / 60.0 / given["h_per_day"]
+    assert days == pytest.approx(CHECKS["lox-01"]["expected"], rel=0.03)
+    assert gas_l_of_mass(kg_from_lb(1.0)) == pytest.approx(CHECKS["lox-05"]["expected"], rel=0.03)
+
+
+def test_hours_on_a_liquid_reservoir_with_its_printed_contents():
+    given = CHECKS["lox-02"]["input"]
+    near("lox-02", duration_min(float(given["gas_L"]), float(given["flow"])) / 60.0)
+    assert gas_l_of_volume(31.0) == pytest.approx(given["gas_L"], rel=0.01)
+
+
+def test_the_printed_contents_of_a_liquid_vessel():
+    assert gas_l_of_volume(float(CHECKS["lox-03"]["input"]["liquid_L"])) == pytest.approx(
+        CHECKS["lox-03"]["expected"], rel=0.02
+    )
+
+
+def test_the_savings_ratio_of_a_pulse_at_20_breaths_a_minute():
+    given = CHECKS["cons-01"]["input"]
+    near("cons-01", 1000.0 * given["setting"] / (given["bolus_ml_per_setting"] * given["setting"] * given["rate"]))
+    assert pytest.approx(CHECKS["cons-01"]["expected"], abs=0.01) == 1.0 / INHALED_SHARE
 
 
 def test_meters_at_8000_ft():
