@@ -12,10 +12,12 @@ from planner.guidance.cautions import load_conditions
 from planner.guidance.pathway_file import FOLDER, read_pathway
 from planner.kit.sizes import load_concentrators, load_cylinders
 from planner.records.reading import read_case
+from planner.trip.cabins import measured_cabins
 from planner.trip.places import by_id
 
 _ROOMS: dict[str, Callable[[], object]] = {
     "airports.json": lambda: by_id("XXX"),
+    "cabins.toml": measured_cabins,
     "cautions.toml": load_conditions,
     "concentrators.toml": load_concentrators,
     "cylinders.toml": load_cylinders,

@@ -197,6 +197,20 @@ def _from_entries(case: Case) -> list[CautionFinding]:
                 "UK Civil Aviation Authority, guidance for health professionals",
             )
         )
+    usual_m = case.policy.planning_cabin_altitude_m
+    lower = [part for part in case.trip.parts if part.cabin_altitude_m is not None and part.cabin_altitude_m < usual_m]
+    if lower:
+        names = ", ".join(dict.fromkeys(part.name or "a flight" for part in lower))
+        findings.append(
+            CautionFinding(
+                "lower_cabin",
+                "A lower cabin is planned",
+                "note",
+                f"In {names} the cabin is planned below {usual_m:,.0f} m. Aircraft are exchanged at short notice, so a "
+                "lower cabin cannot be relied on; plan for the usual one.",
+                "Planning rule of this program",
+            )
+        )
     return findings
 
 

@@ -155,3 +155,9 @@ def test_a_faulty_condition_of_a_service_is_refused_by_key(changes, key):
     with pytest.raises(ProfileError) as refusal:
         cautions._read(row | changes)
     assert refusal.value.key == f"x.{key}"
+
+
+@pytest.mark.parametrize(("cabin_m", "said"), [(1800.0, True), (2500.0, False), (None, False)])
+def test_a_lower_cabin_is_not_relied_on(cabin_m, said):
+    found = findings(parts=(FLIGHT | {"cabin_altitude_m": cabin_m},))
+    assert ("lower_cabin" in found) is said

@@ -70,6 +70,13 @@ class PartForm(Stack):
                 ),
             )
         )  # fmt: skip
+        self.add_widget(Fold("What cabins were measured at", "Published series of flights", self._fill_cabins))
+
+    def _fill_cabins(self, body: BoxLayout) -> None:
+        from planner.trip.cabins import measured_cabins
+
+        for one in measured_cabins():
+            body.add_widget(Text(plain(f"{one.name}: {one.text}. {one.source}."), role="label"))
 
     def _airport(self, name: str, label: str) -> SearchEntry:
         path = f"{self.path}.{name}"
