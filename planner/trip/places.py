@@ -40,16 +40,19 @@ def search(text: str, limit: int = 20) -> tuple[Place, ...]:
     if not wanted:
         return ()
     places, keys = _places()
+    at_a_word = f" {wanted}"
     ranked: list[tuple[int, str, Place]] = []
     for place, (code, city, name) in zip(places.values(), keys, strict=True):
+        in_words = at_a_word in city or at_a_word in name
+        if not in_words and not code.startswith(wanted):
+            continue
         if code == wanted:
-            ranked.append((0, city, place))
-        elif city.startswith(wanted) or name.startswith(wanted):
-            ranked.append((1, city, place))
-        elif code.startswith(wanted):
-            ranked.append((2, city, place))
-        elif f" {wanted}" in city or f" {wanted}" in name:
-            ranked.append((3, city, place))
+            rank = 0
+        elif city.startswith(at_a_word) or name.startswith(at_a_word):
+            rank = 1
+        else:
+            rank = 3 if in_words and not code.startswith(wanted) else 2
+        ranked.append((rank, city, place))
     ranked.sort(key=lambda one: (one[0], one[1], one[2].place_id))
     return tuple(place for _, _, place in ranked[:limit])
 
@@ -74,8 +77,9 @@ def planning_flight_min(distance_km: float) -> float:
 
 @cache
 def _places() -> tuple[dict[str, Place], tuple[tuple[str, str, str], ...]]:
+    """Places by code, and for each its code, city and name in small plain letters, the last two after a space."""
     places = {row[0]: Place(*row) for row in read_profile("airports.json")["rows"]}
-    keys = tuple((place.place_id.lower(), _plain(place.city), _plain(place.name)) for place in places.values())
+    keys = tuple((one.place_id.lower(), f" {_plain(one.city)}", f" {_plain(one.name)}") for one in places.values())
     return places, keys
 
 

@@ -41,6 +41,18 @@ TEMPLATES = (
         "By car to the mountains, with nights",
         (("road", "Road up", 180), ("stay", "Three nights", 4320)),
     ),
+    Template(
+        "train",
+        "By train",
+        (("road", "To the station", 30), ("wait", "Wait", 30), ("rail", "Train", 240),
+         ("road", "From the station", 30)),
+    ),
+    Template(
+        "ship",
+        "By ship",
+        (("road", "To the harbour", 60), ("wait", "Boarding", 90), ("ship", "Ship", 600),
+         ("road", "From the harbour", 60)),
+    ),
 )  # fmt: skip
 
 
