@@ -32,6 +32,18 @@ def cabin_altitude_m(
     return start + end - cruise_m
 
 
+def cabin_corners_min(
+    duration_min: float, origin_m: float, destination_m: float, cruise_m: float
+) -> tuple[float, float, float]:
+    """Minutes at which the cabin's profile bends: cruise reached, cruise left, and where a short flight turns."""
+    reached = abs(cruise_m - origin_m) / (CLIMB_M_PER_MIN if origin_m <= cruise_m else DESCENT_M_PER_MIN)
+    left = duration_min - abs(cruise_m - destination_m) / (
+        DESCENT_M_PER_MIN if destination_m <= cruise_m else CLIMB_M_PER_MIN
+    )
+    turn = (destination_m - origin_m + DESCENT_M_PER_MIN * duration_min) / (CLIMB_M_PER_MIN + DESCENT_M_PER_MIN)
+    return reached, left, turn
+
+
 def _side(field_m: float, cruise_m: float, away_min: Array, up: float, down: float) -> Array:
     if cruise_m >= field_m:
         return np.minimum(cruise_m, field_m + up * away_min)

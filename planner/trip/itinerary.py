@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from datetime import datetime, timedelta
 from typing import Literal
@@ -12,7 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from planner.air.atmosphere import isa_pressure_mmhg, mountain_pressure_mmhg
-from planner.air.cabin import cabin_altitude_m
+from planner.air.cabin import cabin_altitude_m, cabin_corners_min
 from planner.air.inspired import inspired_po2_mmhg
 from planner.air.ranges import Array
 from planner.case.policy import Policy
@@ -99,11 +99,17 @@ def lay_out(trip: Trip, policy: Policy) -> Timeline:
     )
 
 
+def elevations_at_start(timeline: Timeline) -> tuple[float | None, ...]:
+    """Altitude at which each part begins, None where it is not known."""
+    firsts = [float(timeline.altitude_m[timeline.part_index == number][0]) for number in range(len(timeline.parts))]
+    return tuple(None if np.isnan(first) else first for first in firsts)
+
+
 def _altitude_profile(part: Part, here_m: float | None, policy: Policy) -> tuple[Array, Array, tuple[str, ...]]:
     """Minutes within the part, altitude there (NaN where not known), and what must be asked."""
-    at = _sample_minutes(part)
     if part.kind == "flight":
-        return at, *_cabin(part, at, here_m, policy)
+        return _cabin(part, here_m, policy)
+    at = _sample_minutes(part, _ground_corners(part))
     start = part.start_elevation_m if part.start_elevation_m is not None else here_m
     if part.profile:
         known_at = np.array([point.at_min for point in part.profile])
@@ -118,17 +124,28 @@ def _altitude_profile(part: Part, here_m: float | None, policy: Policy) -> tuple
     return at, np.interp(at, [0.0, middle, part.duration_min], [start, part.highest_m, end]), ()
 
 
-def _cabin(part: Part, at: Array, here_m: float | None, policy: Policy) -> tuple[Array, tuple[str, ...]]:
-    origin = _field_m(part.origin_place_id, here_m)
-    destination = _field_m(part.destination_place_id, None)
+def _cabin(part: Part, here_m: float | None, policy: Policy) -> tuple[Array, Array, tuple[str, ...]]:
+    """As _altitude_profile. Towards a field that is not known the cabin stays at its cruise value."""
+    cruise = part.cabin_altitude_m if part.cabin_altitude_m is not None else policy.planning_cabin_altitude_m
+    origin, destination = _origin_m(part, here_m), _destination_m(part)
     unknown = []
     if origin is None:
-        unknown.append(f"The elevation where {part.name or 'the flight'} starts is not known; enter the airport.")
+        unknown.append(_ask(part, part.origin_place_id, "starts"))
     if destination is None:
-        unknown.append(f"The elevation where {part.name or 'the flight'} lands is not known; enter the airport.")
-    cruise = part.cabin_altitude_m if part.cabin_altitude_m is not None else policy.planning_cabin_altitude_m
-    cabin = cabin_altitude_m(at, part.duration_min, origin or 0.0, destination or 0.0, cruise)
-    return cabin, tuple(unknown)
+        unknown.append(_ask(part, part.destination_place_id, "lands"))
+    fields = (cruise if origin is None else origin, cruise if destination is None else destination)
+    at = _sample_minutes(part, cabin_corners_min(part.duration_min, *fields, cruise))
+    return at, cabin_altitude_m(at, part.duration_min, *fields, cruise), tuple(unknown)
+
+
+def _ask(part: Part, place_id: str | None, does: str) -> str:
+    missing = f"The elevation where {part.name or 'the flight'} {does} is not known"
+    place = by_id(place_id) if place_id else None
+    if place is not None:
+        return f"{missing}: the airport data have none for {place.name} ({place.place_id}); enter it."
+    if place_id:
+        return f"{missing}: there is no airport {place_id!r} in the list; choose one, or enter the elevation."
+    return f"{missing}; enter the airport."
 
 
 def _where_known(formula: Callable[[Array], Array], values: Array) -> Array:
@@ -140,25 +157,39 @@ def _where_known(formula: Callable[[Array], Array], values: Array) -> Array:
     return result
 
 
-def _field_m(place_id: str | None, known_m: float | None) -> float | None:
+def _origin_m(part: Part, here_m: float | None) -> float | None:
+    """What was typed, else the airport's field, else where the part before ended."""
+    return next((m for m in (part.start_elevation_m, _field_m(part.origin_place_id), here_m) if m is not None), None)
+
+
+def _destination_m(part: Part) -> float | None:
+    typed = part.end_elevation_m
+    return typed if typed is not None else _field_m(part.destination_place_id)
+
+
+def _field_m(place_id: str | None) -> float | None:
     place = by_id(place_id) if place_id else None
-    return place.elevation_m if place is not None else known_m
+    return place.elevation_m if place is not None else None
 
 
 def _last(altitude: Array, part: Part) -> float | None:
     if part.kind == "flight":
-        return _field_m(part.destination_place_id, None)
+        return _destination_m(part)
     return None if np.isnan(altitude[-1]) else float(altitude[-1])
 
 
-def _sample_minutes(part: Part) -> Array:
+def _sample_minutes(part: Part, corners: Sequence[float]) -> Array:
     """Minutes at which a part is sampled: evenly, and at every corner of its altitude, so that no peak is missed."""
     step = LONG_STEP_MIN if part.kind == "stay" else STEP_MIN
     even = np.linspace(0.0, part.duration_min, max(int(np.ceil(part.duration_min / step)), 2) + 1)
-    corners = [part.duration_min / 2.0]
-    if part.profile and part.profile[-1].at_min > 0.0:
-        corners += [point.at_min * part.duration_min / part.profile[-1].at_min for point in part.profile]
-    return np.unique(np.concatenate([even, np.minimum(corners, part.duration_min)]))
+    return np.unique(np.concatenate([even, np.clip(corners, 0.0, part.duration_min)]))
+
+
+def _ground_corners(part: Part) -> list[float]:
+    """The top of a pass, and each point of a recorded profile stretched to the part's duration."""
+    end = part.profile[-1].at_min if part.profile else 0.0
+    stretched = [point.at_min * part.duration_min / end for point in part.profile] if end > 0.0 else []
+    return [part.duration_min / 2.0, *stretched]
 
 
 def _hours_high(at: Array, altitude: Array, before: float, *, counted: bool) -> Array:

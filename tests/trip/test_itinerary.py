@@ -10,9 +10,11 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from planner.air.atmosphere import isa_pressure_mmhg, mountain_pressure_mmhg
+from planner.air.cabin import cabin_altitude_m
 from planner.case.policy import Policy
 from planner.case.trip import Trip
-from planner.trip.itinerary import lay_out
+from planner.trip.itinerary import elevations_at_start, lay_out
+from planner.trip.places import by_id
 
 ROAD = {"part_id": "r", "kind": "road", "duration_min": 90, "name": "Road"}
 FLIGHT = {
@@ -81,6 +83,39 @@ def test_an_unknown_airport_is_asked_for_and_the_cabin_still_planned():
     assert span.highest_m == pytest.approx(2438.4)
 
 
+def test_a_cabin_is_never_taken_down_to_sea_level_at_a_field_whose_elevation_is_not_known():
+    into = laid(FLIGHT | {"destination_place_id": "XNN"})  # Xining: the data have no elevation
+    assert into.altitude_m[-1] == pytest.approx(2438.4)
+    assert into.altitude_m[0] == pytest.approx(-3.4, abs=1.0)
+    out = laid(FLIGHT | {"origin_place_id": "XNN"}, home_elevation_m=None)
+    assert out.altitude_m[0] == pytest.approx(2438.4)
+    assert into.parts[0].unknown == (
+        "The elevation where the flight lands is not known: the airport data have none for "
+        "Xining Caojiabu Airport (XNN); enter it.",
+    )
+
+
+def test_an_elevation_typed_for_a_flight_answers_for_its_airport_and_for_what_follows():
+    typed = laid(FLIGHT | {"destination_place_id": "XNN", "end_elevation_m": 2184.0}, ROAD)
+    assert typed.parts[0].unknown == ()
+    assert typed.altitude_m[typed.part_index == 0][-1] == pytest.approx(2184.0)
+    assert typed.parts[1].highest_m == 2184.0
+
+
+def test_an_airport_nobody_knows_is_said_and_where_the_road_ended_stands_in():
+    span = laid(FLIGHT | {"destination_place_id": "QQQ"}).parts[0]
+    assert "there is no airport 'QQQ' in the list" in span.unknown[0]
+    assert laid(FLIGHT | {"origin_place_id": "XNN"}).altitude_m[0] == 100.0
+
+
+@pytest.mark.parametrize("minutes", [21, 33, 42, 43, 44, 58])
+def test_the_top_of_a_flight_too_short_to_cruise_is_never_missed(minutes):
+    flight = laid(FLIGHT | {"duration_min": minutes, "destination_place_id": "BRU"})
+    fine = np.linspace(0.0, minutes, 50_001)
+    top = cabin_altitude_m(fine, minutes, by_id("AMS").elevation_m, by_id("BRU").elevation_m, 2438.4).max()
+    assert flight.parts[0].highest_m == pytest.approx(top, abs=0.5)
+
+
 def test_the_planning_cabin_altitude_is_the_services_and_a_flights_own_comes_first():
     lower = Policy(planning_cabin_altitude_m=1828.8)
     assert laid(FLIGHT, policy=lower).parts[0].highest_m == pytest.approx(1828.8)
@@ -138,6 +173,12 @@ def test_the_worst_moment_of_a_stay_is_its_acute_start():
 def test_shares_of_activities_are_carried():
     part = laid(ROAD | {"shares": {"rest": 0.5, "walking": 0.2, "asleep": 0.3}}).parts[0]
     assert part.shares == {"rest": 0.5, "walking": 0.2, "asleep": 0.3}
+
+
+def test_where_each_part_begins_is_told_or_not_known():
+    known = laid(ROAD | {"end_elevation_m": 2500.0}, {"part_id": "s", "kind": "stay", "duration_min": 600})
+    assert elevations_at_start(known) == (100.0, 2500.0)
+    assert elevations_at_start(laid(ROAD, home_elevation_m=None)) == (None,)
 
 
 minutes = st.floats(1.0, 3000.0)

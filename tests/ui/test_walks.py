@@ -413,6 +413,19 @@ def test_a_trip_is_started_from_a_template_and_gets_its_way_back(new_case):
     assert len(case(driver).trip.parts) == 6
 
 
+def test_the_way_back_from_the_mountains_comes_down_to_where_it_began(new_case):
+    driver = new_case
+    driver.app.shell.go("trip")
+    driver.frames(6)
+    driver.tap("By car to the mountains, with nights")
+    driver.app.session.set_many({"trip.home_elevation_m": 100.0, "trip.parts.0.end_elevation_m": 2500.0})
+    driver.tap("Add to the trip")
+    driver.tap("Add the same way back")
+    timeline = driver.app.session.timeline
+    down = timeline.altitude_m[timeline.part_index == 2]
+    assert (down[0], down[-1]) == (2500.0, 100.0)
+
+
 def test_the_keys_used_here_are_kivys():
     from kivy.core.window import Keyboard
 

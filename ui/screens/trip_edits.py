@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from planner.case.trip import ActivityShares, Part, PartKind, ProfilePoint
+from planner.trip.itinerary import elevations_at_start
 from planner.trip.places import by_id
 
 _LENGTHS_MIN = {"flight": 120.0, "stay": 1440.0, "home": 60.0, "walk": 15.0}
@@ -77,8 +78,9 @@ class TripEdits:
         while there and there[-1].kind in ("stay", "home"):
             there.pop()
         parts = list(self.session.case.trip.parts)
-        for part in reversed(there):
-            parts.append(_backwards(part, self._new_id(part.kind, parts)))
+        began = elevations_at_start(self.session.timeline)
+        for part, began_m in reversed(list(zip(there, began, strict=False))):
+            parts.append(_backwards(part, self._new_id(part.kind, parts), began_m))
         self._set(tuple(parts), "the way back was added")
 
     def add(self, kind: str, at: int | None) -> str:
@@ -123,7 +125,11 @@ class TripEdits:
         return f"{kind}_{number}"
 
 
-def _backwards(part: Part, part_id: str) -> Part:
+def _backwards(part: Part, part_id: str, began_m: float | None) -> Part:
+    """The part the other way. began_m: where it began, which is where a journey over ground ends on the way back."""
+    started = part.start_elevation_m
+    if started is None and part.kind in ("road", "rail", "ship", "walk"):
+        started = began_m
     end = part.profile[-1].at_min if part.profile else 0.0
     turned = [
         ProfilePoint(at_min=end - point.at_min, elevation_m=point.elevation_m) for point in reversed(part.profile)
@@ -135,7 +141,7 @@ def _backwards(part: Part, part_id: str) -> Part:
             "origin_place_id": part.destination_place_id,
             "destination_place_id": part.origin_place_id,
             "start_elevation_m": part.end_elevation_m,
-            "end_elevation_m": part.start_elevation_m,
+            "end_elevation_m": started,
             "profile": tuple(turned),
             "zone_at_end": place.zone if place is not None else None,
         }
