@@ -13,6 +13,7 @@ from typing import Any
 from xml.parsers import expat
 
 import numpy as np
+from numpy.typing import NDArray
 
 from planner.air.ranges import Array
 from planner.errors import InputError
@@ -24,7 +25,8 @@ MOST_KEPT = 2000  # a rougher road is thinned more
 LOWEST_M, HIGHEST_M = -430.0, 8850.0  # the shore of the Dead Sea and the top of Everest
 TOLERANCE_M = 10.0  # a hundredth of the change of pressure that matters; planning assumption
 EARTH_RADIUS_M = 6_371_008.8  # mean radius, IUGG
-POINT_TAGS = ("trkpt", "rtept")
+POINT_TAGS = ("trkpt", "rtept")  # a file may carry the same road as both: the track is taken
+STRETCHES = 2000  # a long recording is thinned from the highest and lowest point of each, so that the work is bounded
 
 
 @dataclass(frozen=True)
@@ -55,10 +57,11 @@ def read_track(content: bytes, duration_min: float) -> Track:
     minutes, timed = _minutes(known, duration_min)
     elevation = np.array([one.elevation_m for one in known], dtype=float)
     tolerance = TOLERANCE_M
-    kept = _thinned(minutes, elevation, tolerance)
+    peaks = _extremes(elevation)
+    kept = peaks[_thinned(minutes[peaks], elevation[peaks], tolerance)]
     while kept.size > MOST_KEPT:
-        tolerance *= 2.0
-        kept = _thinned(minutes, elevation, tolerance)
+        tolerance *= 1.5
+        kept = peaks[_thinned(minutes[peaks], elevation[peaks], tolerance)]
     return Track(minutes[kept], elevation[kept], timed, len(points) - len(known))
 
 
@@ -74,7 +77,7 @@ class _Reader:
     """Gathers points while the file is parsed; refuses what only a hostile file has."""
 
     def __init__(self) -> None:
-        self.points: list[_Point] = []
+        self.points: dict[str, list[_Point]] = {tag: [] for tag in POINT_TAGS}
         self.depth = 0
         self.open: _Point | None = None
         self.text = ""
@@ -90,7 +93,7 @@ class _Reader:
         if self.depth == 1 and name != "gpx":
             raise _refused(f"The file is no GPX file: it begins with {name[:20]!r}.")
         if name in POINT_TAGS:
-            if len(self.points) >= MOST_POINTS:
+            if len(self.points[name]) >= MOST_POINTS:
                 raise _refused(f"The route has more than {MOST_POINTS:,} points.")
             latitude = _number(attributes.get("lat"), "latitude", -90.0, 90.0)
             self.open = _Point(latitude, _number(attributes.get("lon"), "longitude", -180.0, 180.0))
@@ -104,7 +107,7 @@ class _Reader:
         if self.open is None:
             return
         if name in POINT_TAGS:
-            self.points.append(self.open)
+            self.points[name].append(self.open)
             self.open = None
         elif name == "ele" and self.text.strip():
             self.open.elevation_m = _number(self.text, "elevation", LOWEST_M, HIGHEST_M, " m")
@@ -123,7 +126,7 @@ def _points(content: bytes) -> list[_Point]:
         raise _refused(f"The file is not readable as GPX: line {error.lineno} is malformed.") from None
     except (LookupError, ValueError):
         raise _refused("The file is not readable as GPX: its encoding is not known.") from None
-    return reader.points
+    return reader.points["trkpt"] or reader.points["rtept"]
 
 
 def _number(text: str | None, what: str, low: float, high: float, unit: str = "") -> float:
@@ -165,6 +168,18 @@ def _steps_m(points: Sequence[_Point]) -> Array:
     half += np.cos(latitude[:-1]) * np.cos(latitude[1:]) * np.sin(np.diff(longitude) / 2.0) ** 2
     steps: Array = 2.0 * EARTH_RADIUS_M * np.arcsin(np.sqrt(np.clip(half, 0.0, 1.0)))
     return steps
+
+
+def _extremes(elevation_m: Array) -> NDArray[np.int64]:
+    """Indices of the highest and lowest point of each stretch and of the ends; of all points of a short route."""
+    if elevation_m.size <= 2 * STRETCHES:
+        return np.arange(elevation_m.size)
+    edges = np.linspace(0, elevation_m.size, STRETCHES + 1).astype(np.int64)
+    found = [0, elevation_m.size - 1]
+    for first, after in pairwise(edges):
+        inside = elevation_m[first:after]
+        found += [int(first + inside.argmax()), int(first + inside.argmin())]
+    return np.unique(found)
 
 
 def _thinned(minutes: Array, elevation_m: Array, tolerance_m: float) -> Array:

@@ -8,7 +8,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from planner.errors import InputError
-from planner.trip.track import MOST_BYTES, MOST_KEPT, TOLERANCE_M, read_track
+from planner.trip.track import MOST_BYTES, MOST_KEPT, STRETCHES, TOLERANCE_M, _extremes, read_track
 
 HEAD = '<?xml version="1.0"?><gpx version="1.1" creator="test" xmlns="http://www.topografix.com/GPX/1/1">'
 
@@ -66,6 +66,22 @@ def test_a_long_smooth_road_becomes_few_points_and_a_rough_one_fits_the_case():
     assert read_track(gpx(smooth), 60.0).minutes.size < 60
     rough = [1500 + (300 if i % 2 else 0) for i in range(3500)]
     assert read_track(gpx(rough), 60.0).minutes.size <= MOST_KEPT
+
+
+def test_a_file_with_the_same_road_as_route_and_track_is_driven_once():
+    track, route = gpx([500, 2239, 700], timed=False), gpx([500, 2239, 700], timed=False, tag="rtept")
+    both = track.replace(b"</gpx>", b"") + route.removeprefix(HEAD.encode())
+    assert list(read_track(both, 60.0).elevation_m) == [500, 2239, 700]
+
+
+def test_a_long_recording_made_to_be_slow_is_thinned_with_bounded_work_and_keeps_its_pass():
+    rough = [4000.0 * (i % 2) * (1 - i / 60_000) for i in range(60_000)]
+    rough[31_235] = 4810.0
+    assert _extremes(np.array(rough)).size <= 2 * STRETCHES + 2
+    track = read_track(gpx(rough, timed=False, step_deg=1e-4), 600.0)
+    assert track.elevation_m.max() == 4810.0
+    assert track.minutes[track.elevation_m.argmax()] == pytest.approx(600 * 31_235 / 59_999, abs=0.1)
+    assert track.minutes.size <= MOST_KEPT
 
 
 def test_points_without_elevation_are_left_out_and_counted():
