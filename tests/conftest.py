@@ -1,6 +1,14 @@
-"""What all tests share: a skipped test can be made to fail the run, so that a missing tool is never silent."""
+"""What all tests share: the same examples in each run, and a skipped test that can be made to fail the run."""
+
+import os
 
 import pytest
+from hypothesis import settings
+
+# The same examples each time, so that a change is judged by itself; look for new ones with EXPLORE=1.
+settings.register_profile("repeatable", derandomize=True, deadline=None)
+settings.register_profile("explore", max_examples=1000, deadline=None)
+settings.load_profile("explore" if os.environ.get("EXPLORE") else "repeatable")
 
 
 def pytest_addoption(parser):

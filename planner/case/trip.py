@@ -83,6 +83,13 @@ class Part(Section):
             raise ValueError("a cabin altitude belongs to a flight only")
         return self
 
+    @model_validator(mode="after")
+    def _a_profile_goes_on_in_time(self) -> Part:
+        times = [point.at_min for point in self.profile]
+        if times and (len(times) < 2 or times != sorted(times) or times[-1] <= 0.0):
+            raise ValueError("an altitude profile needs two points or more with times that go on, the last above 0 min")
+        return self
+
 
 class Trip(Section):
     """Ordered parts; each starts when the one before ends."""

@@ -315,7 +315,7 @@ def _part_axis(
             items += [rule(middle + d - 2.0, bottom - 3.0, middle + d + 2.0, bottom + 3.0, "ink", 1.0) for d in (-2, 2)]
         if part.start_text and x0 > last_right:
             half = measure(part.start_text, size) / 2
-            left = max(x0 - half, 0.0)
+            left = max(min(x0 - half, float(scale.x[-1]) - 2 * half), 0.0)  # whole within the ribbon's ends
             if left > last_right:
                 items.append(Text(part.start_text, left, label_y - line, size, "muted"))
                 last_right = left + 2 * half + LABEL_GAP

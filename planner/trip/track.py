@@ -36,33 +36,37 @@ class Track:
     minutes: Array
     elevation_m: Array
     timed: bool
-    left_out: int  # points without elevation
 
 
 def read_track(content: bytes, duration_min: float) -> Track:
     """The route in a GPX file, thinned to within 10 m; its highest and lowest point stay as recorded.
 
-    Where times were not recorded for every point, a steady pace over duration_min is assumed. Points without
-    elevation are left out. Raises InputError with a sentence for what is no GPX, too large, without elevations, with
-    impossible ones, or that declares entities.
+    Where times were not recorded for every point, a steady pace over duration_min is assumed. Raises InputError with
+    a sentence for what is no GPX, too large, with missing or impossible elevations (the pass might lie there), or that
+    declares entities.
     """
     if len(content) > MOST_BYTES:
         raise _refused(f"The file has {len(content) / 1e6:.0f} MB; at most {MOST_BYTES / 1e6:.0f} MB can be read.")
     points = _points(content)
     if not points:
         raise _refused("No track or route was found in the file; a GPX file with trkpt or rtept points is needed.")
-    known = [one for one in points if one.elevation_m is not None]
-    if len(known) < 2:
-        raise _refused("The route has no elevations, so the altitude of the road is not known.")
-    minutes, timed = _minutes(known, duration_min)
-    elevation = np.array([one.elevation_m for one in known], dtype=float)
+    missing = sum(one.elevation_m is None for one in points)
+    if missing:
+        raise _refused(
+            f"{missing} of {len(points)} points have no elevation, and the highest may be among them. Use a file "
+            "with all elevations, or enter the highest point by hand."
+        )
+    if len(points) < 2:
+        raise _refused("The route is a single point; two or more are needed.")
+    minutes, timed = _minutes(points, duration_min)
+    elevation = np.array([one.elevation_m for one in points], dtype=float)
     tolerance = TOLERANCE_M
     peaks = _extremes(elevation)
     kept = peaks[_thinned(minutes[peaks], elevation[peaks], tolerance)]
     while kept.size > MOST_KEPT:
         tolerance *= 1.5
         kept = peaks[_thinned(minutes[peaks], elevation[peaks], tolerance)]
-    return Track(minutes[kept], elevation[kept], timed, len(points) - len(known))
+    return Track(minutes[kept], elevation[kept], timed)
 
 
 @dataclass

@@ -2,7 +2,7 @@ import dataclasses
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import example, given, settings
 from hypothesis import strategies as st
 
 from planner.charts.layout import Band, Marker, Polyline, Text
@@ -142,6 +142,7 @@ def test_sixty_parts_still_have_no_overlap(trip):
     st.sampled_from([8.0, 12.0, 18.0]),
     st.booleans(),
 )
+@example([(5.0, 0.0)] * 13 + [(240.0, 0.0)] + [(5.0, 5000.0)] * 6, 240.0, 12.0, True)  # the last clock time stuck out
 @settings(max_examples=60, deadline=None)
 def test_any_trip_is_drawn_within_its_place_without_overlap(trip, parts, width, text_size, with_layer):
     starts = np.concatenate([[0.0], np.cumsum([duration for duration, _ in parts])])

@@ -84,14 +84,13 @@ def test_a_long_recording_made_to_be_slow_is_thinned_with_bounded_work_and_keeps
     assert track.minutes.size <= MOST_KEPT
 
 
-def test_points_without_elevation_are_left_out_and_counted():
-    track = read_track(gpx([500, None, None, 900]), 60.0)
-    assert track.left_out == 2
-    assert list(track.elevation_m) == [500, 900]
+def test_a_gap_in_the_elevations_may_hide_the_pass_and_is_refused():
+    assert "2 of 4 points have no elevation" in refusal(gpx([500, None, None, 900]))
+    assert "single point" in refusal(gpx([500]))
 
 
 def test_a_route_without_elevation_or_points_is_refused():
-    assert "no elevations" in refusal(gpx([None, None, None]))
+    assert "3 of 3 points have no elevation" in refusal(gpx([None, None, None]))
     assert "No track or route" in refusal(f"{HEAD}</gpx>".encode())
     assert "one place" in refusal(gpx([500, 600], timed=False, step_deg=0.0))
 

@@ -62,6 +62,7 @@ class PartForm(Stack):
         altitude = self._altitude()
         planned = altitude.with_unit(self.session.case.policy.planning_cabin_altitude_m)
         self.add_widget(Side(self._airport("origin_place_id", "From"), self._airport("destination_place_id", "To")))
+        self.add_widget(self.form.live(self._unknown_fields, self._fill_unknown_fields))
         self.add_widget(
             Side(
                 self.form.number(
@@ -71,6 +72,23 @@ class PartForm(Stack):
             )
         )  # fmt: skip
         self.add_widget(Fold("What cabins were measured at", "Published series of flights", self._fill_cabins))
+
+    def _unknown_fields(self) -> tuple[tuple[str, str], ...]:
+        """The elevations that the airports do not give: what the form must ask for."""
+        part = self.session.get(self.path)
+        ends = (
+            ("start_elevation_m", "Elevation of the airport left", part.origin_place_id),
+            ("end_elevation_m", "Elevation of the airport reached", part.destination_place_id),
+        )
+        return tuple((name, label) for name, label, place_id in ends if place_id and not _has_elevation(place_id))
+
+    def _fill_unknown_fields(self, group: Any, form: Form) -> None:
+        asked = [
+            form.number(f"{self.path}.{name}", label, self._altitude(), also=self._also, why="The data do not have it")
+            for name, label in self._unknown_fields()
+        ]
+        if asked:
+            group.add_widget(Side(*asked))
 
     def _fill_cabins(self, body: BoxLayout) -> None:
         from planner.trip.cabins import measured_cabins
@@ -82,7 +100,9 @@ class PartForm(Stack):
         path = f"{self.path}.{name}"
 
         def choose(place_id: str | None) -> None:
-            changes = {path: place_id}
+            # An elevation typed for the airport before would be another place's.
+            typed = "start_elevation_m" if name == "origin_place_id" else "end_elevation_m"
+            changes: dict[str, Any] = {path: place_id, f"{self.path}.{typed}": None}
             place = places.by_id(place_id) if place_id else None
             if name == "destination_place_id":
                 changes[f"{self.path}.zone_at_end"] = place.zone if place else None
@@ -210,3 +230,8 @@ class _Rest:
     def show(self, shares: Any) -> None:
         """Say it."""
         self._form.rest.text = f"At rest for the other {shares.rest * 100:.0f} % of the time."
+
+
+def _has_elevation(place_id: str) -> bool:
+    place = places.by_id(place_id)
+    return place is not None and place.elevation_m is not None

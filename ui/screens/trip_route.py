@@ -5,11 +5,13 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Any
 
+from planner.errors import InputError, PlannerError
 from ui import measures
 from ui.widgets.buttons import PlainButton, QuietButton
 from ui.widgets.entries import TextEntry
 from ui.widgets.rows import Fold, Stack
 from ui.widgets.text import Text, plain
+from ui.worker import away
 
 
 class RouteEntry(Stack):
@@ -37,29 +39,38 @@ class RouteEntry(Stack):
             body.add_widget(QuietButton("Take the route out", self._remove))
 
     def _read(self) -> None:
-        from planner.case.trip import ProfilePoint
-        from planner.errors import InputError
-        from planner.trip.track import MOST_BYTES, read_track
+        """Read the file away from the screen: a long recording takes longer than a frame."""
+        duration_min = self.session.get(self.path).duration_min
+        file = Path(self.file.input.text.strip()).expanduser()
+        self.problem.text = "Reading the route."
+        away(lambda: _track(file, duration_min), self._take)
 
-        part = self.session.get(self.path)
-        try:
-            with Path(self.file.input.text.strip()).expanduser().open("rb") as file:
-                content = file.read(MOST_BYTES + 1)
-            track = read_track(content, part.duration_min)
-        except OSError as error:
-            self.problem.text = plain(f"The file cannot be read ({error.strerror}). Write where it is, with its name.")
-            return
-        except InputError as error:
-            self.problem.text = plain(error.message)
+    def _take(self, track: Any, refused: PlannerError | None) -> None:
+        from planner.case.trip import ProfilePoint
+
+        if refused is not None:
+            self.problem.text = plain(str(refused))
             return
         points = tuple(
             ProfilePoint(at_min=float(minute), elevation_m=float(elevation))
             for minute, elevation in zip(track.minutes, track.elevation_m, strict=True)
         )
         changes: dict[str, Any] = {f"{self.path}.profile": points}
-        if track.timed and part.kind == "road":
-            changes[f"{self.path}.duration_min"] = float(round(track.minutes[-1]))
+        if track.timed and self.session.get(self.path).kind == "road":
+            changes[f"{self.path}.duration_min"] = float(max(round(track.minutes[-1]), 1))
         self.problem.text = plain(self.session.set_many(changes, "a recorded route"))
 
     def _remove(self) -> None:
         self.session.choose(f"{self.path}.profile", (), "the recorded route")
+
+
+def _track(file: Path, duration_min: float) -> Any:
+    from planner.trip.track import MOST_BYTES, read_track
+
+    try:
+        with file.open("rb") as stream:
+            content = stream.read(MOST_BYTES + 1)
+    except OSError as error:
+        why = error.strerror or "it is no file"
+        raise InputError("track", f"The file cannot be read ({why}). Write where it is, with its name.") from None
+    return read_track(content, duration_min)
