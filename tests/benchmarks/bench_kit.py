@@ -1,17 +1,21 @@
 """How fast the kit is sized, and how many trips are played, against plain ways of doing the same.
 
-Run: python tests/benchmarks/bench_kit.py, from the top folder. Selection: random trips of 10 parts with 4 sizes, median
-and slowest against the goal of 2 s. Endurance: 100,000 trips of 10 parts against the goal of 0.3 s, and against the
+Run:  python tests/benchmarks/bench_kit.py
+Selection: random trips of 10 parts with 4 sizes, median and slowest against the goal of 2 s. Endurance: 100,000 trips of 10 parts against the goal of 0.3 s, and against the
 same trips played one after the other.
 """
 
 from __future__ import annotations
 
 import statistics
+import sys
 import time
 from dataclasses import fields, replace
+from pathlib import Path
 
 import numpy as np
+
+sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
 
 from planner.kit.endurance import Assumptions, Carried, Draws, draw_trips, play, run_out
 from planner.kit.legs import Choice, Leg, Power
