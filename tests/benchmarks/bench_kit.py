@@ -1,8 +1,8 @@
 """How fast the kit is sized, and how many trips are played, against plain ways of doing the same.
 
 Run:  python tests/benchmarks/bench_kit.py
-Selection: random trips of 10 parts with 4 sizes, median and slowest against the goal of 2 s. Endurance: 100,000 trips of 10 parts against the goal of 0.3 s, and against the
-same trips played one after the other.
+Selection: random trips of 10 parts with 4 sizes, median and slowest against the goal of 2 s. Endurance: 100,000 trips
+of 10 parts against the goal of 0.3 s, and against the same trips played one after the other.
 """
 
 from __future__ import annotations
