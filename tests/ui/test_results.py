@@ -80,12 +80,14 @@ def test_a_flow_without_a_name_is_no_decision(answered):
 def test_one_touch_decides_all_flights_alike(answered):
     go(answered, "oxygen")
     at_part(answered, "flight_1")
+    flights = [one.part_id for one in case(answered).trip.parts if one.kind == "flight"]
+    others = [one for one in case(answered).decisions if one.part_id not in flights or one.activity != "rest"]
     answered.fill(answered.field("Decided by"), "Dr Example")
     answered.tap("2.5")
     answered.tap("The same for every part of this kind")
-    flights = [one.part_id for one in case(answered).trip.parts if one.kind == "flight"]
     assert len(flights) == 4
     assert {decision(answered, part, "rest").flow_l_min for part in flights} == {2.5}
+    assert [one for one in case(answered).decisions if one.part_id not in flights or one.activity != "rest"] == others
 
 
 def test_a_changed_gas_takes_the_plan_back_to_draft_with_the_reason(answered):
