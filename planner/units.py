@@ -65,3 +65,13 @@ def fahrenheit_from_celsius(celsius: float) -> float:
 def celsius_from_fahrenheit(fahrenheit: float) -> float:
     """Degrees Fahrenheit to degrees Celsius."""
     return (fahrenheit - 32.0) / 1.8
+
+
+def gauge_to_read(bar: float, shown_in: str) -> float:
+    """A gauge reading that must not be passed downwards, in "bar" or "psi": rounded up to 5 bar or 50 psi."""
+    return -(-psi_from_bar(bar) // 50.0) * 50.0 if shown_in == "psi" else -(-bar // 5.0) * 5.0
+
+
+def charge_to_read(percent: float) -> float:
+    """A charge that must not be passed downwards: rounded up to 5 per cent, at most 100."""
+    return min(100.0, -(-percent // 5.0) * 5.0)

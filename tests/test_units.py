@@ -40,3 +40,9 @@ def test_a_conversion_gives_the_printed_value(function, given_value, expected, t
 @given(value=st.floats(-1e6, 1e6))
 def test_there_and_back_is_the_same_value(there, back, value):
     assert back(there(value)) == pytest.approx(value, abs=1e-6)
+
+
+@pytest.mark.parametrize(("bar", "shown_in", "read"), [(61.0, "bar", 65.0), (65.0, "bar", 65.0), (61.0, "psi", 900.0)])
+def test_a_gauge_to_turn_back_at_is_never_rounded_down(bar, shown_in, read):
+    # 61 bar = 884.7 psi
+    assert units.gauge_to_read(bar, shown_in) == read

@@ -13,6 +13,7 @@ from planner.papers import fonts
 from planner.papers.desk import Desk, capital
 from planner.papers.flow import Column, Flow, Row
 from planner.papers.record_trip import LAYERED_RIBBON_PT, TEXT_PT, ribbon_parts
+from planner.units import charge_to_read
 
 BATTERY, CYLINDER = "Battery", "Cylinder"  # how the kit names its items
 
@@ -165,13 +166,8 @@ def _readings(desk: Desk, point: TurnBack) -> list[str]:
     if point.fresh_cylinders:
         readings.append(desk.texts.count("kit.reading_fresh", point.fresh_cylinders))
     if point.battery_percent is not None:
-        readings.append(desk.say("kit.reading_battery", percent=q.percent(_up(point.battery_percent))))
+        readings.append(desk.say("kit.reading_battery", percent=q.percent(charge_to_read(point.battery_percent))))
     return readings
-
-
-def _up(percent: float) -> float:
-    """Rounded up to whole five per cent: a reading that must not be passed downwards."""
-    return min(100.0, -(-percent // 5.0) * 5.0)
 
 
 def _count(desk: Desk, kind: str) -> int:

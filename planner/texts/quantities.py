@@ -72,9 +72,8 @@ class Quantities:
 
     def gauge_up(self, bar: float) -> str:
         """A gauge reading that must not be passed downwards: rounded up to 5 bar or 50 psi."""
-        if self.display.gauge == "psi":
-            return f"{self.texts.number(-(-units.psi_from_bar(bar) // 50.0) * 50.0)} psi"
-        return f"{self.texts.number(-(-bar // 5.0) * 5.0)} bar"
+        shown_in = self.display.gauge
+        return f"{self.texts.number(units.gauge_to_read(bar, shown_in))} {shown_in}"
 
     def flow(self, l_min: float) -> str:
         """Such as "2 L/min"."""

@@ -113,6 +113,15 @@ def test_the_kit_shows_what_is_left_when_every_flight_is_three_hours_late(answer
     assert answered.reads("No smoking or flames within 3 m.")
 
 
+def test_the_charge_to_turn_back_at_reads_as_on_the_papers_rounded_up(answered):
+    go(answered, "kit")
+    percents = [one.battery_percent for one in answered.app.session.plan.kit.turn_back if one.battery_percent]
+    assert percents
+    for percent in percents:
+        rounded = next(step for step in range(5, 101, 5) if step >= percent - 1e-9)
+        assert answered.reads(f"{rounded} % charge")
+
+
 def test_a_confirmation_needs_name_and_role_and_is_void_after_a_change(answered):
     go(answered, "papers")
     screen = answered.app.shell.screen

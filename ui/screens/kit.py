@@ -6,6 +6,7 @@ from typing import Any
 
 from planner.charts.ribbon import Layer, Reading
 from planner.charts.supply import supply_layer
+from planner.units import charge_to_read, gauge_to_read
 from ui import measures
 from ui.screens.kit_entries import fill_kit_entries
 from ui.screens.result_screen import ResultScreen
@@ -162,12 +163,12 @@ class KitScreen(ResultScreen):
 
     def _show_turn_back(self, kit: Any) -> None:
         self.readings.clear_widgets()
-        shown = measures.gauge(self.session.case.display.gauge)
+        unit = self.session.case.display.gauge
         alike: dict[tuple[str, str], list[str]] = {}
         for one in kit.turn_back if kit is not None else ():
-            values = [f"{name} {shown.with_unit(bar)}" for name, bar in one.gauge_bar]
+            values = [f"{name} {gauge_to_read(bar, unit):,.0f} {unit}" for name, bar in one.gauge_bar]
             if one.battery_percent is not None:
-                values.append(f"{one.battery_percent:.0f} % charge")
+                values.append(f"{charge_to_read(one.battery_percent):.0f} % charge")
             detail = f"cylinder at {one.temperature_c:g} °C" if one.gauge_bar else "all packs together"
             if one.fresh_cylinders:
                 detail += f", and {one.fresh_cylinders} full beside it"
