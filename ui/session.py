@@ -73,9 +73,7 @@ class Session(EventDispatcher):
 
     def close(self) -> None:
         """Save what is not saved yet, and stop working."""
-        if self._save_due is not None:
-            self._save_due.cancel()
-            self._save()
+        self.save_now()
         if self._worker is not None:
             self._worker.cancel()
 
@@ -131,6 +129,12 @@ class Session(EventDispatcher):
         """Set what was tapped, not typed: always a step of its own to undo."""
         self._last_edit = ("", 0.0)
         return self.set(path, value, what)
+
+    def save_now(self) -> None:
+        """Save what is not saved yet, without waiting: what cannot be measured again."""
+        if self._save_due is not None:
+            self._save_due.cancel()
+            self._save()
 
     def fault(self, path: str, sentence: str) -> None:
         """Keep (or with "" forget) that what stands in a field does not fit."""

@@ -6,6 +6,7 @@ import pytest
 from tests.ui.driver import Driver
 from ui.app import PlannerApp, load_planner
 from ui.screens import form
+from ui.screens.trip_edits import TripEdits
 
 
 @pytest.fixture(scope="module")
@@ -75,6 +76,38 @@ def test_a_flow_without_a_name_is_no_decision(answered):
     answered.tap("Write this decision")
     assert answered.reads("Who decided? Enter a name; a flow without one is not a decision.")
     assert case(answered).decisions == before
+
+
+def test_without_a_trip_nothing_can_be_decided_or_saved(planner, tmp_path, monkeypatch):
+    monkeypatch.setattr(platformdirs, "user_documents_dir", lambda: str(tmp_path / "documents"))
+    driver = Driver(PlannerApp(data_folder=tmp_path / "data", load_planner=planner), (390, 844), 1.0)
+    driver.app.cases.new_case()
+    settle(driver)
+    for step in ("oxygen", "kit", "forecast"):
+        go(driver, step)
+        assert driver.reads("Enter the trip")
+        for words in ("Write this decision", "No oxygen here", "Turn-back readings", "On to the"):
+            assert not driver.reads(words)
+    go(driver, "papers")
+    driver.tap("Save the four papers")
+    assert driver.reads("Nothing saved: there is no trip yet.")
+    assert not list(tmp_path.rglob("*.pdf"))
+    driver.close()
+
+
+def test_a_removed_part_takes_no_decision_while_the_plan_is_worked_out(answered):
+    go(answered, "oxygen")
+    at_part(answered, "road_home")
+    decide = answered.app.shell.screen.decide
+    assert decide.part.span.part_id == "road_home"
+    session = answered.app.session
+    TripEdits(session).remove(len(session.case.trip.parts) - 1)
+    answered.frames(6)
+    assert decide.part is None or decide.part.span.part_id != "road_home"
+    if decide.part is None:
+        assert decide.write.disabled
+    settle(answered)
+    assert not decide.write.disabled
 
 
 def test_one_touch_decides_all_flights_alike(answered):
@@ -201,6 +234,8 @@ def test_a_challenge_test_is_recorded_with_one_hand_and_read(answered):
     answered.tap("Write the row")
     row = screen.test.rows[-1]
     assert (row.phase, row.spo2_percent, row.heart_rate_min, row.symptoms) == ("challenge", 85.0, 90.0, "breathless")
+    kept = answered.app.library.read(answered.app.session.case_id)  # at once: a test cannot be measured again
+    assert kept.measurements[-1].rows == screen.test.rows
     answered.tap("−1 %")
     answered.tap("Write the row")
     assert screen.test.rows[-1].spo2_percent == 84.0

@@ -93,6 +93,7 @@ class DuringTest(Section):
             symptoms=self.symptom,
         )
         self.session.choose(f"{self.path}.rows", (*self.test.rows, row), "a row of the test")
+        self.session.save_now()
 
     # -- inside
 

@@ -65,8 +65,16 @@ class DecideForm(Stack):
         self.problem.text = ""
         self.title.text = strong(plain(f"The decision: {part.span.name}, {_WORDS[activity]}"))
         self._show_choices()
+        for button in (self.write, self.again, self.none):
+            button.disabled = False
         prescribed = getattr(self.session.case.prescription, activity)
         self.home.disabled = prescribed is None
+
+    def forget(self) -> None:
+        """No part is shown: nothing can be decided until one is."""
+        self.part, self._seen = None, None
+        for button in (self.write, self.again, self.home, self.none):
+            button.disabled = True
 
     # -- inside
 

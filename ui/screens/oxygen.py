@@ -96,6 +96,7 @@ class OxygenScreen(ResultScreen):
             group.clear_widgets()
         self.dose.show(None)
         self.dose.height = 0
+        self.decide.forget()
 
     # -- inside
 
@@ -183,7 +184,7 @@ class OxygenScreen(ResultScreen):
     def _show_said(self, titration: Any, decided: Any) -> None:
         self.said.clear_widgets()
         if titration is not None:
-            self.said.add_widget(Notice(plain(titration.text), "note", title="Model."))
+            self.said.add_widget(Notice(plain(titration.text.replace("SpO2", "SpO₂")), "note", title="Model."))
             for warning in titration.warnings:
                 self.said.add_widget(Notice(plain(warning), "caution"))
         if decided is None:

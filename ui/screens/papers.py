@@ -133,6 +133,9 @@ class PapersScreen(Screen):
         if plan is None:
             self.saved.text = "The plan is being worked out; try again in a moment."
             return
+        if not plan.parts:
+            self.saved.text = "Nothing saved: there is no trip yet. Enter one first."
+            return
         folder = self.folder
         try:
             folder.mkdir(parents=True, exist_ok=True)

@@ -26,7 +26,9 @@ class ResultScreen(Screen):
         self.above = Stack()
         self.empty = Stack(Text(self.EMPTY), PrimaryButton("Enter the trip", lambda: self.go("trip")))
         self.put(self.above)
+        kept = set(self.children)
         self.build_results()
+        self._results = [one for one in reversed(self.children) if one not in kept]
 
     def build_results(self) -> None:
         """Make what stands under the ribbon."""
@@ -62,10 +64,20 @@ class ResultScreen(Screen):
         """Show the plan as it is; results of an older case are greyed."""
         has_trip = bool(self.session.case.trip.parts)
         self.above.hold(self.ribbon if has_trip else self.empty)
+        self._show_results(has_trip)
         if has_trip:
             self.ribbon.show_case()
         self._part_changed(again=True)
         self.grey(*(child for child in self.children if child is not self.above))
+
+    def _show_results(self, there: bool) -> None:
+        """Without a trip there is nothing to read, decide or size, and no button to do it with."""
+        if self._results and there != (self._results[0].parent is not None):
+            for one in self._results:
+                if there:
+                    self.add_widget(one)
+                else:
+                    self.remove_widget(one)
 
     def _part_changed(self, *, again: bool = False) -> None:
         timeline = self.session.timeline
