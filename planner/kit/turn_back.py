@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 from planner.kit.cylinder import HIGHEST_GAUGE_BAR, contents_l, gauge_bar
 from planner.kit.legs import Leg, Power
-from planner.kit.selection import FLIGHT_RULE, LegUse
+from planner.kit.selection import CHARGE_SHARE, FLIGHT_RULE, LegUse
 from planner.kit.sizes import CylinderSize
 
 READ_AT_C = 15.0  # planning assumption where no temperature is entered
@@ -44,7 +44,7 @@ def turn_back(
     """
     found = []
     for number, (leg, use) in enumerate(zip(legs, uses, strict=True)):
-        litres = _litres_ahead(uses, number) * (1.0 + reserve_fraction)
+        litres = _litres_ahead(uses, sizes, residual_bar, number) * (1.0 + reserve_fraction)
         readings: list[tuple[str, float]] = []
         fresh = 0
         if litres > 0.0:
@@ -71,14 +71,15 @@ def turn_back(
     return tuple(found)
 
 
-def _litres_ahead(uses: Sequence[LegUse], number: int) -> float:
-    """Planned litres from this part on, until new cylinders come."""
-    total = 0.0
-    for later, use in enumerate(uses[number:]):
-        if later > 0 and use.new_cylinders:
-            break
-        total += sum(use.litres_used.values())
-    return total
+def _litres_ahead(uses: Sequence[LegUse], sizes: dict[str, CylinderSize], residual_bar: float, number: int) -> float:
+    """Litres that must be there at this part: what is used ahead and not covered by what is delivered on the way."""
+    needed = 0.0
+    for later in range(len(uses) - 1, number - 1, -1):
+        needed += sum(uses[later].litres_used.values())
+        if later > number:
+            new = uses[later].new_cylinders.items()
+            needed = max(needed - sum(sizes[size].usable_l(residual_bar) * count for size, count in new), 0.0)
+    return needed
 
 
 def _reading(
@@ -96,16 +97,16 @@ def _reading(
 def _battery_percent(
     legs: Sequence[Leg], uses: Sequence[LegUse], number: int, power: Power | None, batteries: int
 ) -> float | None:
-    """Charge needed from this part on until the next chance to charge, as per cent of all packs carried."""
+    """Charge that must be there at this part, less what plugs on the way give, as per cent of all packs carried."""
     if power is None or batteries == 0:
         return None
     needed = 0.0
-    for leg, use in zip(legs[number:], uses[number:], strict=True):
-        if leg is not legs[number] and leg.mains:
-            break
-        hours = use.hours_by.get("battery", 0.0)
+    for later in range(len(legs) - 1, number - 1, -1):
+        leg, hours = legs[later], uses[later].hours_by.get("battery", 0.0)
         watt = leg.concentrator_w or 0.0
         needed += watt * (FLIGHT_RULE * leg.hours if leg.flight and hours > 0.0 else hours)
+        if later > number and leg.mains:
+            needed = max(needed - CHARGE_SHARE * power.charge_w * leg.hours, 0.0)
     if needed <= 0.0:
         return None
     return min(100.0 * needed / (power.battery_wh * batteries), 100.0)
