@@ -10,6 +10,7 @@ from planner.errors import PlannerError
 from planner.evidence.regressions import all_regressions
 from planner.guidance.cautions import load_conditions
 from planner.guidance.pathway_file import FOLDER, read_pathway
+from planner.kit.conservers import load_conservers
 from planner.kit.sizes import load_concentrators, load_cylinders
 from planner.records.reading import read_case
 from planner.trip.cabins import measured_cabins
@@ -20,6 +21,7 @@ _ROOMS: dict[str, Callable[[], object]] = {
     "cabins.toml": measured_cabins,
     "cautions.toml": load_conditions,
     "concentrators.toml": load_concentrators,
+    "conservers.toml": load_conservers,
     "cylinders.toml": load_cylinders,
     "delivery.toml": load_devices,
     "regressions.toml": all_regressions,

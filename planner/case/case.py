@@ -66,5 +66,16 @@ class Case(Section):
 
 
 def _digest(content: dict[str, object]) -> str:
-    text = json.dumps(content, sort_keys=True, ensure_ascii=False, separators=(",", ":"))
+    """SHA-256 over what is entered: an entry that only a later version of this program has changes nothing."""
+    text = json.dumps(_entered(content), sort_keys=True, ensure_ascii=False, separators=(",", ":"))
     return hashlib.sha256(text.encode()).hexdigest()
+
+
+def _entered(value: object) -> object:
+    """The value without what is empty: null, empty lists and empty sections."""
+    if isinstance(value, dict):
+        kept = {key: _entered(one) for key, one in value.items()}
+        return {key: one for key, one in kept.items() if one is not None and one != [] and one != {}}
+    if isinstance(value, list):
+        return [_entered(one) for one in value]
+    return value

@@ -73,6 +73,9 @@ class Part(Section):
         (), max_length=6, strict=False, description="What the carrier offers"
     )
     carry_limit_kg: float | None = Field(None, gt=0.0, le=200.0)
+    equipment_c: float | None = Field(
+        None, ge=-20.0, le=60.0, description="Temperature of cylinders and batteries in this part"
+    )
     late: Late = Late()
 
     @model_validator(mode="after")

@@ -5,11 +5,16 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from planner.kit.legs import Leg, Power
+from planner.kit.legs import Choice, Leg, Power
 from planner.kit.selection import Selection
-from planner.kit.sizes import AIR_GROSS_LIMIT_KG, CONSENT_WH, NO_CONSENT_WH, CylinderSize
+from planner.kit.sizes import AIR_GROSS_LIMIT_KG, CONSENT_WH, NO_CONSENT_WH
 
 NEAR_LIMIT_KG = 0.4
+WORKS_FROM_C, WORKS_TO_C = 5.0, 40.0  # of portable concentrators (from memory)
+WORKS_SOURCE = (
+    "Usual operating range 5 to 40 °C (from memory); cold storage lowered purity: Blakeman TC et al., US Air Force "
+    "report ADA622148"
+)
 
 
 @dataclass(frozen=True)
@@ -39,6 +44,12 @@ AIRCRAFT = KitCaution(
     "carriers allow none. Ask each carrier, on both ways.",
     "IATA/ICAO dangerous goods rules, table 2.3.A; 14 CFR 121.574",
 )
+LIQUID = KitCaution(
+    "Liquid oxygen.",
+    "Keep the vessel upright and the room aired; never touch a frosted part. It boils away whether used or not, so it "
+    "is no store for later. Never on aircraft.",
+    "IATA/ICAO dangerous goods rules, table 2.3.A; common practice",
+)
 CHECK = KitCaution(
     "Before leaving.",
     "Read every gauge, try the regulator and the alarm, pack a spare cannula and the plug adapter.",
@@ -49,17 +60,31 @@ CHECK = KitCaution(
 def kit_cautions(
     legs: Sequence[Leg],
     found: Selection | None,
-    sizes: Sequence[CylinderSize],
+    cylinders: Sequence[Choice],
     power: Power | None,
     batteries: int,
+    pulses_asleep: Sequence[str] = (),
 ) -> tuple[KitCaution, ...]:
-    """The cautions for this trip and this set."""
+    """The cautions for this trip and this set. pulses_asleep: parts in which a pulse device is decided for sleep."""
     cautions = [FIRE]
+    if pulses_asleep:
+        cautions.append(
+            KitCaution(
+                "Pulses asleep.",
+                f"In {', '.join(dict.fromkeys(pulses_asleep))} a pulse device is decided for sleep. Shallow or mouth "
+                "breathing may not trigger it: two of 20 people with COPD were markedly worse on it at night.",
+                "Cuvelier A et al., Chest 1999;116:22",
+            )
+        )
     if any(not leg.flight for leg in legs):
         cautions.append(CAR)
     if any(leg.flight for leg in legs):
         cautions.append(AIRCRAFT)
-    for size in sizes:
+    if any(leg.liquid_l_per_h is not None for leg in legs):
+        cautions.append(LIQUID)
+    if power is not None:
+        cautions += _temperatures(legs)
+    for size in cylinders:
         if abs(size.gross_kg - AIR_GROSS_LIMIT_KG) < NEAR_LIMIT_KG and any(leg.flight for leg in legs):
             cautions.append(
                 KitCaution(
@@ -85,6 +110,21 @@ def kit_cautions(
             )
     cautions.append(CHECK)
     return tuple(cautions)
+
+
+def _temperatures(legs: Sequence[Leg]) -> list[KitCaution]:
+    cold = dict.fromkeys(leg.name for leg in legs if leg.equipment_c is not None and leg.equipment_c < WORKS_FROM_C)
+    hot = dict.fromkeys(leg.name for leg in legs if leg.equipment_c is not None and leg.equipment_c > WORKS_TO_C)
+    said = []
+    if cold:
+        text = (
+            f"In {', '.join(cold)} it is below {WORKS_FROM_C:g} °C: batteries give less and the concentrator may stop. "
+        )
+        said.append(KitCaution("Cold.", f"{text}Keep both warm, and let them warm up before use.", WORKS_SOURCE))
+    if hot:
+        text = f"In {', '.join(hot)} it is above {WORKS_TO_C:g} °C: a concentrator may stop and packs do not charge."
+        said.append(KitCaution("Heat.", text, WORKS_SOURCE))
+    return said
 
 
 def _batteries(power: Power, count: int) -> KitCaution:

@@ -1,4 +1,8 @@
-"""Litres and watts of each part, from what was decided: nothing is sized from a flow that nobody decided."""
+"""Litres and watts of each part, from what was decided: nothing is sized from a flow that nobody decided.
+
+A decided device says which sources can give it: pulses of a conserver come from a cylinder, those of a concentrator
+from a concentrator. Activities of a part that the same sources can give are one leg; others make legs of their own.
+"""
 
 from __future__ import annotations
 
@@ -10,23 +14,41 @@ from planner.case.trip import Activity, Part
 from planner.delivery.devices import Device
 from planner.delivery.pulse import BREATHING_RATE_MIN, bolus_ml
 from planner.errors import InputError
+from planner.kit.eligible import Given, Said, given
 from planner.kit.legs import Leg
-from planner.kit.liquid import AIR_RULE, liquid_needed_kg
+from planner.kit.liquid import AIR_RULE
+from planner.kit.power import cold_share
 from planner.kit.sizes import Concentrator
 from planner.trip.itinerary import PartSpan
 
 LEAST_SHARE = 1e-6
+MOST_BREATHS_MIN = 50.0
+TERMINALS = ("wait", "layover")
 
 
 @dataclass(frozen=True)
 class Demand:
-    """What one part needs. fault: why it cannot be sized, as a sentence; undecided: activities without a decision."""
+    """What one part needs. faults: why something cannot be sized or used, as sentences.
 
-    leg: Leg
+    undecided: activities without a decision. pulses_asleep: a pulse device is decided for sleep.
+    """
+
+    legs: tuple[Leg, ...]
     litres: float | None
     watt_hours: float | None
     undecided: tuple[Activity, ...]
-    faults: tuple[str, ...]
+    faults: tuple[Said, ...]
+    pulses_asleep: bool
+
+
+@dataclass(frozen=True)
+class _Need:
+    """One activity with decided oxygen: its share of the part, its use, and which sources can give it."""
+
+    share: float
+    litres_per_h: float
+    watt: float
+    given: Given
 
 
 def demand(
@@ -37,15 +59,15 @@ def demand(
     concentrator: Concentrator | None,
     breathing_rate_min: float | None,
 ) -> Demand:
-    """Litres (15 degC, 1 atm) and watt-hours of one part, averaged over its activities.
+    """Litres (15 degC, 1 atm) and watt-hours of one part, with its legs.
 
     A cylinder at altitude is taken to give its set flow by mass, at most 14 % more than its meter type may give: sizing
     errs on the side of too much.
     """
-    on_share = litres_per_h = 0.0
-    watt: float | None = 0.0 if concentrator is not None else None
     undecided: list[Activity] = []
-    faults: list[str] = []
+    faults: list[Said] = []
+    needs: list[_Need] = []
+    pulses_asleep = False
     for activity, share in span.shares.items():
         if share < LEAST_SHARE:
             continue
@@ -57,56 +79,30 @@ def demand(
             continue
         device = devices.get(decision.device_id or "")
         if device is None:
-            faults.append(f"The device {decision.device_id!r} decided for {span.name} is not in the profiles.")
+            text = f"The device {decision.device_id!r} decided for {{where}} is not in the profiles."
+            faults.append(Said(text, span.name))
             continue
-        on_share += share
         try:
-            litres_per_h += share * _litres_per_h(device, decision, activity, breathing_rate_min)
+            litres_per_h = _litres_per_h(device, decision, activity, breathing_rate_min)
         except InputError as error:
-            faults.append(f"{span.name}: {error.message}")
-        watt = _more_watts(watt, share, decision, concentrator, device)
-    on_hours = on_share * span.duration_min / 60.0
-    source = set(part.sources)
-    cylinder = "cylinder" in source and on_share > 0.0
-    uses_concentrator = "concentrator" in source and watt is not None and on_share > 0.0
-    if uses_concentrator and concentrator is not None and (span.highest_m or 0.0) > concentrator.ceiling_m:
-        uses_concentrator = False
-        faults.append(
-            f"{concentrator.name} is for up to {concentrator.ceiling_m:.0f} m; {span.name} reaches "
-            f"{span.highest_m:.0f} m."
-        )
-    if uses_concentrator and concentrator is not None and span.kind == "flight" and not concentrator.cabin_use:
-        uses_concentrator = False
-        faults.append(f"{concentrator.name} is not for use in an aircraft cabin; {span.name} needs another source.")
-    needs_oxygen = on_share > 0.0
-    if needs_oxygen and not source:
-        faults.append(f"No oxygen source is allowed in {span.name}; choose one, or it stays uncovered.")
-    rate = litres_per_h / on_share if on_share else None
-    leg = Leg(
-        part_id=span.part_id,
-        name=span.name,
-        hours=span.duration_min / 60.0,
-        oxygen_h=on_hours,
-        cylinder_l_per_h=rate if cylinder else None,
-        concentrator_w=(watt or 0.0) / on_share if uses_concentrator and watt else None,
-        airline="airline" in source and span.kind == "flight",
-        stationary="stationary" in source,
-        mains=part.power == "mains",
-        vehicle=part.power == "vehicle",
-        flight=span.kind == "flight",
-        supply_here=part.refill or part.delivery,
-        carry_limit_kg=part.carry_limit_kg,
-        asleep=span.shares.get("asleep", 0.0) > 0.0,
-    )
-    litres = litres_per_h * span.duration_min / 60.0 if needs_oxygen else 0.0
-    if needs_oxygen and "liquid" in source:
-        faults.append(_about_liquid(span, litres))
+            faults.append(Said(f"{{where}}: {error.message}", span.name))
+            continue
+        sources, reasons = given(span, part, activity, decision, device, concentrator)
+        faults += reasons
+        needs.append(_Need(share, litres_per_h, sources.watt, sources))
+        pulses_asleep = pulses_asleep or (activity == "asleep" and device.kind == "pulse")
+    if needs:
+        faults += _about_sources(span, part, concentrator)
+    legs = _legs(span, part, needs, concentrator)
+    litres = sum(need.share * need.litres_per_h for need in needs) * span.duration_min / 60.0
+    powered = [leg for leg in legs if leg.concentrator_w is not None]
     return Demand(
-        leg=leg,
-        litres=litres,
-        watt_hours=None if leg.concentrator_w is None else leg.concentrator_w * on_hours,
+        legs=legs,
+        litres=litres if needs or not undecided else None,
+        watt_hours=sum((leg.concentrator_w or 0.0) * leg.oxygen_h for leg in powered) if powered else None,
         undecided=tuple(undecided),
         faults=tuple(faults),
+        pulses_asleep=pulses_asleep,
     )
 
 
@@ -120,29 +116,60 @@ def _litres_per_h(device: Device, decision: Decision, activity: Activity, breath
         rate = BREATHING_RATE_MIN[activity]
         if breathing_rate_min is not None:
             rate = rate * breathing_rate_min / BREATHING_RATE_MIN["rest"]
-        return bolus_ml(device, decision.setting, min(rate, 50.0)) * rate * 60.0 / 1000.0
+        rate = min(rate, MOST_BREATHS_MIN)
+        return bolus_ml(device, decision.setting, rate) * rate * 60.0 / 1000.0
     assert decision.flow_l_min is not None
     return decision.flow_l_min * 60.0
 
 
-def _about_liquid(span: PartSpan, litres: float) -> str:
-    if span.kind == "flight":
-        return f"{span.name}: {AIR_RULE}"
-    mass = liquid_needed_kg(litres, span.duration_min / 60.0)
-    return (
-        f"{span.name}: liquid oxygen is allowed but is not part of the sized set; {litres:,.0f} L of gas would take "
-        f"about {mass:.1f} kg of liquid, with what boils away."
+def _about_sources(span: PartSpan, part: Part, concentrator: Concentrator | None) -> list[Said]:
+    """What is said of the sources of a part that needs oxygen."""
+    said = []
+    if not part.sources:
+        said.append("No oxygen source is allowed in {where}; choose one, or it stays uncovered.")
+    if "concentrator" in part.sources and concentrator is None:
+        said.append("A concentrator is allowed in {where}, but none is chosen for the kit.")
+    if "liquid" in part.sources and span.kind == "flight":
+        said.append(f"{{where}}: {AIR_RULE}")
+    return [Said(text, span.name) for text in said]
+
+
+def _legs(span: PartSpan, part: Part, needs: Sequence[_Need], concentrator: Concentrator | None) -> tuple[Leg, ...]:
+    """The part as legs, one for each set of sources; time without oxygen goes with the first."""
+    groups: dict[Given, list[_Need]] = {}
+    for need in needs:
+        groups.setdefault(need.given.without_power(), []).append(need)
+    if not groups:
+        return (_leg(span, part, span.duration_min / 60.0, [], Given(), True),)
+    hours = span.duration_min / 60.0
+    on = [sum(need.share for need in members) for members in groups.values()]
+    idle = max(1.0 - sum(on), 0.0)
+    return tuple(
+        _leg(span, part, hours * (share + (idle if number == 0 else 0.0)), members, sources, number == 0)
+        for number, ((sources, members), share) in enumerate(zip(groups.items(), on, strict=True))
     )
 
 
-def _more_watts(
-    watt: float | None, share: float, decision: Decision, concentrator: Concentrator | None, device: Device
-) -> float | None:
-    """Power so far plus this activity's, weighted by its share; None once the concentrator cannot give it."""
-    if watt is None or concentrator is None:
-        return None
-    if device.kind not in ("cannula", "pulse", "reservoir_cannula"):
-        return None
-    if not concentrator.can_give(flow_l_min=decision.flow_l_min, setting=decision.setting):
-        return None
-    return watt + share * concentrator.power_w(flow_l_min=decision.flow_l_min, setting=decision.setting)
+def _leg(span: PartSpan, part: Part, hours: float, needs: Sequence[_Need], sources: Given, first: bool) -> Leg:
+    share = sum(need.share for need in needs)
+    rate = sum(need.share * need.litres_per_h for need in needs) / share if share else None
+    watt = sum(need.share * need.watt for need in needs) / share if share else 0.0
+    return Leg(
+        part_id=span.part_id,
+        name=span.name,
+        hours=hours,
+        oxygen_h=share * span.duration_min / 60.0,
+        cylinder_l_per_h=rate if sources.cylinder else None,
+        concentrator_w=watt if sources.concentrator else None,
+        airline=sources.airline,
+        stationary=sources.stationary,
+        mains=part.power == "mains",
+        vehicle=part.power == "vehicle" and sources.vehicle,
+        flight=span.kind == "flight",
+        supply_here=first and (part.refill or part.delivery),
+        carry_limit_kg=part.carry_limit_kg,
+        terminal=span.kind in TERMINALS,
+        liquid_l_per_h=rate if sources.liquid else None,
+        equipment_c=part.equipment_c,
+        cold_share=cold_share(part.equipment_c),
+    )

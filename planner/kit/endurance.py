@@ -1,7 +1,8 @@
 """What happens when the trip is late: many trips played through in a policy that a person could follow.
 
-Order of use: the carrier's oxygen, a stationary unit, the plug, the battery down to what the next flight needs, the
-cylinder, then the rest of the battery. Every draw uses the same random numbers for any set, so sets compare fairly.
+Order of use: the carrier's oxygen, a stationary unit, the plug, liquid (it boils away anyway), the battery down to what
+the next flight needs, the cylinder, then the rest of the battery. Every draw uses the same random numbers for any set,
+so sets compare fairly.
 """
 
 from __future__ import annotations
@@ -14,7 +15,7 @@ from numpy.typing import NDArray
 
 from planner.air.ranges import Array
 from planner.kit.legs import Leg, Power
-from planner.kit.selection import CHARGE_SHARE, FLIGHT_RULE
+from planner.kit.selection import CHARGE_SHARE, flight_rule_wh
 
 Flags = NDArray[np.bool_]
 SHORT_H = 0.02  # a minute or so without oxygen is not a run-out
@@ -44,21 +45,36 @@ class Assumptions:
                 "Battery holds",
                 f"{100 * self.battery_mean:.0f} % of its rated energy, spread {100 * self.battery_sd:.0f} %",
             ),
-            ("Concentrator fails", f"once in {self.concentrator_mttf_h:,.0f} h on average"),
-            ("Carrier's oxygen is missing", f"1 flight in {1 / self.airline_fails:.0f}"),
-            ("Stationary unit fails", f"1 night in {1 / self.stationary_fails_a_night:.0f}"),
-            ("Charger fails", f"1 trip in {1 / self.charger_fails:.0f}"),
+            (
+                "Concentrator fails",
+                f"once in {self.concentrator_mttf_h:,.0f} h on average, and is not replaced on the way",
+            ),
+            ("Carrier's oxygen is missing", f"{100 * self.airline_fails:g} of 100 flights"),
+            ("Stationary unit fails", f"{100 * self.stationary_fails_a_night:g} of 100 nights"),
+            ("Charger fails", f"{100 * self.charger_fails:g} of 100 trips"),
             ("Left running when not worn", f"{100 * self.left_running:.0f} % more oxygen"),
         )
 
 
 @dataclass(frozen=True)
 class Carried:
-    """What is there, by leg: usable litres of the cylinders that come in, and of all cylinders carried when full."""
+    """What is there, by leg: usable litres of the cylinders that come in, and of all cylinders carried when full.
+
+    The same of liquid vessels, as litres of gas, with what boils away in an hour; empty where there are none.
+    """
 
     litres_new: tuple[float, ...]
     litres_most: tuple[float, ...]  # what was left behind or swapped is gone; 0 where none may be carried
     batteries: int
+    liquid_new: tuple[float, ...] = ()
+    liquid_most: tuple[float, ...] = ()
+    liquid_loss_l_per_h: tuple[float, ...] = ()
+
+    def liquid(self, number: int) -> tuple[float, float, float]:
+        """New, most and hourly loss of liquid in a leg."""
+        if not self.liquid_new:
+            return 0.0, 0.0, 0.0
+        return self.liquid_new[number], self.liquid_most[number], self.liquid_loss_l_per_h[number]
 
 
 @dataclass(frozen=True, eq=False)
@@ -98,6 +114,10 @@ class RunOut:
     by_cause: dict[str, float]
     draws: int
 
+    def interval(self, share: float) -> tuple[float, float]:
+        """95 % interval of one of the shares by leg or by cause."""
+        return wilson(round(share * self.draws), self.draws)
+
 
 def draw_trips(
     legs: Sequence[Leg],
@@ -125,49 +145,57 @@ def draw_trips(
 def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draws, assumed: Assumptions) -> Played:
     """Play the trips. A wait before a flight is spent where the leg before was, on what is allowed there.
 
-    Where the trip begins with a flight, its wait is spent in that leg. power: None where no concentrator is carried.
+    What is bound to a place covers its wait only in a terminal: not the plug of a car left at the airport, nor the unit
+    of a hotel that was left for it. Where the trip begins with a flight, its wait is spent in that leg, on what is
+    carried. power: None where no concentrator is carried.
     """
     draws, count = drawn.waits_h.shape
     short, down = np.zeros((draws, count)), np.zeros((draws, count), dtype=bool)
     failed = np.zeros((draws, count), dtype=bool)
     litres_left, wh_left = np.zeros((draws, count)), np.zeros((draws, count))
-    litres = np.zeros(draws)
+    litres, liquid = np.zeros(draws), np.zeros(draws)
     full_wh = (0.0 if power is None else power.nominal_wh * carried.batteries) * drawn.battery
     energy, clock = full_wh.copy(), np.zeros(draws)
     for number, leg in enumerate(legs):
         litres = np.minimum(litres + carried.litres_new[number] * drawn.fill, carried.litres_most[number] * drawn.fill)
+        new, most, boils = carried.liquid(number)
+        liquid = np.minimum(liquid + new * drawn.fill, most * drawn.fill)
         hours = np.maximum(leg.hours + drawn.longer_h[:, number], 0.25 * leg.hours)
-        if number == 0:
-            hours = hours + drawn.waits_h[:, 0]
         wait = drawn.waits_h[:, number + 1] if number + 1 < count else np.zeros(draws)
+        if number == 0:
+            wait = wait + drawn.waits_h[:, 0]
         share = leg.oxygen_h / leg.hours
         needed = (hours + wait) * share
+        beyond = np.zeros(draws) if leg.terminal else wait * share
         clock = clock + hours + wait
         working = drawn.failure_h > clock
         if leg.airline:
             needed = np.where(drawn.airline_ok[:, number], wait * share, needed)
         if leg.stationary:
-            needed = np.where(drawn.stationary_ok[:, number], 0.0, needed)
+            needed = np.where(drawn.stationary_ok[:, number], beyond, needed)
         failed[:, number] = (leg.airline & ~drawn.airline_ok[:, number]) | (
             leg.stationary & ~drawn.stationary_ok[:, number]
         )
-        if power is not None and leg.concentrator_w is not None:
-            if leg.mains or leg.vehicle:
-                needed = np.where(working, 0.0, needed)
-            keep = _kept_wh(legs, number)
-            for floor in (np.minimum(keep, energy), np.zeros(draws)):
+        powered = power is not None and leg.concentrator_w is not None
+        if powered and (leg.mains or leg.vehicle):
+            needed = np.where(working, np.minimum(needed, beyond), needed)
+        before = liquid
+        liquid, needed = _from_vessel(leg.liquid_l_per_h, liquid, needed, drawn.flow, assumed)
+        liquid = np.maximum(np.minimum(liquid, before - boils * (hours + wait)), 0.0)
+        if powered:
+            for floor in (np.minimum(_kept_wh(legs, number), energy), np.zeros(draws)):
                 spendable = np.where(working, np.maximum(energy - floor, 0.0), 0.0)
-                used = np.minimum(needed, spendable / leg.concentrator_w)
-                energy, needed = energy - used * leg.concentrator_w, needed - used
-                litres, needed = _from_cylinder(leg, litres, needed, drawn.flow, assumed)
+                used = np.minimum(needed, spendable / leg.battery_w)
+                energy, needed = energy - used * leg.battery_w, needed - used
+                litres, needed = _from_vessel(leg.cylinder_l_per_h, litres, needed, drawn.flow, assumed)
             down[:, number] = ~working
         else:
-            litres, needed = _from_cylinder(leg, litres, needed, drawn.flow, assumed)
+            litres, needed = _from_vessel(leg.cylinder_l_per_h, litres, needed, drawn.flow, assumed)
         if power is not None and leg.mains:
-            gained = CHARGE_SHARE * power.charge_w * (hours + wait)
+            gained = CHARGE_SHARE * power.charge_w * (hours + (wait if leg.terminal else 0.0))
             energy = np.where(drawn.charger_ok, np.minimum(energy + gained, full_wh), energy)
         short[:, number] = needed
-        litres_left[:, number], wh_left[:, number] = litres, energy
+        litres_left[:, number], wh_left[:, number] = litres + liquid, energy
     return Played(short, down, failed, litres_left, wh_left)
 
 
@@ -198,12 +226,12 @@ def wilson(hits: int, draws: int, z: float = 1.959964) -> tuple[float, float]:
     return max(float(centre - half), 0.0), min(float(centre + half), 1.0)
 
 
-def on_time(legs: Sequence[Leg], late_min: float = 0.0) -> Draws:
+def on_time(legs: Sequence[Leg], late_min: float = 0.0, assumed: Assumptions | None = None) -> Draws:
     """One trip with everything as assumed on average; late_min: every flight that much late (the stress case)."""
+    assumed = assumed or Assumptions()
     count = len(legs)
     waits = np.array([[late_min / 60.0 if leg.flight else 0.0 for leg in legs]])
     yes = np.ones((1, count), dtype=bool)
-    assumed = Assumptions()
     return Draws(
         waits_h=waits,
         longer_h=np.zeros((1, count)),
@@ -223,19 +251,22 @@ def with_fewer_litres(carried: Carried, litres: float) -> Carried:
     return replace(carried, litres_new=(first, *carried.litres_new[1:]))
 
 
-def _from_cylinder(leg: Leg, litres: Array, needed: Array, flow: Array, assumed: Assumptions) -> tuple[Array, Array]:
-    if not leg.cylinder_l_per_h:
+def _from_vessel(
+    rate_l_per_h: float | None, litres: Array, needed: Array, flow: Array, assumed: Assumptions
+) -> tuple[Array, Array]:
+    if not rate_l_per_h:
         return litres, needed
-    rate = leg.cylinder_l_per_h * flow * (1.0 + assumed.left_running)
+    rate = rate_l_per_h * flow * (1.0 + assumed.left_running)
     used = np.minimum(needed, litres / rate)
     return litres - used * rate, needed - used
 
 
 def _kept_wh(legs: Sequence[Leg], number: int) -> float:
     """Charge to keep for the next flight that has no other source, before the next chance to charge."""
-    for leg in legs[number + 1 :]:
+    for later in range(number + 1, len(legs)):
+        leg = legs[later]
         if leg.mains:
             return 0.0
         if leg.flight and not leg.airline and leg.concentrator_w:
-            return FLIGHT_RULE * leg.concentrator_w * leg.hours
+            return flight_rule_wh(legs, later)
     return 0.0

@@ -3,17 +3,21 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Literal
 
 from planner.air.ranges import Array
 from planner.kit.cautions import KitCaution
 from planner.kit.endurance import RunOut
 from planner.kit.turn_back import TurnBack
 
+ItemKind = Literal["cylinder", "liquid", "conserver", "concentrator", "battery", "carrier", "stationary"]
+
 
 @dataclass(frozen=True)
 class Item:
     """One line of what to carry. where: part from which it is needed; brought_by in words."""
 
+    kind: ItemKind
     what: str
     count: int
     each_kg: float
@@ -40,6 +44,28 @@ class PartSupply:
     mass_kg: float
     undecided: tuple[str, ...]
     run_out_chance: float
+    run_out_low: float = 0.0
+    run_out_high: float = 0.0
+
+
+@dataclass(frozen=True)
+class OwnSet:
+    """What the cylinders, vessels and packs at hand do alone, on the same trips as the proposed set."""
+
+    peak_kg: float
+    uncovered_h: float
+    reserve_missing_h: float
+    run_out: RunOut
+    items: tuple[Item, ...]
+
+
+@dataclass(frozen=True)
+class CrossCheck:
+    """A full cylinder by the real gas and by the duration factor of the handbooks, down to where it is changed."""
+
+    name: str
+    real_l: float
+    textbook_l: float
 
 
 @dataclass(frozen=True, eq=False)
@@ -73,8 +99,10 @@ class KitPlan:
     turn_back: tuple[TurnBack, ...]
     cautions: tuple[KitCaution, ...]
     assumptions: tuple[tuple[str, str], ...]
-    gap: float
+    gap: float  # inf where nothing better was sought
     finished: bool
+    own: OwnSet | None = None
+    cross_checks: tuple[CrossCheck, ...] = ()
 
     @property
     def uncovered_h(self) -> float:

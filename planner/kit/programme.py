@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import highspy
 import numpy as np
@@ -16,9 +16,13 @@ class Cancelled(Exception):
     """The person stopped the search."""
 
 
+class Unsolved(Exception):
+    """The time ran out before any answer was found."""
+
+
 @dataclass(frozen=True)
 class Solution:
-    """Values of all variables; gap: how far the last objective may be from its best, as a share."""
+    """Values of all variables; gap: how far the last objective sought may be from its best, as a share."""
 
     values: tuple[float, ...]
     gap: float
@@ -66,14 +70,16 @@ class Programme:
     ) -> Solution:
         """Minimise the objectives one after the other, each kept when the next is sought.
 
-        Raises Cancelled when `cancelled` says so. The time limit holds for each objective.
+        Each starts from the answer of the one before, so that none makes an earlier one worse. Raises Cancelled when
+        `cancelled` says so, Unsolved when the first finds nothing in time. The time limit holds for each objective.
         """
         rows = list(self._rows)
         solution = Solution((), 0.0, True)
         for number, objective in enumerate(objectives):
             if cancelled is not None and cancelled():
                 raise Cancelled
-            solution = self._solve_one(objective, rows, time_limit_s, relative_gap, cancelled)
+            found = self._solve_one(objective, rows, solution.values, time_limit_s, relative_gap, cancelled)
+            solution = replace(found, finished=found.finished and solution.finished)
             if number < len(objectives) - 1:
                 reached = sum(cost * solution.values[column] for column, cost in objective.items())
                 slack = max(1e-6, 1e-6 * abs(reached), relative_gap * abs(reached) if solution.gap > 0 else 0.0)
@@ -84,6 +90,7 @@ class Programme:
         self,
         objective: Terms,
         rows: list[tuple[dict[int, float], float, float]],
+        start: tuple[float, ...],
         time_limit_s: float,
         relative_gap: float,
         cancelled: Callable[[], bool] | None,
@@ -94,6 +101,10 @@ class Programme:
         solver.setOptionValue("time_limit", time_limit_s)
         solver.setOptionValue("mip_rel_gap", relative_gap)
         solver.passModel(self._model(objective, rows))
+        if start:
+            known = highspy.HighsSolution()
+            known.col_value = list(start)
+            solver.setSolution(known)
         if cancelled is not None:
 
             def watch(event: highspy.HighsCallbackEvent) -> None:
@@ -105,10 +116,14 @@ class Programme:
         if cancelled is not None and cancelled():
             raise Cancelled
         status = solver.getModelStatus()
-        values = tuple(solver.getSolution().col_value)
-        if len(values) != len(self._lower) or status == highspy.HighsModelStatus.kInfeasible:
+        if status == highspy.HighsModelStatus.kInfeasible:
             raise AssertionError(f"the elastic programme has no solution: {solver.modelStatusToString(status)}")
+        if solver.getInfo().primal_solution_status != highspy.SolutionStatus.kSolutionStatusFeasible:
+            if not start:
+                raise Unsolved
+            return Solution(start, float("inf"), False)
         gap = float(solver.getInfo().mip_gap)
+        values = tuple(solver.getSolution().col_value)
         return Solution(values, gap if np.isfinite(gap) else 0.0, status == highspy.HighsModelStatus.kOptimal)
 
     def _model(self, objective: Terms, rows: list[tuple[dict[int, float], float, float]]) -> highspy.HighsLp:

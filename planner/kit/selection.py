@@ -20,6 +20,7 @@ MOST_OF_A_SIZE = 12
 NEGLIGIBLE_H = 1e-4
 NEGLIGIBLE_KG = 1e-3
 ITEM_KG = 0.05  # an item more counts as this much mass, so that fewer are preferred; planning assumption
+OWN_ITEM_KG = 0.01  # of what is at hand, so that it is preferred to what must be ordered; planning assumption
 
 
 @dataclass(frozen=True)
@@ -29,12 +30,10 @@ class LegUse:
     part_id: str
     uncovered_h: float
     reserve_missing_h: float
-    hours_by: dict[str, float]  # cylinder, battery, plugged, airline, stationary
+    hours_by: dict[str, float]  # cylinder, liquid, battery, plugged, airline, stationary
     cylinders: dict[str, int]
     new_cylinders: dict[str, int]
-    litres_at_start: dict[str, float]
-    litres_used: dict[str, float]
-    watt_hours_at_start: float
+    litres_gone: dict[str, float]  # breathed, and boiled away
     mass_kg: float
     over_limit_kg: float  # above the leg's limit: only where more packs were asked for than it allows
 
@@ -71,23 +70,35 @@ def select(
     *,
     reserve_fraction: float,
     batteries: int | None = None,
+    fixed_kg: float = 0.0,
     time_limit_s: float = 4.0,
     cancelled: Callable[[], bool] | None = None,
 ) -> Selection:
-    """The best set for these legs. batteries: how many packs, where that is not to be chosen.
+    """The best set for these legs. batteries: how many packs, where that is not to be chosen; fixed_kg: carried anyway.
 
-    Raises programme.Cancelled when cancelled. Never infeasible: uncovered hours are slack.
+    Raises programme.Cancelled when cancelled, programme.Unsolved when the time ran out before any set was found. Never
+    infeasible: uncovered hours are slack.
     """
     model = Programme()
-    built = _Built(model, legs, choices, power, reserve_fraction, batteries)
+    built = _Built(model, legs, choices, power, reserve_fraction, batteries, fixed_kg)
     objectives = (
         *([dict.fromkeys(built.over_limit, 1.0)] if built.over_limit else []),
         dict.fromkeys(built.slack, 1.0),
         dict.fromkeys(built.reserve_slack, 1.0),
-        {built.peak: 1.0} | dict.fromkeys(built.items, ITEM_KG),
+        {built.peak: 1.0} | built.items,
     )
     solution = model.solve(objectives, time_limit_s=time_limit_s, cancelled=cancelled)
     return built.read(solution.values, solution.gap, solution.finished)
+
+
+def flight_rule_wh(legs: Sequence[Leg], number: int) -> float:
+    """Watt-hours that the 150 % rule asks for at this leg of a flight: for it and the flight's legs after it."""
+    total = 0.0
+    for leg in legs[number:]:
+        if leg.part_id != legs[number].part_id:
+            break
+        total += FLIGHT_RULE * leg.battery_w * leg.hours
+    return total
 
 
 class _Built:
@@ -101,20 +112,21 @@ class _Built:
         power: Power | None,
         reserve_fraction: float,
         batteries: int | None,
+        fixed_kg: float,
     ) -> None:
-        self.legs, self.choices, self.power = legs, choices, power
+        self.legs, self.choices, self.power, self.fixed_kg = legs, choices, power, fixed_kg
         self.peak = model.variable()
         self.slack: list[int] = []
         self.reserve_slack: list[int] = []
         self.over_limit: list[int] = []
-        self.items: list[int] = []
+        self.items: dict[int, float] = {}
         self.columns: list[dict[str, int]] = []
         packs = 0 if power is None else power.most_batteries if batteries is None else batteries
         least = packs if batteries is not None and power is not None else 0
         self._watt_before = 0.0
         self.packs = model.variable(least, packs, whole=True)
         self.has_power = model.variable(0.0, 0.0 if power is None else 1.0, whole=True)
-        self.items.append(self.packs)
+        self.items[self.packs] = ITEM_KG
         for number, leg in enumerate(legs):
             self._leg(model, number, leg, reserve_fraction)
 
@@ -133,12 +145,12 @@ class _Built:
             sources[columns[name]] = 1.0
         for choice in self.choices:
             self._cylinders(model, number, leg, choice, columns, before)
-            if leg.cylinder_l_per_h:
-                sources[columns[f"used {choice.size_id}"]] = 1.0 / leg.cylinder_l_per_h
+            if rate := choice.rate(leg):
+                sources[columns[f"used {choice.key}"]] = 1.0 / rate
         columns["slack"] = model.variable()
         self.slack.append(columns["slack"])
         model.row({**sources, columns["slack"]: 1.0}, leg.oxygen_h, leg.oxygen_h)
-        self._energy(model, leg, columns, before)
+        self._energy(model, number, leg, columns, before)
         self._reserve(model, leg, columns, reserve_fraction)
         self._mass(model, leg, columns)
 
@@ -151,17 +163,18 @@ class _Built:
         columns: dict[str, int],
         before: dict[str, int] | None,
     ) -> None:
-        size = choice.size_id
+        size = choice.key
         most = MOST_OF_A_SIZE if choice.most is None else choice.most
-        carried_most = 0 if leg.flight and not (choice.air_allowed and leg.cylinder_l_per_h is not None) else most
+        carried_most = most if choice.flies(leg) else 0
         columns[f"count {size}"] = model.variable(0, carried_most, whole=True)
         can_get = number == 0 or leg.supply_here
         columns[f"new {size}"] = model.variable(0, carried_most if can_get else 0, whole=True)
         columns[f"left {size}"] = model.variable(0, most, whole=True)
         columns[f"litres {size}"] = model.variable()
-        columns[f"used {size}"] = model.variable(0.0, 0.0 if leg.cylinder_l_per_h is None else float("inf"))
+        columns[f"used {size}"] = model.variable(0.0, 0.0 if choice.rate(leg) is None else float("inf"))
         columns[f"spilt {size}"] = model.variable()
-        self.items.append(columns[f"new {size}"])
+        columns[f"lost {size}"] = model.variable(0.0, float("inf") if choice.loss_l_per_h > 0.0 else 0.0)
+        self.items[columns[f"new {size}"]] = OWN_ITEM_KG if choice.own else ITEM_KG
         count = {columns[f"count {size}"]: 1.0, columns[f"new {size}"]: -1.0, columns[f"left {size}"]: 1.0}
         litres = {
             columns[f"litres {size}"]: 1.0,
@@ -172,16 +185,31 @@ class _Built:
             count[before[f"count {size}"]] = -1.0
             litres[before[f"litres {size}"]] = -1.0
             litres[before[f"used {size}"]] = 1.0
+            litres[before[f"lost {size}"]] = 1.0
         model.row(count, 0.0, 0.0)
         model.row(litres, 0.0, 0.0)
         model.row({columns[f"litres {size}"]: 1.0, columns[f"count {size}"]: -choice.usable_l}, upper=0.0)
-        model.row({columns[f"used {size}"]: 1.0, columns[f"litres {size}"]: -1.0}, upper=0.0)
+        gone = {columns[f"used {size}"]: 1.0, columns[f"lost {size}"]: 1.0, columns[f"litres {size}"]: -1.0}
+        model.row(gone, upper=0.0)
+        if choice.loss_l_per_h > 0.0:
+            self._boiled_away(model, leg, choice, columns, most * choice.usable_l)
 
-    def _energy(self, model: Programme, leg: Leg, columns: dict[str, int], before: dict[str, int] | None) -> None:
+    def _boiled_away(self, model: Programme, leg: Leg, choice: Choice, columns: dict[str, int], room_l: float) -> None:
+        """What boils away in the leg is gone, or the vessel is empty at its end; what is drawn counts towards it."""
+        used, lost, litres, count = (columns[f"{name} {choice.key}"] for name in ("used", "lost", "litres", "count"))
+        boils = choice.loss_l_per_h * leg.hours
+        most = boils * (MOST_OF_A_SIZE if choice.most is None else choice.most)
+        empty = model.variable(0.0, 1.0, whole=True)
+        model.row({used: 1.0, lost: 1.0, count: -boils, empty: most}, lower=0.0)
+        model.row({litres: 1.0, used: -1.0, lost: -1.0, empty: room_l}, upper=room_l)
+
+    def _energy(
+        self, model: Programme, number: int, leg: Leg, columns: dict[str, int], before: dict[str, int] | None
+    ) -> None:
         columns["energy"] = model.variable()
         columns["charged"] = model.variable(0.0, self._charge_wh(leg))
         capacity = 0.0 if self.power is None else self.power.battery_wh
-        watt = leg.concentrator_w or 0.0
+        watt = leg.battery_w
         model.row({columns["energy"]: 1.0, self.packs: -capacity}, upper=0.0)
         if before is None:
             model.row({columns["energy"]: 1.0, self.packs: -capacity}, lower=0.0)
@@ -195,7 +223,7 @@ class _Built:
         if leg.flight and watt > 0.0:  # the rule asks for charged packs whether or not the seat has a plug
             columns["on board"] = model.variable(0.0, 1.0, whole=True)
             model.row({**running, columns["on board"]: -leg.oxygen_h}, upper=0.0)
-            model.row({columns["energy"]: 1.0, columns["on board"]: -FLIGHT_RULE * watt * leg.hours}, lower=0.0)
+            model.row({columns["energy"]: 1.0, columns["on board"]: -flight_rule_wh(self.legs, number)}, lower=0.0)
 
     def _charge_wh(self, leg: Leg) -> float:
         if self.power is None or not leg.mains:
@@ -210,12 +238,12 @@ class _Built:
         if wanted <= 0.0 or leg.stationary:
             return
         terms: dict[int, float] = {columns["reserve"]: 1.0}
-        if leg.cylinder_l_per_h:
-            for choice in self.choices:
-                terms[columns[f"litres {choice.size_id}"]] = 1.0 / leg.cylinder_l_per_h
-                terms[columns[f"used {choice.size_id}"]] = -1.0 / leg.cylinder_l_per_h
+        for choice in self.choices:
+            if rate := choice.rate(leg):
+                terms[columns[f"litres {choice.key}"]] = 1.0 / rate
+                terms[columns[f"used {choice.key}"]] = terms[columns[f"lost {choice.key}"]] = -1.0 / rate
         if leg.concentrator_w:
-            terms[columns["energy"]] = 1.0 / leg.concentrator_w
+            terms[columns["energy"]] = 1.0 / leg.battery_w
             terms[columns["battery"]] = -1.0
         if leg.airline:
             terms[columns["airline"]] = fraction  # the carrier keeps the reserve for what it brings
@@ -224,12 +252,12 @@ class _Built:
         model.row(terms, lower=wanted)
 
     def _mass(self, model: Programme, leg: Leg, columns: dict[str, int]) -> None:
-        mass = {columns[f"count {one.size_id}"]: one.gross_kg for one in self.choices}
+        mass = {columns[f"count {one.key}"]: one.gross_kg for one in self.choices}
         if self.power is not None:
             mass[self.packs] = self.power.battery_mass_kg
             mass[self.has_power] = self.power.mass_kg
         columns["mass"] = model.variable()
-        model.row({**mass, columns["mass"]: -1.0}, 0.0, 0.0)
+        model.row({**mass, columns["mass"]: -1.0}, -self.fixed_kg, -self.fixed_kg)
         model.row({columns["mass"]: 1.0, self.peak: -1.0}, upper=0.0)
         if leg.carry_limit_kg is not None:
             columns["over"] = model.variable()
@@ -244,10 +272,12 @@ class _Built:
             def value(name: str, columns: dict[str, int] = columns) -> float:
                 return max(values[columns[name]], 0.0)
 
-            sizes = [one.size_id for one in self.choices]
+            sizes = [one.key for one in self.choices]
             by = {name: value(name) for name in ("airline", "stationary", "plugged", "battery")}
             litres = {size: value(f"used {size}") for size in sizes}
-            by["cylinder"] = sum(litres.values()) / leg.cylinder_l_per_h if leg.cylinder_l_per_h else 0.0
+            for name, liquid in (("cylinder", False), ("liquid", True)):
+                rates = {one.key: one.rate(leg) for one in self.choices if one.liquid == liquid}
+                by[name] = sum(litres[key] / rate for key, rate in rates.items() if rate)
             uncovered, missing = value("slack"), value("reserve")
             over = value("over") if "over" in columns else 0.0
             uses.append(
@@ -258,9 +288,7 @@ class _Built:
                     hours_by={name: hours for name, hours in by.items() if hours > NEGLIGIBLE_H},
                     cylinders={size: count for size in sizes if (count := round(value(f"count {size}")))},
                     new_cylinders={size: count for size in sizes if (count := round(value(f"new {size}")))},
-                    litres_at_start={size: value(f"litres {size}") for size in sizes},
-                    litres_used=litres,
-                    watt_hours_at_start=value("energy"),
+                    litres_gone={key: used + value(f"lost {key}") for key, used in litres.items()},
                     mass_kg=value("mass"),
                     over_limit_kg=over if over > NEGLIGIBLE_KG else 0.0,
                 )

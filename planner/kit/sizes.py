@@ -1,4 +1,4 @@
-"""Cylinder sizes, concentrator classes and conservers, read from the profiles and checked."""
+"""Cylinder sizes and concentrator classes, read from the profiles and checked."""
 
 from __future__ import annotations
 
@@ -8,7 +8,7 @@ from typing import Any
 
 from planner.catalogue import read_entries
 from planner.errors import InputError, ProfileError
-from planner.kit.cylinder import contents_l, oxygen_mass_kg
+from planner.kit.cylinder import contents_l, oxygen_mass_kg, textbook_minutes
 
 CYLINDERS, CONCENTRATORS = "cylinders.toml", "concentrators.toml"
 REGULATOR_KG = 0.35  # a light regulator, 0.3 to 0.7 kg (from memory)
@@ -48,6 +48,12 @@ class CylinderSize:
         """Litres between this fill and the gauge pressure at which it is changed, at the reference temperature."""
         left = contents_l(self.water_capacity_l, residual_bar, self.reference_c)
         return max(self.full_l * fill - left, 0.0)
+
+    def textbook_usable_l(self, residual_bar: float) -> float | None:
+        """The same by the handbooks' duration factor, as a cross-check only; None where there is no factor."""
+        if self.textbook_l_per_psi is None:
+            return None
+        return textbook_minutes(self.textbook_l_per_psi, self.service_bar, 1.0, residual_bar)
 
 
 @dataclass(frozen=True)

@@ -47,7 +47,9 @@ def strengthen(
     masses_kg: what the planned set weighs in each leg; power: None where no concentrator is carried. Only the set's
     own lightest cylinder is added, and only where cylinders are carried or may be at the start.
     """
-    choice = min((one for one in choices if one.most is None), key=lambda one: one.gross_kg, default=None)
+    choice = min(
+        (one for one in choices if one.most is None and not one.liquid), key=lambda one: one.gross_kg, default=None
+    )
     may_carry = choice is not None and legs[0].cylinder_l_per_h is not None
     battery_kg = 0.0 if power is None else power.battery_mass_kg
     more_packs = 0
@@ -85,10 +87,15 @@ def strengthen(
     return best
 
 
+def as_planned(carried: Carried, peak_kg: float, chance: RunOut) -> Stronger:
+    """A set to which nothing was added."""
+    return Stronger(carried, 0, 0, None, peak_kg, chance, True)
+
+
 def _kept_legs(legs: Sequence[Leg], choice: Choice | None) -> int:
     """In how many legs from the start a cylinder of this size may be with the traveller."""
     for number, leg in enumerate(legs):
-        if leg.flight and not (choice is not None and choice.air_allowed and leg.cylinder_l_per_h is not None):
+        if choice is None or not choice.flies(leg):
             return number
     return len(legs)
 

@@ -6,7 +6,8 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from planner.kit.cylinder import HIGHEST_GAUGE_BAR, contents_l, gauge_bar
-from planner.kit.legs import Leg, Power
+from planner.kit.legs import Choice, Leg, Power
+from planner.kit.oxygen_gas import G_PER_L
 from planner.kit.selection import CHARGE_SHARE, FLIGHT_RULE, LegUse
 from planner.kit.sizes import CylinderSize
 
@@ -15,48 +16,61 @@ READ_AT_C = 15.0  # planning assumption where no temperature is entered
 
 @dataclass(frozen=True)
 class TurnBack:
-    """At the start of a part: below these readings the plan no longer holds. None: that source is not used on."""
+    """At the start of a part: below these readings the plan no longer holds. None: that source is not used on.
+
+    battery_percent is of all packs; above 100 the packs carried are fewer than the rule or the reserve asks for.
+    """
 
     part_id: str
     name: str
     litres_needed: float | None
-    gauge_bar: tuple[tuple[str, float], ...]  # size name and reading of one full cylinder of the set, at temperature_c
+    gauge_bar: tuple[tuple[str, float], ...]  # name and reading of the one in use of that size, at temperature_c
     temperature_c: float
     battery_percent: float | None
     fresh_cylinders: int
+    liquid_kg: float | None = None
 
 
 def turn_back(
     legs: Sequence[Leg],
     uses: Sequence[LegUse],
-    sizes: dict[str, CylinderSize],
+    choices: Sequence[Choice],
     power: Power | None,
     batteries: int,
     *,
     reserve_fraction: float,
     residual_bar: float,
-    temperature_c: float = READ_AT_C,
 ) -> tuple[TurnBack, ...]:
-    """One reading for each part in which cylinder gas or charge is planned to be used from there on.
+    """One reading for each part in which cylinder gas, liquid or charge is planned to be used from there on.
 
-    The gas needed is the planned use up to the next supply with the reserve on top. The reading is that of the cylinder
-    in use when the others in the set are full.
+    What is needed is the planned use up to the next supply with the reserve on top; for a flight on batteries at least
+    what the 150 % rule asks for. The gauge reading is that of the cylinder in use when the others in the set are full,
+    at the temperature entered for the part, else at 15 degC.
     """
+    known = {choice.key: (choice, choice.size) for choice in choices if choice.size is not None}
+    vessels = {choice.key: choice for choice in choices if choice.liquid}
     found = []
     for number, (leg, use) in enumerate(zip(legs, uses, strict=True)):
-        litres = _litres_ahead(uses, sizes, residual_bar, number) * (1.0 + reserve_fraction)
+        if number and legs[number - 1].part_id == leg.part_id:
+            continue  # the part began before
+        litres = _litres_ahead(uses, {key: choice for key, (choice, _) in known.items()}, number)
+        litres *= 1.0 + reserve_fraction
+        temperature_c = READ_AT_C if leg.equipment_c is None else leg.equipment_c
         readings: list[tuple[str, float]] = []
         fresh = 0
+        there = {key: count for key, count in use.cylinders.items() if key in known}
         if litres > 0.0:
-            usable = {one: sizes[one].usable_l(residual_bar) * count for one, count in use.cylinders.items()}
-            for size_id, count in use.cylinders.items():
-                beside = sum(usable.values()) - usable[size_id]  # the cylinders of other sizes, full
+            usable = {key: known[key][0].usable_l * count for key, count in there.items()}
+            for key, count in there.items():
+                choice, size = known[key]
+                beside = sum(usable.values()) - usable[key]  # the cylinders of other sizes, full
                 own = max(litres - beside, 0.0)
-                reading, fresh_here = _reading(sizes[size_id], count, own, residual_bar, temperature_c)
-                readings.append((sizes[size_id].name, reading))
-                fresh = max(fresh, fresh_here + sum(use.cylinders.values()) - count)
-        percent = _battery_percent(legs, uses, number, power, batteries)
-        if readings or percent is not None:
+                reading, fresh_here = _reading(choice, size, count, own, residual_bar, temperature_c)
+                readings.append((choice.name, reading))
+                fresh = max(fresh, fresh_here + sum(there.values()) - count)
+        liquid = _litres_ahead(uses, vessels, number) * (1.0 + reserve_fraction)
+        percent = _battery_percent(legs, uses, number, power, batteries, reserve_fraction)
+        if readings or liquid > 0.0 or percent is not None:
             found.append(
                 TurnBack(
                     part_id=leg.part_id,
@@ -66,27 +80,28 @@ def turn_back(
                     temperature_c=temperature_c,
                     battery_percent=percent,
                     fresh_cylinders=fresh,
+                    liquid_kg=liquid * G_PER_L / 1000.0 if liquid > 0.0 else None,
                 )
             )
     return tuple(found)
 
 
-def _litres_ahead(uses: Sequence[LegUse], sizes: dict[str, CylinderSize], residual_bar: float, number: int) -> float:
-    """Litres that must be there at this part: what is used ahead and not covered by what is delivered on the way."""
+def _litres_ahead(uses: Sequence[LegUse], choices: dict[str, Choice], number: int) -> float:
+    """Litres that must be there at this leg: what goes ahead and is not covered by what is delivered on the way."""
     needed = 0.0
     for later in range(len(uses) - 1, number - 1, -1):
-        needed += sum(uses[later].litres_used.values())
+        needed += sum(litres for key, litres in uses[later].litres_gone.items() if key in choices)
         if later > number:
             new = uses[later].new_cylinders.items()
-            needed = max(needed - sum(sizes[size].usable_l(residual_bar) * count for size, count in new), 0.0)
+            needed = max(needed - sum(choices[key].usable_l * count for key, count in new if key in choices), 0.0)
     return needed
 
 
 def _reading(
-    size: CylinderSize, count: int, litres: float, residual_bar: float, temperature_c: float
+    choice: Choice, size: CylinderSize, count: int, litres: float, residual_bar: float, temperature_c: float
 ) -> tuple[float, int]:
     """Reading of the cylinder in use, and how many full ones must stand beside it."""
-    usable = size.usable_l(residual_bar)
+    usable = choice.usable_l
     full_beside = min(int(litres // usable), count - 1) if usable > 0.0 else 0
     own = min(litres - full_beside * usable, usable)
     left = contents_l(size.water_capacity_l, residual_bar, size.reference_c)
@@ -95,18 +110,25 @@ def _reading(
 
 
 def _battery_percent(
-    legs: Sequence[Leg], uses: Sequence[LegUse], number: int, power: Power | None, batteries: int
+    legs: Sequence[Leg],
+    uses: Sequence[LegUse],
+    number: int,
+    power: Power | None,
+    batteries: int,
+    reserve_fraction: float,
 ) -> float | None:
-    """Charge that must be there at this part, less what plugs on the way give, as per cent of all packs carried."""
+    """Charge that must be there at this leg, less what plugs on the way give, as per cent of all packs carried."""
     if power is None or batteries == 0:
         return None
     needed = 0.0
     for later in range(len(legs) - 1, number - 1, -1):
         leg, hours = legs[later], uses[later].hours_by.get("battery", 0.0)
-        watt = leg.concentrator_w or 0.0
-        needed += watt * (FLIGHT_RULE * leg.hours if leg.flight and hours > 0.0 else hours)
+        wanted = hours * (1.0 + reserve_fraction)
+        if leg.flight and hours > 0.0:
+            wanted = max(wanted, FLIGHT_RULE * leg.hours)
+        needed += leg.battery_w * wanted
         if later > number and leg.mains:
             needed = max(needed - CHARGE_SHARE * power.charge_w * leg.hours, 0.0)
     if needed <= 0.0:
         return None
-    return min(100.0 * needed / (power.battery_wh * batteries), 100.0)
+    return 100.0 * needed / (power.battery_wh * batteries)

@@ -7,6 +7,7 @@ import numpy as np
 from planner.charts.layout import Array, Drawing
 from planner.charts.ribbon import lay_ribbon
 from planner.charts.supply import supply_layer
+from planner.kit.kit_plan import ItemKind
 from planner.kit.sizes import load_concentrators
 from planner.kit.turn_back import TurnBack
 from planner.papers import fonts
@@ -14,8 +15,6 @@ from planner.papers.desk import Desk, capital
 from planner.papers.flow import Column, Flow, Row
 from planner.papers.record_trip import LAYERED_RIBBON_PT, TEXT_PT, ribbon_parts
 from planner.units import charge_to_read
-
-BATTERY, CYLINDER = "Battery", "Cylinder"  # how the kit names its items
 
 
 def write_items(flow: Flow, desk: Desk) -> None:
@@ -73,9 +72,21 @@ def write_endurance(flow: Flow, desk: Desk) -> None:
     worst = max(kit.parts, key=lambda part: part.run_out_chance)
     if worst.run_out_chance > 0.0:
         flow.paragraph(say("kit.worst", part=worst.name, chance=q.chance(worst.run_out_chance)))
+    causes = [
+        say("kit.cause", cause=cause, chance=q.chance(share), low=q.chance(low), high=q.chance(high))
+        for cause, share in kit.run_out.by_cause.items()
+        if share > 0.0
+        for low, high in [kit.run_out.interval(share)]
+    ]
+    if causes:
+        flow.paragraph(say("kit.causes", causes="; ".join(causes)))
     if kit.lighter is not None:
         change, chance = kit.lighter
         flow.paragraph(say("kit.lighter", change=capital(change), chance=q.chance(chance)))
+    if kit.own is not None:
+        flow.paragraph(say("kit.own", chance=q.chance(kit.own.run_out.chance), mass=q.mass(kit.own.peak_kg)))
+        if kit.own.uncovered_h > 0.0:
+            flow.note(say("kit.own_uncovered", duration=q.duration(60.0 * kit.own.uncovered_h)))
     reserve = desk.case.policy.reserve_fraction
     late = q.duration(desk.case.policy.stress_late_min)
     flow.paragraph(say("kit.reserve", reserve=q.percent(100.0 * reserve), late=late), scale=0.9, role="muted")
@@ -122,10 +133,10 @@ def turn_back_rows(desk: Desk) -> list[tuple[str, str]]:
 def turn_back_note(desk: Desk) -> str:
     """The temperature for which the gauge readings hold; empty where no gauge is read."""
     points = desk.plan.kit.turn_back if desk.plan.kit is not None else ()
-    gauged = next((point for point in points if point.gauge_bar), None)
-    if gauged is None:
-        return ""
-    return desk.say("kit.read_at", temperature=desk.quantities.temperature(gauged.temperature_c))
+    temperatures = {point.temperature_c for point in points if point.gauge_bar}
+    if len(temperatures) != 1:
+        return ""  # each reading says its own
+    return desk.say("kit.read_at", temperature=desk.quantities.temperature(temperatures.pop()))
 
 
 def concentrator_text(desk: Desk) -> str:
@@ -140,7 +151,7 @@ def batteries_text(desk: Desk) -> str:
     if concentrator is None or concentrator.battery_wh <= 0.0:
         return ""
     energy = desk.quantities.watt_hours(concentrator.battery_wh)
-    count = _count(desk, BATTERY) or desk.case.kit.batteries
+    count = _count(desk, "battery") or desk.case.kit.batteries
     if not count:
         return desk.say("kit.battery_count_unknown", energy=energy)
     return desk.texts.count("kit.batteries", count, energy=energy)
@@ -152,7 +163,7 @@ def cylinders_text(desk: Desk) -> str:
     kit = desk.plan.kit
     if kit is None or not any("cylinder" in part.sources for part in flights):
         return desk.say("kit.no_cylinders_in_flight")
-    items = [item for item in kit.items if item.what.startswith(CYLINDER)]
+    items = [item for item in kit.items if item.kind == "cylinder"]
     texts = [
         desk.say("kit.cylinder", number=item.count, name=item.what, mass=desk.quantities.mass(item.each_kg))
         for item in items
@@ -161,15 +172,26 @@ def cylinders_text(desk: Desk) -> str:
 
 
 def _readings(desk: Desk, point: TurnBack) -> list[str]:
-    q = desk.quantities
-    readings = [desk.say("kit.reading_cylinder", reading=q.gauge_up(bar), name=name) for name, bar in point.gauge_bar]
+    say, q = desk.say, desk.quantities
+    if turn_back_note(desk):
+        readings = [say("kit.reading_cylinder", reading=q.gauge_up(bar), name=name) for name, bar in point.gauge_bar]
+    else:
+        at = q.temperature(point.temperature_c)
+        readings = [
+            say("kit.reading_cylinder_at", reading=q.gauge_up(bar), name=name, temperature=at)
+            for name, bar in point.gauge_bar
+        ]
     if point.fresh_cylinders:
         readings.append(desk.texts.count("kit.reading_fresh", point.fresh_cylinders))
-    if point.battery_percent is not None:
+    if point.liquid_kg is not None:
+        readings.append(say("kit.reading_liquid", mass=q.mass_up(point.liquid_kg)))
+    if point.battery_percent is not None and point.battery_percent > 100.0:
+        readings.append(say("kit.reading_battery_short"))
+    elif point.battery_percent is not None:
         readings.append(desk.say("kit.reading_battery", percent=q.percent(charge_to_read(point.battery_percent))))
     return readings
 
 
-def _count(desk: Desk, kind: str) -> int:
+def _count(desk: Desk, kind: ItemKind) -> int:
     kit = desk.plan.kit
-    return sum(item.count for item in kit.items if item.what.startswith(kind)) if kit is not None else 0
+    return sum(item.count for item in kit.items if item.kind == kind) if kit is not None else 0

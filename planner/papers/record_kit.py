@@ -12,7 +12,7 @@ SAID_ELSEWHERE = {"Reserve on top of the plan", "Cylinder is changed at"}  # by 
 
 def write_kit(flow: Flow, desk: Desk) -> None:
     """The whole kit with its assumptions."""
-    say, kit = desk.say, desk.plan.kit
+    say, q, kit = desk.say, desk.quantities, desk.plan.kit
     flow.heading(say("record.kit"))
     write_items(flow, desk)
     if kit is None:
@@ -23,6 +23,11 @@ def write_kit(flow: Flow, desk: Desk) -> None:
     write_turn_back(flow, desk)
     for caution in kit.cautions:
         flow.paragraph(say("kit.caution", text=caution.text, source=caution.source), lead=caution.lead, scale=0.92)
+    for check in kit.cross_checks:
+        apart = q.percent(100.0 * (check.textbook_l / check.real_l - 1.0))
+        real, textbook = q.litres(check.real_l), q.litres(check.textbook_l)
+        text = say("kit.cross_check", name=check.name, real=real, textbook=textbook, percent=apart)
+        flow.paragraph(text, scale=0.9, role="muted")
     if kit.assumptions:
         flow.lead(say("kit.assumptions"))
         flow.pairs([line for line in kit.assumptions if line[0] not in SAID_ELSEWHERE])
@@ -68,7 +73,14 @@ def _parts(flow: Flow, desk: Desk) -> None:
                 q.unknown if part.watt_hours is None else q.watt_hours(part.watt_hours),
                 "\n".join(covered),
                 q.mass(part.mass_kg),
-                q.chance(part.run_out_chance),
+                say(
+                    "kit.runs_short_value",
+                    chance=q.chance(part.run_out_chance),
+                    low=q.chance(part.run_out_low),
+                    high=q.chance(part.run_out_high),
+                )
+                if part.run_out_chance >= 0.001
+                else q.chance(part.run_out_chance),
             ))
         )  # fmt: skip
     flow.table(columns, rows, scale=0.88)

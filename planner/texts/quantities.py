@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 from planner import units
@@ -127,6 +128,10 @@ class Quantities:
     def watt_hours(self, wh: float) -> str:
         """Such as "90 Wh"."""
         return f"{self.texts.number(wh)} Wh"
+
+    def mass_up(self, kg: float) -> str:
+        """A mass that must not be passed downwards: rounded up to 0.1 kg."""
+        return self.mass(math.ceil(kg * 10.0 - 1e-9) / 10.0)
 
     def mass(self, kg: float) -> str:
         """Such as "7.4 kg"; with pounds first where gauges are in psi."""

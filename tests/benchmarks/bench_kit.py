@@ -50,7 +50,7 @@ def random_trip(rng: np.random.Generator) -> list[Leg]:
                 flight=flight,
                 supply_here=bool(rng.random() < 0.2),
                 carry_limit_kg=float(rng.uniform(8.0, 20.0)) if rng.random() < 0.2 else None,
-                asleep=False,
+                terminal=False,
             )
         )
     return legs

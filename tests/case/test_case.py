@@ -88,3 +88,17 @@ def test_a_decision_rests_on_the_patient_and_the_trip_and_not_on_the_kit():
     longer = case(trip={"parts": [{**FLIGHT, "duration_min": 180}]})
     assert base.decision_digest() == other_kit.decision_digest()
     assert base.decision_digest() != longer.decision_digest()
+
+
+class LaterCase(Case):
+    """The case of a later version of the program, which has entries more."""
+
+    later: str | None = None
+    later_list: tuple[str, ...] = ()
+
+
+def test_an_entry_that_only_a_later_version_has_changes_no_digest_until_it_is_made():
+    now = case(patient={"age_years": 70})
+    later = LaterCase.model_validate_json(now.model_dump_json())
+    assert later.inputs_digest() == now.inputs_digest()
+    assert later.model_copy(update={"later": "made"}).inputs_digest() != now.inputs_digest()

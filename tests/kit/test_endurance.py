@@ -153,3 +153,47 @@ def test_a_plug_gives_nothing_where_no_concentrator_is_carried():
     wait = replace(ROAD, cylinder_l_per_h=None, concentrator_w=50.0, mains=True)
     played = play([wait], Carried((0.0,), (0.0,), 0), None, certain([wait]), ASSUMED)
     assert played.short_h[0, 0] == pytest.approx(2.0)
+
+
+def test_a_hotels_unit_and_a_cars_plug_do_not_cover_the_wait_at_the_airport():
+    hotel = replace(ROAD, cylinder_l_per_h=None, stationary=True)
+    car = replace(ROAD, cylinder_l_per_h=None, concentrator_w=50.0, vehicle=True)
+    legs = [hotel, FLIGHT]
+    played = play(legs, Carried((0.0, 0.0), (0.0, 0.0), 0), None, certain(legs, waits_h=[0.0, 1.0]), ASSUMED)
+    assert played.short_h[0, 0] == pytest.approx(1.0)
+    legs = [car, replace(FLIGHT, airline=True)]
+    played = play(legs, Carried((0.0, 0.0), (0.0, 0.0), 2), POWER, certain(legs, waits_h=[0.0, 1.0]), ASSUMED)
+    assert played.watt_hours_left[0, 0] == pytest.approx(150.0)  # an hour of 50 W from two packs of 100 Wh
+    terminal = [replace(car, mains=True, vehicle=False, terminal=True), legs[1]]
+    played = play(terminal, Carried((0.0, 0.0), (0.0, 0.0), 2), POWER, certain(legs, waits_h=[0.0, 1.0]), ASSUMED)
+    assert played.watt_hours_left[0, 0] == pytest.approx(200.0)
+
+
+def test_the_carriers_oxygen_does_not_cover_the_wait_at_the_gate():
+    leg = replace(FLIGHT, airline=True, concentrator_w=None)
+    played = play([leg], Carried((0.0,), (0.0,), 0), None, certain([leg], waits_h=[2.0]), ASSUMED)
+    assert played.short_h[0, 0] == pytest.approx(2.0)
+
+
+def test_liquid_is_drawn_first_and_boils_away_also_when_late():
+    leg = replace(ROAD, liquid_l_per_h=120.0, hours=3.0, oxygen_h=1.0)
+    carried = Carried((500.0,), (500.0,), 0, (400.0,), (400.0,), (50.0,))
+    on_plan = play([leg], carried, None, certain([leg]), ASSUMED)
+    assert on_plan.litres_left[0, 0] == pytest.approx(500.0 + 400.0 - 150.0)  # three hours boil away more than is drawn
+    legs = [leg, replace(FLIGHT, airline=True)]
+    late = Carried((500.0, 0.0), (500.0, 0.0), 0, (400.0, 0.0), (400.0, 0.0), (50.0, 0.0))
+    played = play(legs, late, None, certain(legs, waits_h=[0.0, 3.0]), ASSUMED)
+    assert played.litres_left[0].tolist() == pytest.approx([500.0 + 400.0 - 300.0, 0.0])
+
+
+def test_a_cold_battery_is_emptied_sooner():
+    cold = replace(FLIGHT, cold_share=0.5)
+    played = play([cold], Carried((0.0,), (0.0,), 2), POWER, certain([cold]), ASSUMED)
+    assert played.short_h[0, 0] == pytest.approx(1.0)  # 200 Wh at 100 W cover 2 of 3 h
+
+
+def test_each_share_has_its_interval():
+    found = run_out(play([ROAD], Carried((245.0,), (1e6,), 0), None, trips([ROAD]), Assumptions()))
+    low, high = found.interval(found.by_cause["delay or use"])
+    assert low < found.by_cause["delay or use"] < high
+    assert found.interval(found.chance) == (found.low, found.high)

@@ -9,7 +9,7 @@ from scipy.optimize import linprog
 
 from planner.kit.legs import Choice, Leg, Power
 from planner.kit.programme import Cancelled
-from planner.kit.selection import FLIGHT_RULE, ITEM_KG, select
+from planner.kit.selection import CHARGE_SHARE, FLIGHT_RULE, ITEM_KG, flight_rule_wh, select
 
 LEG = Leg(
     part_id="a",
@@ -25,7 +25,7 @@ LEG = Leg(
     flight=False,
     supply_here=False,
     carry_limit_kg=None,
-    asleep=False,
+    terminal=False,
 )
 SMALL = Choice("small", "1 L", 190.0, 212.0, 2.1, None, True)
 LARGE = Choice("large", "3 L", 580.0, 636.0, 5.2, None, False)
@@ -201,3 +201,103 @@ def test_no_more_batteries_are_chosen_than_may_be_carried():
     found = chosen([replace(flight(), hours=6.0, oxygen_h=6.0)], power=replace(POWER, most_batteries=3))
     assert found.batteries <= 3
     assert found.uncovered_h == pytest.approx(6.0)
+
+
+def fewest_packs(legs, power):
+    """The fewest packs that drive the concentrator through all legs, by trying each number: rule, use and charge."""
+    for packs in range(power.most_batteries + 1):
+        full = energy = packs * power.battery_wh
+        enough = True
+        for leg in legs:
+            plugged = leg.mains
+            rule = FLIGHT_RULE * leg.battery_w * leg.hours if leg.flight else 0.0
+            use = 0.0 if plugged else leg.battery_w * leg.oxygen_h
+            enough = enough and energy + 1e-9 >= max(rule, use)
+            energy -= use
+            if plugged:
+                energy = min(full, energy + CHARGE_SHARE * power.charge_w * leg.hours)
+        if enough:
+            return packs
+    return None
+
+
+@pytest.mark.parametrize("seed", range(20))
+def test_the_fewest_batteries_are_those_found_by_trying_each_number(seed):
+    rng = np.random.default_rng(seed)
+    legs = []
+    for number, hours in enumerate(rng.uniform(0.3, 2.5, 5)):
+        flies = bool(rng.random() < 0.4)
+        legs.append(
+            replace(
+                LEG,
+                part_id=str(number),
+                hours=float(hours),
+                oxygen_h=float(hours),
+                cylinder_l_per_h=None,
+                concentrator_w=float(rng.uniform(20.0, 90.0)),
+                cold_share=float(rng.choice([1.0, 0.8])),
+                flight=flies,
+                mains=not flies and bool(rng.random() < 0.4),
+            )
+        )
+    wanted = fewest_packs(legs, POWER)
+    found = select(legs, (), POWER, reserve_fraction=0.0, time_limit_s=10.0)
+    if wanted is None:
+        assert found.uncovered_h > 0.0
+    else:
+        assert found.uncovered_h == 0.0
+        assert found.batteries == wanted
+
+
+VESSEL = Choice("liquid 0", "Vessel", 800.0, 800.0, 3.5, 1, False, own=True, liquid=True, loss_l_per_h=20.0)
+
+
+def liquid_road(hours, oxygen_h, **changes):
+    return replace(LEG, hours=hours, oxygen_h=oxygen_h, cylinder_l_per_h=None, liquid_l_per_h=120.0, **changes)
+
+
+def test_liquid_boils_away_while_it_waits():
+    idle = liquid_road(35.0, 0.0)
+    found = chosen([idle, liquid_road(4.0, 4.0, part_id="b")], choices=(VESSEL,))
+    # 35 h at 20 L/h leave 100 of 800 L; 100 L are 50 minutes at 120 L/h.
+    assert found.uses[1].uncovered_h == pytest.approx(4.0 - 100.0 / 120.0, abs=1e-3)
+
+
+def test_what_is_drawn_would_have_boiled_anyway():
+    slow = replace(liquid_road(30.0, 30.0), liquid_l_per_h=15.0)
+    found = chosen([slow, liquid_road(4.0, 4.0, part_id="b")], choices=(VESSEL,))
+    # 15 L/h are less than the 20 L/h that boil: 800 - 600 = 200 L are left, as if nothing had been drawn.
+    assert found.uses[1].uncovered_h == pytest.approx(4.0 - 200.0 / 120.0, abs=1e-3)
+
+
+def test_a_vessel_that_is_drawn_empty_within_a_leg_gives_all_it_has():
+    found = chosen([liquid_road(100.0, 10.0)], choices=(VESSEL,))
+    assert found.uncovered_h == pytest.approx(10.0 - 800.0 / 120.0, abs=1e-3)
+
+
+def test_liquid_stays_behind_before_a_flight():
+    found = chosen([liquid_road(1.0, 1.0), flight(airline=True), liquid_road(1.0, 1.0, part_id="b")], choices=(VESSEL,))
+    assert found.uses[1].cylinders == {}
+    assert found.uses[2].uncovered_h == pytest.approx(1.0)
+
+
+def test_legs_of_one_flight_carry_charge_for_150_percent_together():
+    rest = replace(flight(), hours=2.0, oxygen_h=2.0)
+    legs = [rest, replace(rest, hours=1.0, oxygen_h=1.0, concentrator_w=80.0)]
+    assert flight_rule_wh(legs, 0) == pytest.approx(FLIGHT_RULE * (2.0 * 50.0 + 80.0))
+    found = chosen(legs, power=replace(POWER, battery_wh=10.0, most_batteries=40))
+    assert found.batteries == 27  # 270 Wh
+
+
+def test_what_is_at_hand_is_taken_where_it_is_as_light_as_what_must_be_ordered():
+    own = replace(SMALL, key="own", own=True, most=2)
+    assert chosen([LEG], choices=(SMALL, own)).bought() == {"own": 2}
+    assert chosen([LEG], choices=(own, SMALL)).bought() == {"own": 2}
+
+
+def test_what_is_carried_anyway_counts_against_the_weight():
+    limited = replace(LEG, hours=1.0, oxygen_h=1.0, carry_limit_kg=2.3)
+    assert chosen([limited], choices=(SMALL,)).uncovered_h == 0.0
+    heavy = chosen([limited], choices=(SMALL,), fixed_kg=0.4)
+    assert heavy.uncovered_h == pytest.approx(1.0)
+    assert heavy.peak_kg == pytest.approx(0.4)

@@ -1,6 +1,7 @@
 """The kit of the demo trips: nothing without decisions, sums that agree, readings that warn in time."""
 
 import json
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -8,8 +9,9 @@ import pytest
 from planner.case import Case
 from planner.catalogue import profile_text
 from planner.errors import InputError
+from planner.kit.cautions import kit_cautions
 from planner.kit.cylinder import contents_l
-from planner.kit.legs import Leg
+from planner.kit.legs import Choice, Leg
 from planner.kit.programme import Cancelled
 from planner.kit.selection import LegUse
 from planner.kit.sizes import load_cylinders
@@ -110,20 +112,44 @@ def test_the_turn_back_reading_holds_what_is_still_needed_with_the_reserve():
     assert held == pytest.approx(reading.litres_needed, rel=0.01)
 
 
-def test_own_cylinders_count_with_their_gauge_and_no_others_are_proposed():
-    owned = [{"size_id": "eu_2", "count": 1, "gauge_bar": 100.0, "temperature_c": 15.0}]
-    plan = kit_of(cylinder_road(2.0, 240, owned_cylinders=owned))
+def own_alone(*gauges, celsius=15.0):
+    """Hours that own 2 L cylinders at these gauges leave uncovered on a drive of four hours at 2 L/min."""
+    owned = [{"size_id": "eu_2", "count": 1, "gauge_bar": gauge, "temperature_c": celsius} for gauge in gauges]
+    return kit_of(cylinder_road(2.0, 240, owned_cylinders=owned)).own.uncovered_h
+
+
+def test_own_cylinders_count_with_their_gauge():
     usable = contents_l(2.0, 100.0) - contents_l(2.0, 14.0)
-    assert plan.uncovered_h == pytest.approx(4.0 - usable / 120.0, abs=0.02)
-    assert all("1 L" not in item.what for item in plan.items)
+    assert own_alone(100.0) == pytest.approx(4.0 - usable / 120.0, abs=0.02)
+
+
+def test_own_cylinders_at_different_gauges_are_not_taken_for_their_mean():
+    # A flight that only one of them may go on would else be given half of what the full one holds.
+    def litres(gauge):
+        return contents_l(2.0, gauge) - contents_l(2.0, 14.0)
+
+    assert own_alone(60.0, 180.0) == pytest.approx(4.0 - (litres(60.0) + litres(180.0)) / 120.0, abs=0.02)
+    owned = [{"size_id": "eu_2", "count": 1, "gauge_bar": gauge} for gauge in (60.0, 180.0)]
+    plan = kit_of(cylinder_road(1.0, 60, owned_cylinders=owned))
+    assert [item.what for item in plan.own.items] == ["Cylinder 2 L, 200 bar, own at 180 bar"]
+    assert plan.own.items[0].brought_by == "own, at hand"
 
 
 def test_a_hot_gauge_of_an_own_cylinder_counts_for_less():
-    def uncovered(celsius):
-        owned = [{"size_id": "eu_2", "count": 1, "gauge_bar": 150.0, "temperature_c": celsius}]
-        return kit_of(cylinder_road(2.0, 240, owned_cylinders=owned)).uncovered_h
+    assert own_alone(150.0, celsius=45.0) > own_alone(150.0, celsius=15.0)
 
-    assert uncovered(45.0) > uncovered(15.0)
+
+def test_the_own_set_stands_beside_a_proposed_one_that_covers_more():
+    owned = [{"size_id": "eu_2", "count": 1, "gauge_bar": 100.0}]
+    plan = kit_of(cylinder_road(2.0, 240, owned_cylinders=owned))
+    assert plan.uncovered_h == 0.0
+    assert plan.own.uncovered_h > 2.0
+    assert plan.own.run_out.chance > plan.run_out.chance
+
+
+def test_a_cylinder_without_a_gauge_reading_is_taken_as_full_and_that_is_said():
+    plan = kit_of(cylinder_road(1.0, 60, owned_cylinders=[{"size_id": "eu_2"}]))
+    assert any("taken as full. Read the gauge" in fault for fault in plan.faults)
 
 
 def test_a_part_without_any_source_is_said_and_uncovered():
@@ -203,7 +229,7 @@ def flight_on_concentrator(minutes=300, concentrator_id="own", part=None, **kit)
 
 
 def packs(plan):
-    return sum(item.count for item in plan.items if item.what.startswith("Battery"))
+    return sum(item.count for item in plan.items if item.kind == "battery")
 
 
 def test_at_most_two_spares_above_100_wh_fly(tmp_path, monkeypatch):
@@ -246,16 +272,13 @@ def test_own_batteries_above_the_weight_that_can_be_carried_are_said():
 def test_a_gauge_above_what_the_cylinder_can_have_counts_as_empty_and_is_said():
     owned = [{"size_id": "eu_2", "count": 1, "gauge_bar": 340.0, "temperature_c": 15.0}]
     plan = kit_of(cylinder_road(2.0, 240, owned_cylinders=owned))
-    assert plan.uncovered_h == pytest.approx(4.0)
+    assert plan.own is None
+    assert all("own" not in item.what for item in plan.items)
     assert any("340 bar" in fault and "counts as empty" in fault for fault in plan.faults)
 
 
 def test_an_empty_own_cylinder_takes_nothing_from_a_full_one():
-    def uncovered(*gauges):
-        owned = [{"size_id": "eu_2", "count": 1, "gauge_bar": gauge, "temperature_c": 15.0} for gauge in gauges]
-        return kit_of(cylinder_road(2.0, 240, owned_cylinders=owned)).uncovered_h
-
-    assert uncovered(100.0, 2.0) == pytest.approx(uncovered(100.0), abs=0.01)
+    assert own_alone(100.0, 2.0) == pytest.approx(own_alone(100.0), abs=0.01)
 
 
 def test_sizes_beyond_those_compared_are_named():
@@ -263,23 +286,47 @@ def test_sizes_beyond_those_compared_are_named():
     assert any("left out: 10 L, 200 bar" in fault for fault in plan.faults)
 
 
-def test_liquid_is_said_with_its_mass_and_never_for_a_flight():
-    def faults(kind):
-        part = {"part_id": "r", "kind": kind, "duration_min": 240, "sources": ["liquid"]}
-        decision = {"part_id": "r", "activity": "rest", "device_id": "cannula", "flow_l_min": 2.0}
-        return kit_of(demo("copd_layover", trip={"parts": [part]}, decisions=[decision], kit={})).faults
+def on_liquid(kind="road", minutes=240, **vessel):
+    """A part on liquid oxygen at 2 L/min."""
+    part = {"part_id": "r", "kind": kind, "duration_min": minutes, "sources": ["liquid"]}
+    decision = {"part_id": "r", "activity": "rest", "device_id": "cannula", "flow_l_min": 2.0}
+    vessels = [{"liquid_kg": 1.0, "empty_kg": 2.5} | vessel]
+    return kit_of(demo("copd_layover", trip={"parts": [part]}, decisions=[decision], kit={"liquid_vessels": vessels}))
 
-    assert any("0.7 kg of liquid" in fault for fault in faults("road"))
-    assert any("never carried on aircraft" in fault for fault in faults("flight"))
+
+def test_liquid_is_sized_by_its_mass_and_carried():
+    plan = on_liquid()
+    assert plan.uncovered_h == 0.0
+    assert plan.parts[0].hours_by == pytest.approx({"liquid": 4.0})
+    assert [(item.kind, item.mass_kg) for item in plan.items] == [("liquid", 3.5)]
+    assert any(one.lead == "Liquid oxygen." for one in plan.cautions)
+    # 480 L with a quarter on top, at 1.354 g a litre (density of oxygen at 15 degC and 1 atm)
+    assert plan.turn_back[0].liquid_kg == pytest.approx(480 * 1.25 * 1.354 / 1000, rel=0.01)
+
+
+def test_too_little_liquid_is_uncovered_time():
+    litres = 0.3 / 1.354e-3
+    assert on_liquid(liquid_kg=0.3).uncovered_h == pytest.approx(4.0 - litres / 120.0, abs=0.02)
+
+
+def test_liquid_is_never_counted_on_a_flight():
+    plan = on_liquid("flight")
+    assert plan.uncovered_h == pytest.approx(4.0)
+    assert plan.items == ()
+    assert any("never carried on aircraft" in fault for fault in plan.faults)
 
 
 def test_with_a_full_cylinder_of_another_size_beside_it_the_reading_is_lower():
     leg = Leg("r", "Road", 4.0, 4.0, 120.0, None, False, False, False, False, False, False, None, False)
     sizes = load_cylinders()
+    choices = [
+        Choice(one.id, one.name, one.usable_l(14.0), one.full_l, one.gross_kg, None, True, size=one)
+        for one in (sizes["eu_3"], sizes["eu_1"])
+    ]
 
     def reading(cylinders):
-        use = LegUse("r", 0.0, 0.0, {"cylinder": 4.0}, cylinders, cylinders, {}, {"eu_3": 480.0}, 0.0, 5.0, 0.0)
-        found = turn_back([leg], [use], sizes, None, 0, reserve_fraction=0.0, residual_bar=14.0)
+        use = LegUse("r", 0.0, 0.0, {"cylinder": 4.0}, cylinders, cylinders, {"eu_3": 480.0}, 5.0, 0.0)
+        found = turn_back([leg], [use], choices, None, 0, reserve_fraction=0.0, residual_bar=14.0)
         return dict(found[0].gauge_bar)["3 L, 200 bar"], found[0].fresh_cylinders
 
     alone, _ = reading({"eu_3": 1})
@@ -299,3 +346,99 @@ def test_a_concentrator_left_at_home_gives_nothing_at_a_plug():
     plan = kit_of(demo("copd_layover", trip={"parts": [part]}, decisions=decisions, kit=kit))
     assert all("oncentrator" not in item.what for item in plan.items)
     assert plan.left.litres[-1] == pytest.approx(plan.left.litres[0] - 60 * 1.05, abs=0.5)  # with 5 % left running
+
+
+def test_an_assumption_entered_is_the_one_that_is_played_and_printed():
+    plan = kit_of(cylinder_road(2.0, 240, assumptions={"fill_mean": 0.9, "left_running": 0.0}))
+    printed = dict(plan.assumptions)
+    assert printed["Cylinder filled to"] == "90 % of full, spread 3 %"
+    assert printed["Left running when not worn"] == "0 % more oxygen"
+    sizes = {one.name: one for one in load_cylinders().values()}
+    of = [sizes[item.what.removeprefix("Cylinder ").removesuffix(", against delays")] for item in plan.items]
+    usable = sum(item.count * size.usable_l(14.0, 0.9) for item, size in zip(plan.items, of, strict=True))
+    assert plan.left.litres[0] == pytest.approx(usable)
+
+
+def test_a_worse_machine_fails_more_often():
+    usual = kit_of(flight_on_concentrator(300, "portable_dual"))
+    worse = kit_of(flight_on_concentrator(300, "portable_dual", assumptions={"concentrator_mttf_h": 50.0}))
+    assert worse.run_out.by_cause["concentrator failed"] > 10 * usual.run_out.by_cause["concentrator failed"]
+
+
+def test_an_old_pack_counts_for_less_and_keeps_its_printed_energy(tmp_path, monkeypatch):
+    own_packs(tmp_path, monkeypatch, 95)
+    new, old = (kit_of(flight_on_concentrator(180, battery_age_years=age)) for age in (0.0, 5.0))
+    assert packs(old) > packs(new)
+    assert next(item.what for item in old.items if item.kind == "battery") == "Battery, 95 Wh"
+    # 180 min at 100 W by the 150 % rule are 450 Wh; a pack gives 92 % of 95 Wh.
+    assert packs(new) >= 6
+    assert 5 * 95 * 0.92 < 450.0 < 6 * 95 * 0.92
+
+
+def test_the_handbooks_number_stands_beside_the_real_gas():
+    plan = kit_of(cylinder_road(2.0, 120, country="US", offered_size_ids=["us_e"]))
+    check = plan.cross_checks[0]
+    assert check.name == "E (M24)"
+    # 0.28 L/psi over 138.9 - 14 bar of gauge (1 bar = 14.504 psi)
+    assert check.textbook_l == pytest.approx(0.28 * (138.9 - 14.0) * 14.504, rel=0.001)
+    assert check.real_l == pytest.approx(contents_l(4.64, 138.9, 21.1) - contents_l(4.64, 14.0, 21.1))
+
+
+def test_a_conserver_is_listed_and_weighed():
+    decision = {"part_id": "r", "activity": "rest", "device_id": "pulse_conserver", "setting": 2}
+    trip = json.loads(cylinder_road().trip.model_dump_json())
+    plan = kit_of(demo("copd_layover", trip=trip, decisions=[decision], kit={"country": "EU"}))
+    item = next(one for one in plan.items if one.kind == "conserver")
+    assert item.mass_kg == 0.4
+    assert plan.peak_kg == pytest.approx(sum(one.mass_kg for one in plan.items))
+    assert all(one.kind != "conserver" for one in kit_of(cylinder_road()).items)
+
+
+def test_pulses_asleep_are_a_caution_of_the_kit():
+    part = {
+        "part_id": "r",
+        "kind": "stay",
+        "duration_min": 480,
+        "sources": ["cylinder"],
+        "shares": {"rest": 0.0, "asleep": 1.0},
+    }
+    decision = {"part_id": "r", "activity": "asleep", "device_id": "pulse_conserver", "setting": 2}
+    plan = kit_of(demo("copd_layover", trip={"parts": [part]}, decisions=[decision], kit={"country": "EU"}))
+    assert any(one.lead == "Pulses asleep." and "Cuvelier" in one.source for one in plan.cautions)
+
+
+def test_cold_is_a_caution_where_a_concentrator_is_carried():
+    part = {"equipment_c": -5.0}
+    leads = [one.lead for one in kit_of(flight_on_concentrator(120, "portable_dual", part=part)).cautions]
+    assert "Cold." in leads
+    assert "Cold." not in [one.lead for one in kit_of(flight_on_concentrator(120, "portable_dual")).cautions]
+
+
+def test_a_concentrator_alone_is_said():
+    alone = kit_of(flight_on_concentrator(120, "portable_dual", part={"name": "Flight 7"}))
+    assert any(one.lead == "No second source." and "Flight" in one.text for one in alone.cautions)
+    helped = kit_of(flight_on_concentrator(120, "portable_dual", part={"sources": ["concentrator", "airline"]}))
+    assert all(one.lead != "No second source." for one in helped.cautions)
+
+
+@pytest.mark.parametrize(("kilograms", "near"), [(4.85, True), (5.3, True), (4.5, False), (6.0, False)])
+def test_a_cylinder_near_5_kg_is_to_be_weighed_before_a_flight(kilograms, near):
+    road = Leg("r", "Road", 1.0, 1.0, 60.0, None, False, False, False, False, False, False, None, False)
+    choice = Choice("e", "E", 600.0, 680.0, kilograms, None, True)
+    leads = [one.lead for one in kit_cautions([replace(road, flight=True)], None, [choice], None, 0)]
+    assert ("E is near 5 kg." in leads) == near
+    assert "E is near 5 kg." not in [one.lead for one in kit_cautions([road], None, [choice], None, 0)]
+
+
+def test_parts_of_several_legs_are_told_as_one():
+    part = {"part_id": "s", "kind": "stay", "duration_min": 1440, "sources": ["cylinder", "stationary"],
+            "shares": {"rest": 0.6, "asleep": 0.4}}  # fmt: skip
+    decisions = [
+        {"part_id": "s", "activity": "rest", "device_id": "pulse_conserver", "setting": 1},
+        {"part_id": "s", "activity": "asleep", "device_id": "cannula", "flow_l_min": 1.0},
+    ]
+    plan = kit_of(demo("copd_layover", trip={"parts": [part]}, decisions=decisions, kit={"country": "EU"}))
+    assert len(plan.parts) == 1
+    assert plan.parts[0].hours_by == pytest.approx({"cylinder": 24 * 0.6, "stationary": 24 * 0.4})
+    assert plan.left.minutes[-1] == pytest.approx(1440.0)
+    assert sum(one.run_out_chance for one in plan.parts) == pytest.approx(plan.run_out.chance)
