@@ -96,9 +96,10 @@ def kit_cautions(
             )
     if found is not None and found.concentrator and power is not None:
         cautions.append(_batteries(power, batteries))
-        alone = dict.fromkeys(
-            leg.name for leg, use in zip(legs, found.uses, strict=True) if set(use.hours_by) == {"battery"}
-        )
+        sources: dict[tuple[str, str], set[str]] = {}
+        for leg, use in zip(legs, found.uses, strict=True):
+            sources.setdefault((leg.part_id, leg.name), set()).update(use.hours_by)
+        alone = dict.fromkeys(name for (_, name), used in sources.items() if used == {"battery"})
         if alone:
             cautions.append(
                 KitCaution(

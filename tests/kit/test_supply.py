@@ -442,3 +442,9 @@ def test_parts_of_several_legs_are_told_as_one():
     assert plan.parts[0].hours_by == pytest.approx({"cylinder": 24 * 0.6, "stationary": 24 * 0.4})
     assert plan.left.minutes[-1] == pytest.approx(1440.0)
     assert sum(one.run_out_chance for one in plan.parts) == pytest.approx(plan.run_out.chance)
+
+
+def test_a_part_that_the_carrier_shares_is_not_said_to_hang_on_the_concentrator_alone(copd):
+    text = next(one.text for one in copd.cautions if one.lead == "No second source.")
+    assert "Flight 1" not in text
+    assert "Check-in and wait" in text

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+from math import isfinite
 from typing import Any
 
 from planner.charts.ribbon import Layer, Reading
 from planner.charts.supply import supply_layer
-from planner.units import charge_to_read, gauge_to_read
 from ui import measures
+from ui.screens import kit_words
+from ui.screens.kit_assumptions import fill_assumptions
 from ui.screens.kit_entries import fill_kit_entries
 from ui.screens.result_screen import ResultScreen
 from ui.widgets.buttons import PrimaryButton
@@ -34,18 +36,27 @@ class KitScreen(ResultScreen):
         self.items = Section("The set")
         self.item_rows = Stack(gap=0)
         self.items.add_widget(self.item_rows)
+        self.own = Stack(gap=0)
+        self.own_section = Section("Own set")
+        self.own_rows = Stack(gap=0)
+        self.own_section.add_widget(self.own_rows)
         self.turn_back = Section("Turn-back readings", note="Below these the plan no longer holds: change it, or call.")
         self.readings = Stack(gap=0)
         self.turn_back.add_widget(self.readings)
         self.cautions = Stack(gap=2)
         self.parts = Fold("Part by part", "Need, source, chance of running out", self._fill_parts)
-        self.assumed = Fold("What is assumed", "Each can be argued with", self._fill_assumptions)
+        self.assumed = Fold(
+            "What is assumed",
+            "Each can be changed",
+            lambda body: fill_assumptions(body, self.form),
+        )
         self.entries = Fold(
             "What the supplier has",
-            "Country, cylinders, concentrator, reserve",
+            "Cylinders, concentrator, liquid, reserve",
             lambda body: fill_kit_entries(body, self.form, self.session),
         )
-        self.put(self.stress, self.open_notes, self.numbers, self.sentence, self.items, self.turn_back, self.cautions)
+        self.put(self.stress, self.open_notes, self.numbers, self.sentence, self.items, self.own, self.turn_back)
+        self.put(self.cautions)
         self.put(self.parts, self.assumed, self.entries)
         self.put(PrimaryButton("On to the papers", lambda: self.go("papers")))
 
@@ -78,12 +89,12 @@ class KitScreen(ResultScreen):
         self._show_numbers(kit if sized else None)
         self.sentence.text = self._sentence(plan) if sized else ""
         self._show_items(kit)
+        self._show_own(kit)
         self._show_turn_back(kit)
         self._show_cautions(kit)
-        for fold, fill in ((self.parts, self._fill_parts), (self.assumed, self._fill_assumptions)):
-            if fold.open:
-                fold.body.clear_widgets()
-                fill(fold.body)
+        if self.parts.open:
+            self.parts.body.clear_widgets()
+            self._fill_parts(self.parts.body)
 
     # -- inside
 
@@ -100,8 +111,9 @@ class KitScreen(ResultScreen):
             self.open_notes.add_widget(Notice(words, "note"))
             return
         if kit.undecided:
-            words = "Nothing is sized from a flow that nobody decided. Still open: " + "; ".join(kit.undecided) + "."
-            self.open_notes.add_widget(Notice(plain(words), "caution", title="Flows not decided."))
+            words = f"{kit_words.still_open(kit.undecided)} Nothing is sized from a flow that nobody decided."
+            decide = (("Decide the flows", lambda: self.go("oxygen")),)
+            self.open_notes.add_widget(Notice(words, "caution", title="Not decided.", actions=decide))
         for fault in kit.faults:
             self.open_notes.add_widget(Notice(plain(fault), "caution"))
         for part in kit.parts:
@@ -114,14 +126,17 @@ class KitScreen(ResultScreen):
                 words = f"{part.name} is covered, but {hours} of the reserve is missing."
                 self.open_notes.add_widget(Notice(plain(words), "caution"))
         if not kit.finished:
-            self.open_notes.add_widget(Notice(f"The search was stopped with a gap of {100 * kit.gap:.0f} %.", "note"))
+            words = "The search for a lighter set was stopped before it was proven; this one covers what is said here."
+            if isfinite(kit.gap):
+                words += f" A lighter one would be at most {100 * kit.gap:.0f} % lighter."
+            self.open_notes.add_widget(Notice(words, "note"))
 
     def _show_numbers(self, kit: Any) -> None:
         self.numbers.clear_widgets()
         if kit is None:
             return
-        cylinders = [item for item in kit.items if item.what.startswith("Cylinder")]
-        batteries = [item for item in kit.items if item.what.startswith("Battery")]
+        cylinders = [item for item in kit.items if item.kind == "cylinder"]
+        batteries = [item for item in kit.items if item.kind == "battery"]
         count = sum(item.count for item in cylinders)
         words = "cylinders" if count != 1 else "cylinder"
         cells = [(f"{kit.peak_kg:.1f} kg", "at most carried"), (str(count), words)]
@@ -137,44 +152,47 @@ class KitScreen(ResultScreen):
         chance = plan.kit.run_out
         if chance is None:
             return ""
-        where = max(range(len(chance.by_leg)), key=lambda i: chance.by_leg[i])
-        mostly = plain(plan.kit.parts[where].name) if chance.by_leg[where] > 0 else ""
-        words = f"{strong(_one_in(chance.chance))} would run short"
+        worst = max(plan.kit.parts, key=lambda part: part.run_out_chance)
+        mostly = plain(worst.name) if worst.run_out_chance > 0 else ""
+        words = f"{strong(kit_words.one_in(chance.chance))} would run short"
         words += f", mostly in {mostly}." if mostly else "."
         cause = max(chance.by_cause, key=lambda one: chance.by_cause[one])
         if chance.by_cause[cause] > 0:
             words += f" The usual cause: {cause}."
         if plan.kit.lighter is not None:
             other, risk = plan.kit.lighter
-            words += f" {other[:1].upper()}{other[1:]}: {_one_in(risk).lower()}."
+            words += f" {other[:1].upper()}{other[1:]}: {kit_words.one_in(risk).lower()}."
         if chance.chance > plan.kit.run_out_wanted:
-            wanted = _one_in(plan.kit.run_out_wanted).lower()
+            wanted = kit_words.one_in(plan.kit.run_out_wanted).lower()
             words += f" The service asks for {wanted} or rarer; a second source would do more than more of the same."
         return words
 
     def _show_items(self, kit: Any) -> None:
         self.item_rows.clear_widgets()
-        alike: dict[tuple[Any, ...], list[str]] = {}
-        for item in kit.items if kit is not None else ():
-            mass = f"{item.mass_kg:.1f} kg" if item.each_kg else ""
-            alike.setdefault((f"{item.count} × {item.what}", item.brought_by, mass), []).append(item.where)
-        for (what, brought_by, mass), places in alike.items():
-            self.item_rows.add_widget(ListRow(plain(what), plain(f"{', '.join(places)} · {brought_by}"), mass))
+        for row in kit_words.item_rows(kit.items if kit is not None else ()):
+            self.item_rows.add_widget(ListRow(*row))
+
+    def _show_own(self, kit: Any) -> None:
+        """What is at hand alone, beside the proposed set."""
+        self.own_rows.clear_widgets()
+        own = kit.own if kit is not None else None
+        self.own.hold(self.own_section if own is not None else None)
+        if own is None:
+            return
+        machine = any(item.kind == "concentrator" for item in own.items)
+        alone = "Own cylinders and liquid" + (", with the concentrator" if machine else "")
+        for name, one in (("Proposed", kit), (alone, own)):
+            detail = f"at most {one.peak_kg:.1f} kg carried"
+            if one.uncovered_h > 0:
+                detail += f", {measures.hours_minutes(60 * one.uncovered_h)} not covered"
+            value = kit_words.one_in(one.run_out.chance).lower()
+            self.own_rows.add_widget(ListRow(name, detail, f"short in {value}"))
 
     def _show_turn_back(self, kit: Any) -> None:
         self.readings.clear_widgets()
-        unit = self.session.case.display.gauge
-        alike: dict[tuple[str, str], list[str]] = {}
-        for one in kit.turn_back if kit is not None else ():
-            values = [f"{name} {gauge_to_read(bar, unit):,.0f} {unit}" for name, bar in one.gauge_bar]
-            if one.battery_percent is not None:
-                values.append(f"{charge_to_read(one.battery_percent):.0f} % charge")
-            detail = f"cylinder at {one.temperature_c:g} °C" if one.gauge_bar else "all packs together"
-            if one.fresh_cylinders:
-                detail += f", and {one.fresh_cylinders} full beside it"
-            alike.setdefault((detail, ", ".join(values)), []).append(one.name)
-        for (detail, value), names in alike.items():
-            self.readings.add_widget(ListRow(plain(f"Starting: {', '.join(dict.fromkeys(names))}"), detail, value))
+        rows = kit_words.turn_back_rows(kit.turn_back if kit is not None else (), self.session.case.display.gauge)
+        for where, detail, value in rows:
+            self.readings.add_widget(ListRow(plain(where), detail, plain(value)))
 
     def _show_cautions(self, kit: Any) -> None:
         self.cautions.clear_widgets()
@@ -186,25 +204,14 @@ class KitScreen(ResultScreen):
         for one in kit.parts if kit is not None else ():
             need = "not decided" if one.litres is None else f"{one.litres:,.0f} L"
             sources = ", ".join(f"{name} {measures.hours_minutes(60 * hours)}" for name, hours in one.hours_by.items())
-            detail = f"{sources or 'no oxygen needed'} · runs short {_one_in(one.run_out_chance).lower()}"
+            detail = f"{sources or 'no oxygen needed'} · runs short {kit_words.one_in(one.run_out_chance).lower()}"
+            if one.run_out_chance > 0:
+                detail += f" ({kit_words.between(one.run_out_low, one.run_out_high)})"
             body.add_widget(ListRow(plain(one.name), plain(detail), need))
-
-    def _fill_assumptions(self, body: Any) -> None:
-        kit = self.session.plan.kit if self.session.plan is not None else None
-        for name, value in kit.assumptions if kit is not None else ():
-            body.add_widget(Text(f"{plain(name)}: {strong(plain(value))}"))
-        body.add_widget(
-            Text(
-                "Planning assumptions where nothing else is said; ask for other values where you have them.",
-                tone="muted",
+        for check in kit.cross_checks if kit is not None else ():
+            apart = 100 * (check.textbook_l / check.real_l - 1)
+            words = (
+                f"Cross-check: a full {plain(check.name)} gives {check.real_l:,.0f} L by the real gas and "
+                f"{check.textbook_l:,.0f} L by the handbooks' duration factor ({apart:+.0f} %). The real gas is used."
             )
-        )
-
-
-def _one_in(chance: float) -> str:
-    """A chance as a person says it."""
-    if chance <= 0:
-        return "Fewer than 1 trip in 10,000"
-    if chance > 0.5:
-        return f"{100 * chance:.0f} of 100 trips"
-    return f"1 trip in {round(1 / chance):,}"
+            body.add_widget(Text(words, role="label", tone="muted"))

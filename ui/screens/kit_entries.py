@@ -36,10 +36,16 @@ def fill_kit_entries(body: Any, form: Form, session: Any) -> None:
             form.number("policy.run_out_chance", "Run short at most in", _percent(1)),
         )
     )
+    offered = form.live(lambda: session.case.kit.country, lambda group, inner: _fill_offered(group, inner, session))
+    body.add_widget(offered)
     owned = form.live(lambda: session.case.kit.owned_cylinders, lambda group, inner: _fill_owned(group, inner, session))
     body.add_widget(owned)
     body.add_widget(Text(strong("Add a cylinder that is there")))
     body.add_widget(_Adding(session))
+    vessels = form.live(
+        lambda: len(session.case.kit.liquid_vessels), lambda group, inner: _fill_vessels(group, inner, session)
+    )
+    body.add_widget(vessels)
     form.refresh()
 
 
@@ -63,15 +69,54 @@ def _fill_owned(group: Live, form: Form, session: Any) -> None:
                     form.number(f"{path}.gauge_bar", "Gauge, empty for full", shown),
                     form.number(f"{path}.temperature_c", "Cylinder temperature", measures.plain_measure("°C")),
                 ),
-                QuietButton("Take it out", lambda i=index: _remove(session, i)),
+                QuietButton("Take it out", lambda i=index: _remove(session, "kit.owned_cylinders", i, "cylinders")),
                 gap=1,
             )
         )
 
 
-def _remove(session: Any, index: int) -> None:
-    owned = session.case.kit.owned_cylinders
-    session.choose("kit.owned_cylinders", (*owned[:index], *owned[index + 1 :]), "cylinders")
+def _remove(session: Any, path: str, index: int, words: str) -> None:
+    there = session.get(path)
+    session.choose(path, (*there[:index], *there[index + 1 :]), words)
+
+
+def _fill_offered(group: Live, form: Form, session: Any) -> None:
+    from planner.kit.offer import MOST_SIZES
+    from planner.kit.sizes import load_cylinders
+
+    country = session.case.kit.country
+    sizes = [(one.id, one.name) for one in load_cylinders().values() if one.country == country]
+    hint = f"None chosen: the portable ones. At most {MOST_SIZES} are compared."
+    group.add_widget(form.choice("kit.offered_size_ids", "Sizes the supplier offers", sizes, several=True, hint=hint))
+
+
+def _fill_vessels(group: Live, form: Form, session: Any) -> None:
+    """Liquid vessels that travel along, one after the other, and a button for one more."""
+    kilograms = measures.plain_measure("kg", 1)
+    group.add_widget(Text(strong("Liquid oxygen that travels along")))
+    for index in range(len(session.case.kit.liquid_vessels)):
+        path = f"kit.liquid_vessels.{index}"
+        group.add_widget(
+            Stack(
+                form.text(f"{path}.name", "Name of the vessel"),
+                Side(
+                    form.number(f"{path}.liquid_kg", "Liquid when full", kilograms),
+                    form.number(f"{path}.empty_kg", "Vessel when empty", kilograms),
+                    form.number(f"{path}.count", "How many", measures.plain_measure("")),
+                    form.number(f"{path}.evaporation_kg_day", "Boils away a day, empty for usual", kilograms),
+                ),
+                QuietButton("Take it out", lambda i=index: _remove(session, "kit.liquid_vessels", i, "liquid vessels")),
+                gap=1,
+            )
+        )
+    group.add_widget(PlainButton("Add a liquid vessel", lambda: _add_vessel(session)))
+
+
+def _add_vessel(session: Any) -> None:
+    from planner.case.kit import LiquidVessel
+
+    there = session.case.kit.liquid_vessels
+    session.choose("kit.liquid_vessels", (*there, LiquidVessel(liquid_kg=1.0, empty_kg=2.5)), "liquid vessels")
 
 
 class _Adding(Stack):
