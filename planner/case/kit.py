@@ -32,6 +32,7 @@ class KitAssumptions(Section):
     """The service's own values where it knows better; None: the planning assumption printed with the result."""
 
     flow_sd: float | None = Field(None, ge=0.0, le=0.5, description="Spread of the flow really given, as a share")
+    breathing_sd: float | None = Field(None, ge=0.0, le=0.5, description="Spread of the breathing rate, for pulses")
     fill_mean: float | None = Field(None, ge=0.5, le=1.0)
     fill_sd: float | None = Field(None, ge=0.0, le=0.2)
     battery_mean: float | None = Field(None, ge=0.3, le=1.0)
@@ -56,6 +57,9 @@ class Kit(Section):
     battery_age_years: float | None = Field(None, ge=0.0, le=15.0)
     conserver_id: str | None = Field(
         None, max_length=60, description="None: the first of the profiles for the device decided"
+    )
+    backup_h: float | None = Field(
+        None, ge=0.0, le=48.0, description="Hours of a second source wherever a machine or the carrier is relied on"
     )
     liquid_vessels: tuple[LiquidVessel, ...] = Field((), max_length=4, strict=False)
     assumptions: KitAssumptions = KitAssumptions()

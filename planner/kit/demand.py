@@ -49,6 +49,7 @@ class _Need:
     litres_per_h: float
     watt: float
     given: Given
+    by_breath: bool  # its use grows with the breathing rate
 
 
 def demand(
@@ -89,7 +90,7 @@ def demand(
             continue
         sources, reasons = given(span, part, activity, decision, device, concentrator)
         faults += reasons
-        needs.append(_Need(share, litres_per_h, sources.watt, sources))
+        needs.append(_Need(share, litres_per_h, sources.watt, sources, device.pulse_kind == "fixed_bolus"))
         pulses_asleep = pulses_asleep or (activity == "asleep" and device.kind == "pulse")
     if needs:
         faults += _about_sources(span, part, concentrator)
@@ -152,8 +153,10 @@ def _legs(span: PartSpan, part: Part, needs: Sequence[_Need], concentrator: Conc
 
 def _leg(span: PartSpan, part: Part, hours: float, needs: Sequence[_Need], sources: Given, first: bool) -> Leg:
     share = sum(need.share for need in needs)
-    rate = sum(need.share * need.litres_per_h for need in needs) / share if share else None
     watt = sum(need.share * need.watt for need in needs) / share if share else 0.0
+    total = sum(need.share * need.litres_per_h for need in needs)
+    by_breath = sum(need.share * need.litres_per_h for need in needs if need.by_breath)
+    rate = total / share if share else None
     return Leg(
         part_id=span.part_id,
         name=span.name,
@@ -172,4 +175,5 @@ def _leg(span: PartSpan, part: Part, hours: float, needs: Sequence[_Need], sourc
         liquid_l_per_h=rate if sources.liquid else None,
         equipment_c=part.equipment_c,
         cold_share=cold_share(part.equipment_c),
+        breath_share=by_breath / total if total else 0.0,
     )

@@ -26,6 +26,7 @@ class Assumptions:
     """What is assumed where nothing was entered: planning assumptions all, printed with every result."""
 
     flow_sd: float = 0.06
+    breathing_sd: float = 0.15
     fill_mean: float = 0.98
     fill_sd: float = 0.03
     battery_mean: float = 0.92
@@ -40,6 +41,7 @@ class Assumptions:
         """Each assumption in words with its value."""
         return (
             ("Flow really given", f"as set, spread {100 * self.flow_sd:.0f} %"),
+            ("Breathing rate, for pulses", f"as entered, spread {100 * self.breathing_sd:.0f} %"),
             ("Cylinder filled to", f"{100 * self.fill_mean:.0f} % of full, spread {100 * self.fill_sd:.0f} %"),
             (
                 "Battery holds",
@@ -84,6 +86,7 @@ class Draws:
     waits_h: Array
     longer_h: Array
     flow: Array
+    breathing: Array
     fill: Array
     battery: Array
     failure_h: Array
@@ -133,6 +136,7 @@ def draw_trips(
         waits_h=waits_min / 60.0,
         longer_h=longer_min / 60.0,
         flow=np.asarray(assumed.flow_sd * rng.standard_normal(draws) + 1.0),
+        breathing=np.clip(assumed.breathing_sd * rng.standard_normal(draws) + 1.0, 0.3, None),
         fill=np.clip(assumed.fill_mean + assumed.fill_sd * rng.standard_normal(draws), 0.5, 1.0),
         battery=np.clip(assumed.battery_mean + assumed.battery_sd * rng.standard_normal(draws), 0.3, 1.0),
         failure_h=np.asarray(assumed.concentrator_mttf_h * rng.standard_exponential(draws)),
@@ -180,17 +184,18 @@ def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draw
         if powered and (leg.mains or leg.vehicle):
             needed = np.where(working, np.minimum(needed, beyond), needed)
         before = liquid
-        liquid, needed = _from_vessel(leg.liquid_l_per_h, liquid, needed, drawn.flow, assumed)
+        flow = drawn.flow * (1.0 + leg.breath_share * (drawn.breathing - 1.0)) * (1.0 + assumed.left_running)
+        liquid, needed = _from_vessel(leg.liquid_l_per_h, liquid, needed, flow)
         liquid = np.maximum(np.minimum(liquid, before - boils * (hours + wait)), 0.0)
         if powered:
             for floor in (np.minimum(_kept_wh(legs, number), energy), np.zeros(draws)):
                 spendable = np.where(working, np.maximum(energy - floor, 0.0), 0.0)
                 used = np.minimum(needed, spendable / leg.battery_w)
                 energy, needed = energy - used * leg.battery_w, needed - used
-                litres, needed = _from_vessel(leg.cylinder_l_per_h, litres, needed, drawn.flow, assumed)
+                litres, needed = _from_vessel(leg.cylinder_l_per_h, litres, needed, flow)
             down[:, number] = ~working
         else:
-            litres, needed = _from_vessel(leg.cylinder_l_per_h, litres, needed, drawn.flow, assumed)
+            litres, needed = _from_vessel(leg.cylinder_l_per_h, litres, needed, flow)
         if power is not None and leg.mains:
             gained = CHARGE_SHARE * power.charge_w * (hours + (wait if leg.terminal else 0.0))
             energy = np.where(drawn.charger_ok, np.minimum(energy + gained, full_wh), energy)
@@ -236,6 +241,7 @@ def on_time(legs: Sequence[Leg], late_min: float = 0.0, assumed: Assumptions | N
         waits_h=waits,
         longer_h=np.zeros((1, count)),
         flow=np.ones(1),
+        breathing=np.ones(1),
         fill=np.array([assumed.fill_mean]),
         battery=np.array([assumed.battery_mean]),
         failure_h=np.array([np.inf]),
@@ -251,12 +257,11 @@ def with_fewer_litres(carried: Carried, litres: float) -> Carried:
     return replace(carried, litres_new=(first, *carried.litres_new[1:]))
 
 
-def _from_vessel(
-    rate_l_per_h: float | None, litres: Array, needed: Array, flow: Array, assumed: Assumptions
-) -> tuple[Array, Array]:
+def _from_vessel(rate_l_per_h: float | None, litres: Array, needed: Array, flow: Array) -> tuple[Array, Array]:
+    """What is left and what is still needed; flow: what really leaves the vessel, as a share of its rate."""
     if not rate_l_per_h:
         return litres, needed
-    rate = rate_l_per_h * flow * (1.0 + assumed.left_running)
+    rate = rate_l_per_h * flow
     used = np.minimum(needed, litres / rate)
     return litres - used * rate, needed - used
 

@@ -46,6 +46,7 @@ class PartSupply:
     run_out_chance: float
     run_out_low: float = 0.0
     run_out_high: float = 0.0
+    backup_missing_h: float = 0.0
 
 
 @dataclass(frozen=True)

@@ -33,6 +33,7 @@ class Leg:
     liquid_l_per_h: float | None = None
     equipment_c: float | None = None  # temperature of cylinders and batteries; None: not known
     cold_share: float = 1.0  # of its energy that a battery gives at that temperature
+    breath_share: float = 0.0  # of its litres that grow with the breathing rate: pulses of a fixed bolus
 
     @property
     def battery_w(self) -> float:

@@ -30,6 +30,7 @@ class LegUse:
     part_id: str
     uncovered_h: float
     reserve_missing_h: float
+    backup_missing_h: float
     hours_by: dict[str, float]  # cylinder, liquid, battery, plugged, airline, stationary
     cylinders: dict[str, int]
     new_cylinders: dict[str, int]
@@ -69,6 +70,7 @@ def select(
     power: Power | None,
     *,
     reserve_fraction: float,
+    backup_h: float = 0.0,
     batteries: int | None = None,
     fixed_kg: float = 0.0,
     time_limit_s: float = 4.0,
@@ -76,11 +78,14 @@ def select(
 ) -> Selection:
     """The best set for these legs. batteries: how many packs, where that is not to be chosen; fixed_kg: carried anyway.
 
+    backup_h: hours that a second source must cover in a leg where a machine or the carrier is relied on; what is
+    missing is told by leg.
+
     Raises programme.Cancelled when cancelled, programme.Unsolved when the time ran out before any set was found. Never
     infeasible: uncovered hours are slack.
     """
     model = Programme()
-    built = _Built(model, legs, choices, power, reserve_fraction, batteries, fixed_kg)
+    built = _Built(model, legs, choices, power, reserve_fraction, backup_h, batteries, fixed_kg)
     objectives = (
         *([dict.fromkeys(built.over_limit, 1.0)] if built.over_limit else []),
         dict.fromkeys(built.slack, 1.0),
@@ -111,6 +116,7 @@ class _Built:
         choices: Sequence[Choice],
         power: Power | None,
         reserve_fraction: float,
+        backup_h: float,
         batteries: int | None,
         fixed_kg: float,
     ) -> None:
@@ -118,6 +124,7 @@ class _Built:
         self.peak = model.variable()
         self.slack: list[int] = []
         self.reserve_slack: list[int] = []
+        self.backup_h = backup_h
         self.over_limit: list[int] = []
         self.items: dict[int, float] = {}
         self.columns: list[dict[str, int]] = []
@@ -152,6 +159,7 @@ class _Built:
         model.row({**sources, columns["slack"]: 1.0}, leg.oxygen_h, leg.oxygen_h)
         self._energy(model, number, leg, columns, before)
         self._reserve(model, leg, columns, reserve_fraction)
+        self._backup(model, leg, columns)
         self._mass(model, leg, columns)
 
     def _cylinders(
@@ -238,10 +246,7 @@ class _Built:
         if wanted <= 0.0 or leg.stationary:
             return
         terms: dict[int, float] = {columns["reserve"]: 1.0}
-        for choice in self.choices:
-            if rate := choice.rate(leg):
-                terms[columns[f"litres {choice.key}"]] = 1.0 / rate
-                terms[columns[f"used {choice.key}"]] = terms[columns[f"lost {choice.key}"]] = -1.0 / rate
+        terms |= self._hours_left(leg, columns)
         if leg.concentrator_w:
             terms[columns["energy"]] = 1.0 / leg.battery_w
             terms[columns["battery"]] = -1.0
@@ -249,6 +254,29 @@ class _Built:
             terms[columns["airline"]] = fraction  # the carrier keeps the reserve for what it brings
         if leg.concentrator_w and (leg.mains or leg.vehicle):
             terms[columns["plugged"]] = fraction
+        model.row(terms, lower=wanted)
+
+    def _hours_left(self, leg: Leg, columns: dict[str, int]) -> dict[int, float]:
+        """Hours that the vessels still hold at the end of a leg, as terms of a row."""
+        terms: dict[int, float] = {}
+        for choice in self.choices:
+            if rate := choice.rate(leg):
+                terms[columns[f"litres {choice.key}"]] = 1.0 / rate
+                terms[columns[f"used {choice.key}"]] = terms[columns[f"lost {choice.key}"]] = -1.0 / rate
+        return terms
+
+    def _backup(self, model: Programme, leg: Leg, columns: dict[str, int]) -> None:
+        """Hours left in vessels at the end of a leg on a machine or the carrier, unless two of those are there."""
+        columns["backup"] = model.variable()
+        wanted = min(self.backup_h, leg.oxygen_h)
+        brought = leg.airline or leg.stationary
+        if wanted <= 0.0 or not (brought or leg.concentrator_w):
+            return
+        self.reserve_slack.append(columns["backup"])
+        terms: dict[int, float] = {columns["backup"]: 1.0}
+        if brought and leg.concentrator_w:
+            terms[self.has_power] = wanted
+        terms |= self._hours_left(leg, columns)
         model.row(terms, lower=wanted)
 
     def _mass(self, model: Programme, leg: Leg, columns: dict[str, int]) -> None:
@@ -278,13 +306,14 @@ class _Built:
             for name, liquid in (("cylinder", False), ("liquid", True)):
                 rates = {one.key: one.rate(leg) for one in self.choices if one.liquid == liquid}
                 by[name] = sum(litres[key] / rate for key, rate in rates.items() if rate)
-            uncovered, missing = value("slack"), value("reserve")
+            uncovered, missing, second = value("slack"), value("reserve"), value("backup")
             over = value("over") if "over" in columns else 0.0
             uses.append(
                 LegUse(
                     part_id=leg.part_id,
                     uncovered_h=uncovered if uncovered > NEGLIGIBLE_H else 0.0,
                     reserve_missing_h=missing if missing > NEGLIGIBLE_H else 0.0,
+                    backup_missing_h=second if second > NEGLIGIBLE_H else 0.0,
                     hours_by={name: hours for name, hours in by.items() if hours > NEGLIGIBLE_H},
                     cylinders={size: count for size in sizes if (count := round(value(f"count {size}")))},
                     new_cylinders={size: count for size in sizes if (count := round(value(f"new {size}")))},

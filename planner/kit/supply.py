@@ -82,6 +82,7 @@ def plan_kit(
             choices,
             power,
             reserve_fraction=policy.reserve_fraction,
+            backup_h=kit.backup_h or 0.0,
             batteries=batteries,
             fixed_kg=conserver.mass_kg if conserver else 0.0,
             cancelled=cancelled,
@@ -148,6 +149,7 @@ def plan_kit(
         assumptions=(
             *trip.assumed.lines(),
             ("Reserve on top of the plan", f"{100 * policy.reserve_fraction:.0f} %"),
+            ("Second source wherever a machine or the carrier is relied on", f"{kit.backup_h or 0.0:g} h"),
             ("Cylinder is changed at", f"{policy.residual_bar:g} bar"),
             ("Trips played", f"{draws:,}"),
         ),

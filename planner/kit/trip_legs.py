@@ -94,6 +94,7 @@ def part_supplies(
                 run_out_chance=short,
                 run_out_low=low,
                 run_out_high=high,
+                backup_missing_h=sum(uses[leg].backup_missing_h for leg in mine),
             )
         )
     return tuple(found)

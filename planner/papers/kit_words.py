@@ -16,6 +16,8 @@ from planner.papers.flow import Column, Flow, Row
 from planner.papers.record_trip import LAYERED_RIBBON_PT, TEXT_PT, ribbon_parts
 from planner.units import charge_to_read
 
+LEAST_TOLD = 0.001  # of the trips; rarer causes are not told apart
+
 
 def write_items(flow: Flow, desk: Desk) -> None:
     """What to carry, line by line; where nothing is sized, why not."""
@@ -75,7 +77,7 @@ def write_endurance(flow: Flow, desk: Desk) -> None:
     causes = [
         say("kit.cause", cause=cause, chance=q.chance(share), low=q.chance(low), high=q.chance(high))
         for cause, share in kit.run_out.by_cause.items()
-        if share > 0.0
+        if share >= LEAST_TOLD
         for low, high in [kit.run_out.interval(share)]
     ]
     if causes:
@@ -99,9 +101,9 @@ def supply_ribbons(desk: Desk, width: float) -> list[Drawing]:
     left = desk.plan.kit.left if desk.plan.kit is not None else None
     if left is None:
         return []
-    pairs: list[tuple[str, Array, Array]] = [
-        ("kit.litres_left", left.litres, left.litres_stress),
-        ("kit.watt_hours_left", left.watt_hours, left.watt_hours_stress),
+    supplies: list[tuple[str, Array, Array, Array, Array]] = [
+        ("kit.litres_left", left.litres, left.litres_low, left.litres_high, left.litres_stress),
+        ("kit.watt_hours_left", left.watt_hours, left.watt_hours_low, left.watt_hours_high, left.watt_hours_stress),
     ]
     timeline = desk.plan.timeline
     return [
@@ -109,7 +111,7 @@ def supply_ribbons(desk: Desk, width: float) -> list[Drawing]:
             ribbon_parts(desk),
             timeline.minutes,
             timeline.altitude_m,
-            supply_layer(left.minutes, values, late, unit=desk.say(unit), text=desk.texts.number),
+            supply_layer(left.minutes, values, late, low=low, high=high, unit=desk.say(unit), text=desk.texts.number),
             width=width,
             height=LAYERED_RIBBON_PT,
             text_size=TEXT_PT,
@@ -117,7 +119,7 @@ def supply_ribbons(desk: Desk, width: float) -> list[Drawing]:
             unknown_text=desk.say("trip.unknown_altitude"),
             shortened_text=desk.say("trip.shortened"),
         ).drawing
-        for unit, values, late in pairs
+        for unit, values, low, high, late in supplies
         if np.nanmax(values) > 0.0
     ]
 

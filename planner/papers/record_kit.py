@@ -66,6 +66,8 @@ def _parts(flow: Flow, desk: Desk) -> None:
         ]
         if part.uncovered_h > 0.0:
             covered.append(say("kit.not_covered", duration=q.duration(MINUTES_PER_HOUR * part.uncovered_h)))
+        if part.backup_missing_h > 0.0:
+            covered.append(say("kit.no_backup", duration=q.duration(MINUTES_PER_HOUR * part.backup_missing_h)))
         rows.append(
             Row((
                 part.name,

@@ -16,10 +16,11 @@ DEVICES, CONCENTRATORS = load_devices(), load_concentrators()
 DUAL, SMALL, STATIONARY = (CONCENTRATORS[one] for one in ("portable_dual", "portable_pulse_small", "stationary_5"))
 
 
-def needs(decided, sources, concentrator=DUAL, kind="road", hours=4.0, highest_m=0.0, rate=None, **part):
-    """The demand of one part; decided: activity -> (device, flow or setting, share)."""
+def needs(decided, sources, concentrator=DUAL, kind="road", hours=4.0, highest_m=0.0, rate=None, idle=0.0, **part):
+    """The demand of one part; decided: activity -> (device, flow or setting, share); idle: share without oxygen."""
     shares = {activity: share for activity, (_, _, share) in decided.items()}
     shares = {name: shares.get(name, 0.0) for name in ("rest", "walking", "asleep")}
+    shares["walking"] += idle
     of_case = Part(part_id="p", kind=kind, name="Part", duration_min=60.0 * hours, sources=sources,
                    shares=ActivityShares(**shares), **part)  # fmt: skip
     span = PartSpan("p", kind, "Part", 0.0, 60.0 * hours, None, None, highest_m, "ground", None, None, 0.0, shares, ())
@@ -27,6 +28,8 @@ def needs(decided, sources, concentrator=DUAL, kind="road", hours=4.0, highest_m
     for activity, (device, amount, _) in decided.items():
         field = "setting" if DEVICES[device].unit == "setting" else "flow_l_min"
         decisions["p", activity] = Decision(part_id="p", activity=activity, device_id=device, **{field: amount})
+    if idle:
+        decisions["p", "walking"] = Decision(part_id="p", activity="walking", no_oxygen=True)
     return demand(span, of_case, decisions, DEVICES, concentrator, rate)
 
 
@@ -145,3 +148,22 @@ def test_a_cold_battery_gives_less_and_beyond_the_range_is_refused():
     warm = needs({"rest": ("cannula", 2.0, 1.0)}, ("concentrator",)).legs[0]
     cold = needs({"rest": ("cannula", 2.0, 1.0)}, ("concentrator",), equipment_c=-10.0).legs[0]
     assert cold.battery_w == pytest.approx(warm.battery_w / cold_share(-10.0))
+
+
+def test_only_a_fixed_bolus_takes_more_with_faster_breathing():
+    assert needs({"rest": ("pulse_conserver", 2, 1.0)}, ("cylinder",)).legs[0].breath_share == 1.0
+    assert needs({"rest": ("cannula", 2.0, 1.0)}, ("cylinder",)).legs[0].breath_share == 0.0
+    assert needs({"rest": ("pulse_concentrator", 2, 1.0)}, ("concentrator",)).legs[0].breath_share == 0.0
+
+
+def test_a_conservers_setting_is_not_asked_of_the_carrier():
+    found = needs({"rest": ("pulse_conserver", 2, 1.0)}, ("airline", "cylinder"), kind="flight")
+    assert not found.legs[0].airline
+    assert "the traveller's own" in said(found)
+
+
+def test_time_without_oxygen_belongs_to_the_part():
+    found = needs({"rest": ("cannula", 2.0, 0.4), "asleep": ("pulse_conserver", 2, 0.1)}, ("cylinder", "stationary"),
+                  kind="stay", hours=10.0, idle=0.5)  # fmt: skip
+    assert sum(leg.oxygen_h for leg in found.legs) == pytest.approx(5.0)
+    assert sum(leg.hours for leg in found.legs) == pytest.approx(10.0)

@@ -197,3 +197,22 @@ def test_each_share_has_its_interval():
     low, high = found.interval(found.by_cause["delay or use"])
     assert low < found.by_cause["delay or use"] < high
     assert found.interval(found.chance) == (found.low, found.high)
+
+
+def test_pulses_of_a_fixed_bolus_follow_the_breathing_rate():
+    faster = certain([ROAD], breathing=np.array([1.5]))
+    pulsed = replace(ROAD, breath_share=1.0)
+    steady, quick = (play([leg], Carried((500.0,), (500.0,), 0), None, faster, ASSUMED) for leg in (ROAD, pulsed))
+    assert steady.litres_left[0, 0] == pytest.approx(500.0 - 240.0)
+    assert quick.litres_left[0, 0] == pytest.approx(500.0 - 240.0 * 1.5)
+    assert trips([ROAD], draws=20_000).breathing.std() == pytest.approx(0.15, abs=0.01)
+
+
+def test_a_plug_left_for_the_airport_does_not_charge_while_waiting_there():
+    legs = [replace(ROAD, cylinder_l_per_h=None, concentrator_w=50.0, mains=True, oxygen_h=0.0), FLIGHT]
+    used = [replace(FLIGHT, part_id="a"), *legs]
+    played = play(used, Carried((0.0,) * 3, (0.0,) * 3, 9), POWER, certain(used, waits_h=[0.0, 0.0, 1.0]), ASSUMED)
+    assert played.watt_hours_left[0, :2].tolist() == pytest.approx([750.0, 900.0])
+    weak = replace(POWER, charge_w=10.0)
+    played = play(used, Carried((0.0,) * 3, (0.0,) * 3, 9), weak, certain(used, waits_h=[0.0, 0.0, 1.0]), ASSUMED)
+    assert played.watt_hours_left[0, 1] == pytest.approx(750.0 + 0.9 * 10.0 * 2.0)

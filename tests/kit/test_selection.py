@@ -301,3 +301,26 @@ def test_what_is_carried_anyway_counts_against_the_weight():
     heavy = chosen([limited], choices=(SMALL,), fixed_kg=0.4)
     assert heavy.uncovered_h == pytest.approx(1.0)
     assert heavy.peak_kg == pytest.approx(0.4)
+
+
+def test_a_second_source_is_carried_for_the_hours_asked_where_a_machine_is_relied_on():
+    leg = replace(LEG, concentrator_w=50.0, mains=True, hours=6.0, oxygen_h=6.0)
+    assert chosen([leg], power=POWER).bought() == {}
+    found = chosen([leg], power=POWER, backup_h=1.5)
+    assert found.bought() == {"small": 1}  # 180 of 190 L
+    assert found.uses[0].backup_missing_h == 0.0
+
+
+def test_two_machines_are_each_others_second_source_and_what_is_missing_is_told():
+    hotel = replace(LEG, cylinder_l_per_h=None, stationary=True)
+    assert chosen([hotel], backup_h=1.0).uses[0].backup_missing_h == pytest.approx(1.0)
+    both = chosen([replace(hotel, concentrator_w=50.0, mains=True)], power=POWER, backup_h=1.0)
+    assert both.concentrator
+    assert both.uses[0].backup_missing_h == 0.0
+    cylinders = chosen([LEG], backup_h=1.0)  # no machine is relied on
+    assert sum(cylinders.bought().values()) == sum(chosen([LEG]).bought().values())
+
+
+def test_a_part_with_a_stationary_unit_asks_for_no_reserve_of_its_own():
+    hotel = replace(LEG, stationary=True)
+    assert chosen([hotel], reserve_fraction=0.5).bought() == {}

@@ -23,7 +23,7 @@ THREE = Choice("eu_3", SIZE.name, SIZE.usable_l(14.0), SIZE.full_l, SIZE.gross_k
 
 def use(hours_by, litres=0.0, new=0, cylinders=None):
     there = cylinders or {}
-    return LegUse("x", 0.0, 0.0, hours_by, there, {"eu_3": new} if new else {}, {"eu_3": litres}, 5.0, 0.0)
+    return LegUse("x", 0.0, 0.0, 0.0, hours_by, there, {"eu_3": new} if new else {}, {"eu_3": litres}, 5.0, 0.0)
 
 
 def charge_wh(legs, uses):

@@ -141,3 +141,17 @@ def test_a_chance_is_said_with_no_more_digits_than_it_has(chance, words):
 def test_the_sentence_names_the_part_where_the_set_runs_short_most_often(kit):
     worst = max(kit.app.session.plan.kit.parts, key=lambda part: part.run_out_chance)
     assert kit.reads(f"mostly in {worst.name}.")
+
+
+def test_litres_and_watt_hours_are_both_read_on_the_ribbon(kit):
+    assert kit.reads(" Wh[/b] left")
+    assert not kit.reads("Left along the trip")
+    kit.tap("What the supplier has")
+    kit.fill(kit.field("Second source for"), "1")
+    settle(kit)
+    kit.app.shell.screen.ribbon.plot.minute = 30.0
+    kit.frames(6)
+    assert kit.reads(" L[/b] left")
+    kit.tap("Watt-hours")
+    assert kit.reads(" Wh[/b] left")
+    assert kit.reads("A second source for 1 h is not possible")

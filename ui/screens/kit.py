@@ -30,6 +30,8 @@ class KitScreen(ResultScreen):
     def build_results(self) -> None:
         """Stress case, the few numbers, run-out sentence, list, turn-back readings, cautions, assumptions, entries."""
         self.stress = Choice("Every flight", STRESSES, None, self._stress)
+        self.supply = Choice("Left along the trip", (("L", "Litres"), ("Wh", "Watt-hours")), "L", self._shown_supply)
+        self.supplies = Stack(gap=0)
         self.open_notes = Stack(gap=2)
         self.numbers = Side(least_sp=96)
         self.sentence = Text("", role="lead")
@@ -55,7 +57,16 @@ class KitScreen(ResultScreen):
             "Cylinders, concentrator, liquid, reserve",
             lambda body: fill_kit_entries(body, self.form, self.session),
         )
-        self.put(self.stress, self.open_notes, self.numbers, self.sentence, self.items, self.own, self.turn_back)
+        self.put(
+            self.stress,
+            self.supplies,
+            self.open_notes,
+            self.numbers,
+            self.sentence,
+            self.items,
+            self.own,
+            self.turn_back,
+        )
         self.put(self.cautions)
         self.put(self.parts, self.assumed, self.entries)
         self.put(PrimaryButton("On to the papers", lambda: self.go("papers")))
@@ -66,17 +77,22 @@ class KitScreen(ResultScreen):
         if plan is None or plan.kit is None or plan.kit.left is None or self.session.stale:
             return None
         left = plan.kit.left
-        if left.litres.max() > 0:
-            return supply_layer(left.minutes, left.litres, left.litres_stress, unit="Litres left")
-        return supply_layer(left.minutes, left.watt_hours, left.watt_hours_stress, unit="Watt-hours left")
+        if self._unit(left) == "L":
+            values, low, high, late = left.litres, left.litres_low, left.litres_high, left.litres_stress
+        else:
+            values, low, high, late = left.watt_hours, left.watt_hours_low, left.watt_hours_high, left.watt_hours_stress
+        unit = "Litres left" if self._unit(left) == "L" else "Watt-hours left"
+        return supply_layer(left.minutes, values, late, low=low, high=high, unit=unit)
 
     def tell(self, reading: Reading) -> str:
         """What is left at this moment."""
         plan = self.session.plan
         if reading.median is None or plan is None or plan.kit is None or plan.kit.left is None:
             return ""
-        unit = "L" if plan.kit.left.litres.max() > 0 else "Wh"
+        unit = self._unit(plan.kit.left)
         words = f"{strong(f'{reading.median:,.0f} {unit}')} left"
+        if reading.low is not None and reading.high is not None and reading.high - reading.low >= 1:
+            words += f" ({reading.low:,.0f} to {reading.high:,.0f})"
         late = measures.hours_minutes(self.session.case.policy.stress_late_min)
         return words if reading.stress is None else f"{words}, if {late} late {strong(f'{reading.stress:,.0f} {unit}')}"
 
@@ -88,6 +104,8 @@ class KitScreen(ResultScreen):
         sized = kit is not None and bool(kit.items)
         self._show_numbers(kit if sized else None)
         self.sentence.text = self._sentence(plan) if sized else ""
+        both = sized and kit.left is not None and kit.left.litres.max() > 0 and kit.left.watt_hours.max() > 0
+        self.supplies.hold(self.supply if both else None)
         self._show_items(kit)
         self._show_own(kit)
         self._show_turn_back(kit)
@@ -97,6 +115,15 @@ class KitScreen(ResultScreen):
             self._fill_parts(self.parts.body)
 
     # -- inside
+
+    def _shown_supply(self, _: str) -> None:
+        self.ribbon.show_case()
+
+    def _unit(self, left: Any) -> str:
+        """What the ribbon shows: litres or watt-hours, as chosen where both are carried."""
+        carried = [unit for unit, values in (("L", left.litres), ("Wh", left.watt_hours)) if values.max() > 0]
+        chosen = self.supply.value
+        return chosen if chosen in carried else carried[0] if carried else "L"
 
     def _stress(self, minutes: float) -> None:
         self.session.choose("policy.stress_late_min", minutes, "the stress case")
@@ -125,6 +152,11 @@ class KitScreen(ResultScreen):
                 hours = measures.hours_minutes(60 * part.reserve_missing_h)
                 words = f"{part.name} is covered, but {hours} of the reserve is missing."
                 self.open_notes.add_widget(Notice(plain(words), "caution"))
+        alone = [part.name for part in kit.parts if part.backup_missing_h > 0]
+        if alone:
+            hours = measures.hours_minutes(60 * (self.session.case.kit.backup_h or 0.0))
+            words = f"A second source for {hours} is not possible with what is allowed in {', '.join(alone)}."
+            self.open_notes.add_widget(Notice(plain(words), "caution", title="No second source."))
         if not kit.finished:
             words = "The search for a lighter set was stopped before it was proven; this one covers what is said here."
             if isfinite(kit.gap):
@@ -164,7 +196,8 @@ class KitScreen(ResultScreen):
             words += f" {other[:1].upper()}{other[1:]}: {kit_words.one_in(risk).lower()}."
         if chance.chance > plan.kit.run_out_wanted:
             wanted = kit_words.one_in(plan.kit.run_out_wanted).lower()
-            words += f" The service asks for {wanted} or rarer; a second source would do more than more of the same."
+            words += f" The service asks for {wanted} or rarer; a second source would do more than more of the same: "
+            words += "enter its hours below."
         return words
 
     def _show_items(self, kit: Any) -> None:

@@ -13,6 +13,7 @@ PERCENT = measures.Measure("%", 1, lambda share: 100 * share, lambda percent: pe
 HOURS = measures.plain_measure("h")
 ENTRIES = (
     (("flow_sd", "Flow really given, spread", PERCENT), ("left_running", "Left running when not worn", PERCENT)),
+    (("breathing_sd", "Breathing rate of pulses, spread", PERCENT),),
     (("fill_mean", "Cylinder filled to", PERCENT), ("fill_sd", "Its spread", PERCENT)),
     (("battery_mean", "Battery holds of its rated energy", PERCENT), ("battery_sd", "Its spread", PERCENT)),
     (("concentrator_mttf_h", "Concentrator fails once in", HOURS), ("charger_fails", "Charger fails, trips", PERCENT)),

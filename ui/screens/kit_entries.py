@@ -33,6 +33,7 @@ def fill_kit_entries(body: Any, form: Form, session: Any) -> None:
         Side(
             form.number("policy.reserve_fraction", "Reserve on top of the plan", _percent()),
             form.number("policy.residual_bar", "Cylinder is changed at", measures.gauge(session.case.display.gauge)),
+            form.number("kit.backup_h", "Second source for", measures.plain_measure("h", 1)),
             form.number("policy.run_out_chance", "Run short at most in", _percent(1)),
         )
     )
