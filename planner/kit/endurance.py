@@ -97,12 +97,14 @@ class Draws:
 
 @dataclass(frozen=True, eq=False)
 class Played:
-    """Hours short in each draw and leg, its cause, and what is left at the end of each leg."""
+    """Hours short in each draw and leg, its cause, and what is there at the start and left at the end of each leg."""
 
     short_h: Array
     concentrator_down: Flags
     source_failed: Flags
+    litres_there: Array
     litres_left: Array
+    watt_hours_there: Array
     watt_hours_left: Array
 
 
@@ -156,7 +158,7 @@ def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draw
     draws, count = drawn.waits_h.shape
     short, down = np.zeros((draws, count)), np.zeros((draws, count), dtype=bool)
     failed = np.zeros((draws, count), dtype=bool)
-    litres_left, wh_left = np.zeros((draws, count)), np.zeros((draws, count))
+    litres_there, litres_left, wh_there, wh_left = (np.zeros((draws, count)) for _ in range(4))
     litres, liquid = np.zeros(draws), np.zeros(draws)
     full_wh = (0.0 if power is None else power.nominal_wh * carried.batteries) * drawn.battery
     energy, clock = full_wh.copy(), np.zeros(draws)
@@ -164,6 +166,7 @@ def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draw
         litres = np.minimum(litres + carried.litres_new[number] * drawn.fill, carried.litres_most[number] * drawn.fill)
         new, most, boils = carried.liquid(number)
         liquid = np.minimum(liquid + new * drawn.fill, most * drawn.fill)
+        litres_there[:, number], wh_there[:, number] = litres + liquid, energy
         hours = np.maximum(leg.hours + drawn.longer_h[:, number], 0.25 * leg.hours)
         wait = drawn.waits_h[:, number + 1] if number + 1 < count else np.zeros(draws)
         if number == 0:
@@ -201,7 +204,7 @@ def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draw
             energy = np.where(drawn.charger_ok, np.minimum(energy + gained, full_wh), energy)
         short[:, number] = needed
         litres_left[:, number], wh_left[:, number] = litres + liquid, energy
-    return Played(short, down, failed, litres_left, wh_left)
+    return Played(short, down, failed, litres_there, litres_left, wh_there, wh_left)
 
 
 def run_out(played: Played) -> RunOut:

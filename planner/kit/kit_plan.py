@@ -71,7 +71,7 @@ class CrossCheck:
 
 @dataclass(frozen=True, eq=False)
 class Left:
-    """What is left at the start and the end of each part; arrays (points,). stress: every flight that much late."""
+    """What is there at the start and the end of each leg; arrays (points,). stress: every flight that much late."""
 
     minutes: Array
     litres: Array

@@ -8,7 +8,7 @@ import numpy as np
 
 from planner.air.ranges import Array
 from planner.kit.conservers import Conserver
-from planner.kit.endurance import Assumptions, Carried, Played
+from planner.kit.endurance import Played
 from planner.kit.kit_plan import Item, Left
 from planner.kit.legs import Choice, Leg, Power
 from planner.kit.selection import Selection
@@ -56,36 +56,34 @@ def items_to_carry(
     return (*items, *brought)
 
 
-def left_over(
-    legs: Sequence[Leg],
-    carried: Carried,
-    power: Power | None,
-    assumed: Assumptions,
-    played: Played,
-    planned: Played,
-    stress: Played,
-) -> Left:
-    """Litres and watt-hours left at the start and at the end of each leg: planned, 5 to 95 %, and the stress case."""
+def left_over(legs: Sequence[Leg], played: Played, planned: Played, stress: Played) -> Left:
+    """Litres and watt-hours at the start and at the end of each leg: planned, 5 to 95 %, and the stress case.
+
+    What comes in or is left behind between two legs is a step: two values at the same minute.
+    """
     ends = 60.0 * np.cumsum([leg.hours for leg in legs])
-    start_wh = 0.0 if power is None else power.nominal_wh * carried.batteries * assumed.battery_mean
-    start_l = (carried.litres_new[0] + carried.liquid(0)[0]) * assumed.fill_mean
-
-    def series(values: Array, start: float) -> Array:
-        return np.concatenate([[start], values])
-
-    litres_low, litres_high = np.quantile(played.litres_left, (0.05, 0.95), axis=0)
-    wh_low, wh_high = np.quantile(played.watt_hours_left, (0.05, 0.95), axis=0)
-    return Left(
-        minutes=np.concatenate([[0.0], ends]),
-        litres=series(planned.litres_left[0], start_l),
-        litres_low=series(litres_low, start_l),
-        litres_high=series(litres_high, start_l),
-        litres_stress=series(stress.litres_left[0], start_l),
-        watt_hours=series(planned.watt_hours_left[0], start_wh),
-        watt_hours_low=series(wh_low, start_wh),
-        watt_hours_high=series(wh_high, start_wh),
-        watt_hours_stress=series(stress.watt_hours_left[0], start_wh),
+    litres_there, litres_left = (
+        np.quantile(of, (0.05, 0.95), axis=0) for of in (played.litres_there, played.litres_left)
     )
+    wh_there, wh_left = (
+        np.quantile(of, (0.05, 0.95), axis=0) for of in (played.watt_hours_there, played.watt_hours_left)
+    )
+    return Left(
+        minutes=_in_turn(np.concatenate([[0.0], ends[:-1]]), ends),
+        litres=_in_turn(planned.litres_there[0], planned.litres_left[0]),
+        litres_low=_in_turn(litres_there[0], litres_left[0]),
+        litres_high=_in_turn(litres_there[1], litres_left[1]),
+        litres_stress=_in_turn(stress.litres_there[0], stress.litres_left[0]),
+        watt_hours=_in_turn(planned.watt_hours_there[0], planned.watt_hours_left[0]),
+        watt_hours_low=_in_turn(wh_there[0], wh_left[0]),
+        watt_hours_high=_in_turn(wh_there[1], wh_left[1]),
+        watt_hours_stress=_in_turn(stress.watt_hours_there[0], stress.watt_hours_left[0]),
+    )
+
+
+def _in_turn(starts: Array, ends: Array) -> Array:
+    """First start, first end, second start, ..."""
+    return np.stack([starts, ends], axis=1).ravel()
 
 
 def _vessel(choice: Choice, count: int, where: str, by: str, more: str = "") -> Item:

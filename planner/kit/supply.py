@@ -128,7 +128,7 @@ def plan_kit(
         run_out=chance,
         run_out_wanted=policy.run_out_chance,
         lighter=lighter_set(found, stronger, planned_set, choices, trip, used_power, others),
-        left=left_over(trip.legs, stronger.carried, used_power, trip.assumed, played, on_plan, late),
+        left=left_over(trip.legs, played, on_plan, late),
         turn_back=turn_back(
             trip.legs,
             found.uses,

@@ -468,3 +468,12 @@ def test_who_brings_what_is_told(copd):
     assert by["carrier"] == "carrier, asked for ahead"
     assert by["stationary"] == "supplier at the destination"
     assert by["battery"] == by["concentrator"] == "home-care supplier, before leaving"
+
+
+def test_a_cylinder_left_behind_is_not_read_as_there_during_the_flight():
+    table = json.loads(demo("copd_layover").model_dump_json())
+    owned = [{"size_id": "eu_2", "gauge_bar": 150.0}]
+    plan = kit_of(demo("copd_layover", kit=table["kit"] | {"owned_cylinders": owned, "backup_h": 1.0}))
+    before, start, middle = 105.0 + 120.0 - 1.0, 105.0 + 120.0 + 1.0, 105.0 + 120.0 + 75.0  # the first flight
+    assert np.interp(before, plan.left.minutes, plan.left.litres) > 50.0
+    assert np.interp([start, middle], plan.left.minutes, plan.left.litres).tolist() == [0.0, 0.0]
