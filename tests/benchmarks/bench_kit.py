@@ -58,7 +58,7 @@ def random_trip(rng: np.random.Generator) -> list[Leg]:
 
 def covered_trip() -> tuple[list[Leg], Carried]:
     """The first random trip that a set covers whole, and that set."""
-    litres = {choice.size_id: choice.usable_l for choice in CHOICES}
+    litres = {choice.key: choice.usable_l for choice in CHOICES}
     for seed in range(1000):
         legs = random_trip(np.random.default_rng(seed))
         found = select(legs, CHOICES, POWER, reserve_fraction=0.25)
