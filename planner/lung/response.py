@@ -94,6 +94,22 @@ class SolvedLungs:
         self.pco2_half_mmhg = 0.5 * (pco2_span_mmhg[1] - pco2_span_mmhg[0])
         self.curve = ContentCurve(body.haemoglobin_g_dl)
 
+    def covers(
+        self,
+        body: Body,
+        log_sd_span: tuple[float, float],
+        shunt_span: tuple[float, float],
+        pco2_span_mmhg: tuple[float, float],
+    ) -> bool:
+        """Whether draws of this body within these spans can be read from these lungs."""
+        return (
+            body == self.body
+            and bool(self.log_sd_nodes[0] <= log_sd_span[0] and log_sd_span[1] <= self.log_sd_nodes[-1])
+            and bool(self.shunt_nodes[0] <= shunt_span[0] and shunt_span[1] <= self.shunt_nodes[-1])
+            and self.pco2_middle_mmhg - self.pco2_half_mmhg <= pco2_span_mmhg[0]
+            and pco2_span_mmhg[1] <= self.pco2_middle_mmhg + self.pco2_half_mmhg
+        )
+
     @cached_property
     def air(self) -> Solved:
         """Breathing air, at any pressure."""
