@@ -20,8 +20,7 @@ from collections.abc import Callable, Iterator
 from datetime import timedelta
 from pathlib import Path
 
-ROOT = Path(__file__).resolve().parents[2]
-sys.path.insert(0, str(ROOT))
+sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
 
 from planner.batch.progress import Progress
 from planner.batch.runner import run_batch
@@ -30,6 +29,7 @@ from planner.catalogue import profile_text
 from planner.planning import StageMemory, plan
 from planner.records.reading import read_case
 
+ROOT = Path(__file__).resolve().parents[2]
 DEMOS = ("copd_layover", "fibrosis_mountain_hotel", "neuromuscular_car_and_plane")
 GOALS = {"forecast alone": 100.0, "forecast alone, table kept": 100.0, "with kit": 5.0}
 GOAL_RATIO = 1.8
