@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, field
 from pathlib import Path
+from statistics import median
 
 from planner import Case, plan
 from planner.batch.agreement import Agreement, Pair, agreement, widened
@@ -41,11 +42,12 @@ class Outcomes:
     lasted: int = 0
     lasted_but_feared: int = 0
     symptoms: int = 0
+    used_to_planned: list[float] = field(default_factory=list)
     late_min: list[float] = field(default_factory=list)
 
 
 def outcomes_report(cases: Iterable[Case | BadLine]) -> str:
-    """The report as text: agreement of SpO2 on air and on oxygen, run-outs, symptoms, delays, and the warning."""
+    """The report as text: agreement of SpO₂ on air and on oxygen, run-outs, oxygen used, symptoms, delays, warnings."""
     return report_text(gather_outcomes(cases))
 
 
@@ -74,40 +76,67 @@ def gather_outcomes(cases: Iterable[Case | BadLine]) -> Outcomes:
     return found
 
 
-def report_text(found: Outcomes) -> str:
-    """The report as plain text, whole sentences and a unit beside every number."""
-    lines = [
-        "Predicted against measured, own cases. Estimate only. Confirm with prescriber.",
-        f"Cases with an outcome: {found.cases}. Left out without one: {found.without_outcome}.",
-    ]
-    lines += [f"Line {one.number} was left out: {one.reason}" for one in found.bad]
-    lines.append("")
-    lines += _agreement_lines("Usual SpO2 on air", agreement(found.on_air))
-    lines += _agreement_lines("Usual SpO2 on the decided oxygen", agreement(found.on_oxygen))
-    if found.not_comparable:
-        lines.append(
-            f"Recorded parts without an SpO2 or without a prediction to set beside it: {found.not_comparable}."
-        )
-    lines.append(
-        f"Run-outs: {found.ran_out} recorded, {found.ran_out_foreseen} of them foreseen as more likely than accepted. "
+@dataclass(frozen=True)
+class Finding:
+    """One thing compared: its name, and what came out as sentences."""
+
+    title: str
+    sentences: tuple[str, ...]
+
+
+def findings(found: Outcomes) -> tuple[Finding, ...]:
+    """What was compared, a unit beside every number: SpO₂ on air and on oxygen, run-outs, oxygen used, the journey."""
+    lasted = (
         f"In {_counted(found.lasted, 'part')} the oxygen lasted; in {found.lasted_but_feared} of them a run-out had "
         "been foreseen."
     )
-    lines.append(f"Parts with symptoms: {found.symptoms}.")
+    journey = [f"Parts with symptoms: {found.symptoms}."]
     if found.late_min:
-        ordered = sorted(found.late_min)
-        lines.append(
-            f"Delays were recorded in {_counted(len(ordered), 'part')}: median {ordered[len(ordered) // 2]:.0f} min, "
-            f"longest {ordered[-1]:.0f} min."
+        middle, longest = median(found.late_min), max(found.late_min)
+        journey.append(
+            f"Delays were recorded in {_counted(len(found.late_min), 'part')}: median {middle:.0f} min, "
+            f"longest {longest:.0f} min."
         )
-    lines.append("")
+    return (
+        Finding("Usual SpO₂ on air", _agreement_sentences(agreement(found.on_air))),
+        Finding("Usual SpO₂ on the decided oxygen", _agreement_sentences(agreement(found.on_oxygen))),
+        Finding(
+            "Run-outs",
+            (
+                f"{found.ran_out} recorded, {found.ran_out_foreseen} of them foreseen as more likely than accepted.",
+                lasted,
+            ),
+        ),
+        Finding("Oxygen used", _used_sentences(found.used_to_planned)),
+        Finding("On the way", tuple(journey)),
+    )
+
+
+def reservations(found: Outcomes) -> tuple[str, ...]:
+    """What limits the comparison, as sentences: what was left out, and how little few cases prove."""
+    said = []
+    if found.not_comparable:
+        said.append(f"Recorded parts without an SpO₂ or without a prediction to set beside it: {found.not_comparable}.")
     pairs = len(found.on_air) + len(found.on_oxygen)
     if pairs < ENOUGH_PAIRS:
-        lines.append(
+        said.append(
             f"Few cases prove little: there are {_counted(pairs, 'comparison')}, and {ENOUGH_PAIRS} begin to tell."
         )
-    lines.append("Recorded outcomes are a chosen few: those who did badly or well are recorded more often.")
-    return "\n".join(lines)
+    said.append("Recorded outcomes are a chosen few: those who did badly or well are recorded more often.")
+    return tuple(said)
+
+
+def report_text(found: Outcomes) -> str:
+    """The report as plain text."""
+    lines = [
+        "Predicted against measured, own cases. Estimate only. Confirm with prescriber.",
+        f"Cases with an outcome: {found.cases}. Left out without one: {found.without_outcome}.",
+        *(f"Line {one.number} was left out: {one.reason}" for one in found.bad),
+        "",
+    ]
+    for one in findings(found):
+        lines += [f"{one.title}: {one.sentences[0]}", *(f"  {sentence}" for sentence in one.sentences[1:])]
+    return "\n".join([*lines, "", *reservations(found)])
 
 
 def _add(found: Outcomes, case: Case) -> None:
@@ -116,6 +145,7 @@ def _add(found: Outcomes, case: Case) -> None:
     result = plan(case)
     by_id = {part.span.part_id: part for part in result.parts}
     kit = result.kit
+    litres = {part.part_id: part.litres for part in kit.parts} if kit else {}
     feared = {part.part_id for part in kit.parts if part.run_out_chance > kit.run_out_wanted} if kit else set()
     for recorded in case.outcome.parts:
         part = by_id.get(recorded.part_id)
@@ -132,6 +162,9 @@ def _add(found: Outcomes, case: Case) -> None:
         elif recorded.ran_out is False:
             found.lasted += 1
             found.lasted_but_feared += recorded.part_id in feared
+        planned = litres.get(recorded.part_id)
+        if recorded.oxygen_used_l is not None and planned:
+            found.used_to_planned.append(recorded.oxygen_used_l / planned)
         found.symptoms += bool(recorded.symptoms.strip())
         if recorded.late_min is not None:
             found.late_min.append(recorded.late_min)
@@ -153,27 +186,34 @@ def _spo2_pair(part: PartPlan, recorded: PartOutcome) -> Pair | None:
         if forecast is None or forecast.spo2 is None:
             return None
         band = (forecast.spo2.median, forecast.spo2.low, forecast.spo2.high)
-    median, low, high = (100.0 * one for one in band)
-    return Pair(median, *widened(median, low, high, OXIMETER_SD_PERCENT), recorded.usual_spo2_percent)
+    middle, low, high = (100.0 * one for one in band)
+    return Pair(middle, *widened(middle, low, high, OXIMETER_SD_PERCENT), recorded.usual_spo2_percent)
 
 
-def _agreement_lines(title: str, found: Agreement) -> list[str]:
+def _agreement_sentences(found: Agreement) -> tuple[str, ...]:
     if found.bias is None or found.share_inside is None:
-        return [f"{title}: no comparison."]
-    said = [
-        f"{title}: {_counted(found.count, 'comparison')}.",
-        f"  Bias (predicted less measured): {found.bias:+.1f} points.",
-    ]
+        return ("no comparison.",)
+    limits = "Limits of agreement: too few comparisons."
     if found.lower_limit is not None and found.upper_limit is not None:
-        said.append(f"  Limits of agreement (95 %): {found.lower_limit:+.1f} to {found.upper_limit:+.1f} points.")
-    else:
-        said.append("  Limits of agreement: too few comparisons.")
-    said.append(
-        f"  Inside the 90 % band, oximeter error included: {found.inside} of {found.count}, "
+        limits = f"Limits of agreement (95 %): {found.lower_limit:+.1f} to {found.upper_limit:+.1f} points."
+    return (
+        f"{_counted(found.count, 'comparison')}.",
+        f"Bias (predicted less measured): {found.bias:+.1f} points.",
+        limits,
+        f"Inside the 90 % band, oximeter error included: {found.inside} of {found.count}, "
         f"{100 * found.share_inside:.0f} % (95 % interval {100 * (found.inside_low or 0.0):.0f} to "
-        f"{100 * (found.inside_high or 0.0):.0f} %)."
+        f"{100 * (found.inside_high or 0.0):.0f} %).",
     )
-    return said
+
+
+def _used_sentences(used_to_planned: list[float]) -> tuple[str, ...]:
+    if not used_to_planned:
+        return ("no comparison.",)
+    low, middle, high = min(used_to_planned), median(used_to_planned), max(used_to_planned)
+    return (
+        f"{_counted(len(used_to_planned), 'part')}, median {100 * middle:.0f} % of what was planned "
+        f"({100 * low:.0f} to {100 * high:.0f} %).",
+    )
 
 
 def _counted(count: int, word: str) -> str:

@@ -30,7 +30,7 @@ def predicted_on_air():
 
 def test_a_measurement_as_predicted_has_no_bias_and_lies_inside_the_band():
     report = outcomes_report([happened(on_air(predicted_on_air()))])
-    assert "Usual SpO2 on air: 1 comparison." in report
+    assert "Usual SpO₂ on air: 1 comparison." in report
     assert "Bias (predicted less measured): +0.0 points." in report
     assert "1 of 1, 100 %" in report
     assert "Limits of agreement: too few comparisons." in report
@@ -49,8 +49,8 @@ def test_on_oxygen_the_decided_flow_is_what_is_compared():
     report = outcomes_report(
         [happened({"part_id": FLIGHT.span.part_id, "usual_spo2_percent": measured, "on_oxygen": True})]
     )
-    assert "Usual SpO2 on air: no comparison." in report
-    assert "Usual SpO2 on the decided oxygen: 1 comparison." in report
+    assert "Usual SpO₂ on air: no comparison." in report
+    assert "Usual SpO₂ on the decided oxygen: 1 comparison." in report
     assert "Bias (predicted less measured): -1.0 points." in report
 
 
@@ -60,7 +60,7 @@ def test_what_cannot_be_compared_is_counted_and_not_guessed():
     report = outcomes_report([happened(unknown_gas, elsewhere), read_case(json.dumps(DEMO))])
     assert "Cases with an outcome: 1. Left out without one: 1." in report
     assert "without a prediction to set beside it: 2." in report
-    assert "Usual SpO2 on air: no comparison." in report
+    assert "Usual SpO₂ on air: no comparison." in report
 
 
 def test_run_outs_are_set_beside_what_was_feared():
@@ -69,6 +69,16 @@ def test_run_outs_are_set_beside_what_was_feared():
     count = int(feared[WAIT.span.part_id])
     assert f"Run-outs: 1 recorded, {count} of them foreseen" in report
     assert f"In 1 part the oxygen lasted; in {count} of them a run-out had been foreseen." in report
+
+
+def test_oxygen_used_is_set_beside_what_was_planned_for_that_part():
+    planned = {part.part_id: part.litres for part in PLAN.kit.parts if part.litres}
+    part_id, litres = next(iter(planned.items()))
+    report = outcomes_report(
+        [happened({"part_id": part_id, "oxygen_used_l": share * litres}) for share in (0.5, 0.8, 1.2)]
+    )
+    assert "Oxygen used: 3 parts, median 80 % of what was planned (50 to 120 %)." in report
+    assert "Oxygen used: no comparison." in outcomes_report([happened(on_air(92.0))])
 
 
 def test_symptoms_delays_and_the_warning_of_few_cases_are_told():

@@ -136,9 +136,8 @@ def main() -> None:
     count = int(sys.argv[1]) if len(sys.argv) > 1 else 30
     lines = int(sys.argv[2]) if len(sys.argv) > 2 else 10_000
     for name, rate in one_core(count).items():
-        print(
-            f"{name}: {rate:.1f} cases a second and core, ratio to the goal of {GOALS[name]:g}: {rate / GOALS[name]:.2f}"
-        )
+        goal = GOALS[name]
+        print(f"{name}: {rate:.1f} cases a second and core, ratio to the goal of {goal:g}: {rate / goal:.2f}")
     print(f"two processes against one: {two_against_one(count):.2f} times as fast (goal {GOAL_RATIO:g})")
     short, long = peak_mb(100), peak_mb(lines)
     print(f"peak memory: {short:.0f} MB for 100 lines, {long:.0f} MB for {lines:,}, ratio {long / short:.2f}")
