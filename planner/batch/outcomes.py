@@ -69,11 +69,17 @@ def gather_outcomes(cases: Iterable[Case | BadLine]) -> Outcomes:
     for case in cases:
         if isinstance(case, BadLine):
             found.bad.append(case)
-        elif case.outcome is None or not case.outcome.parts:
-            found.without_outcome += 1
-        else:
+        elif recorded_parts(case):
             _add(found, case)
+        else:
+            found.without_outcome += 1
     return found
+
+
+def recorded_parts(case: Case) -> tuple[PartOutcome, ...]:
+    """The parts of which something was recorded."""
+    parts = case.outcome.parts if case.outcome is not None else ()
+    return tuple(one for one in parts if one != PartOutcome(part_id=one.part_id))
 
 
 @dataclass(frozen=True)
@@ -140,14 +146,13 @@ def report_text(found: Outcomes) -> str:
 
 
 def _add(found: Outcomes, case: Case) -> None:
-    assert case.outcome is not None
     found.cases += 1
     result = plan(case)
     by_id = {part.span.part_id: part for part in result.parts}
     kit = result.kit
     litres = {part.part_id: part.litres for part in kit.parts} if kit else {}
     feared = {part.part_id for part in kit.parts if part.run_out_chance > kit.run_out_wanted} if kit else set()
-    for recorded in case.outcome.parts:
+    for recorded in recorded_parts(case):
         part = by_id.get(recorded.part_id)
         pair = None if part is None else _spo2_pair(part, recorded)
         if pair is None:
@@ -170,24 +175,32 @@ def _add(found: Outcomes, case: Case) -> None:
             found.late_min.append(recorded.late_min)
 
 
-def _spo2_pair(part: PartPlan, recorded: PartOutcome) -> Pair | None:
-    """Usual SpO2 of a part against the prediction for the activity most of it was spent in, in per cent."""
-    if recorded.usual_spo2_percent is None or recorded.on_oxygen is None:
-        return None
+def predicted_spo2(part: PartPlan, on_oxygen: bool) -> tuple[float, float, float] | None:
+    """Median, 5 and 95 % of the SpO₂ predicted for a part, in per cent; None where nothing was predicted.
+
+    It is that of the activity most of the part is spent in, on air or on the decided oxygen.
+    """
     activity = max(part.span.shares, key=lambda one: part.span.shares[one])
-    if recorded.on_oxygen:
+    if on_oxygen:
         expected = next((one.expected for one in part.decided if one.activity == activity), None)
         if expected is None:
             return None
-        band = (expected.spo2_median, expected.spo2_low, expected.spo2_high)
-    else:
-        activities = part.forecast.activities if part.forecast is not None else ()
-        forecast = next((one for one in activities if one.activity == activity), None)
-        if forecast is None or forecast.spo2 is None:
-            return None
-        band = (forecast.spo2.median, forecast.spo2.low, forecast.spo2.high)
-    middle, low, high = (100.0 * one for one in band)
-    return Pair(middle, *widened(middle, low, high, OXIMETER_SD_PERCENT), recorded.usual_spo2_percent)
+        return 100.0 * expected.spo2_median, 100.0 * expected.spo2_low, 100.0 * expected.spo2_high
+    activities = part.forecast.activities if part.forecast is not None else ()
+    forecast = next((one for one in activities if one.activity == activity), None)
+    if forecast is None or forecast.spo2 is None:
+        return None
+    return 100.0 * forecast.spo2.median, 100.0 * forecast.spo2.low, 100.0 * forecast.spo2.high
+
+
+def _spo2_pair(part: PartPlan, recorded: PartOutcome) -> Pair | None:
+    """Usual SpO₂ of a part against its prediction, in per cent."""
+    if recorded.usual_spo2_percent is None or recorded.on_oxygen is None:
+        return None
+    band = predicted_spo2(part, recorded.on_oxygen)
+    if band is None:
+        return None
+    return Pair(band[0], *widened(*band, OXIMETER_SD_PERCENT), recorded.usual_spo2_percent)
 
 
 def _agreement_sentences(found: Agreement) -> tuple[str, ...]:

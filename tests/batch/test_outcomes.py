@@ -63,6 +63,12 @@ def test_what_cannot_be_compared_is_counted_and_not_guessed():
     assert "Usual SpO₂ on air: no comparison." in report
 
 
+def test_a_part_of_which_nothing_was_recorded_does_not_count():
+    report = outcomes_report([happened({"part_id": WAIT.span.part_id})])
+    assert "Cases with an outcome: 0. Left out without one: 1." in report
+    assert "without a prediction" not in report
+
+
 def test_run_outs_are_set_beside_what_was_feared():
     feared = {part.part_id: part.run_out_chance > PLAN.kit.run_out_wanted for part in PLAN.kit.parts}
     report = outcomes_report([happened(on_air(92.0, ran_out=True)), happened(on_air(92.0, ran_out=False))])
