@@ -84,36 +84,42 @@ def recorded_parts(case: Case) -> tuple[PartOutcome, ...]:
 
 @dataclass(frozen=True)
 class Finding:
-    """One thing compared: its name, and what came out as sentences."""
+    """One thing compared: its name, and what came out as labels with their values, units included."""
 
     title: str
-    sentences: tuple[str, ...]
+    rows: tuple[tuple[str, str], ...]
 
 
 def findings(found: Outcomes) -> tuple[Finding, ...]:
-    """What was compared, a unit beside every number: SpO₂ on air and on oxygen, run-outs, oxygen used, the journey."""
-    lasted = (
-        f"In {_counted(found.lasted, 'part')} the oxygen lasted; in {found.lasted_but_feared} of them a run-out had "
-        "been foreseen."
-    )
-    journey = [f"Parts with symptoms: {found.symptoms}."]
+    """What was compared: SpO₂ on air and on oxygen, run-outs, oxygen used, symptoms and delays."""
+    journey = [("Parts with symptoms", f"{found.symptoms}")]
     if found.late_min:
-        middle, longest = median(found.late_min), max(found.late_min)
-        journey.append(
-            f"Delays were recorded in {_counted(len(found.late_min), 'part')}: median {middle:.0f} min, "
-            f"longest {longest:.0f} min."
+        journey += [
+            ("Parts with a delay recorded", f"{len(found.late_min)}"),
+            ("Median delay", f"{median(found.late_min):.0f} min"),
+            ("Longest delay", f"{max(found.late_min):.0f} min"),
+        ]
+    used: tuple[tuple[str, str], ...] = (("Comparisons", "none"),)
+    if found.used_to_planned:
+        low, middle, high = (100 * one(found.used_to_planned) for one in (min, median, max))
+        used = (
+            ("Comparisons", f"{len(found.used_to_planned)}"),
+            ("Median, of what was planned", f"{middle:.0f} %"),
+            ("Lowest to highest", f"{low:.0f} to {high:.0f} %"),
         )
     return (
-        Finding("Usual SpO₂ on air", _agreement_sentences(agreement(found.on_air))),
-        Finding("Usual SpO₂ on the decided oxygen", _agreement_sentences(agreement(found.on_oxygen))),
+        Finding("Usual SpO₂ on air", _agreement_rows(agreement(found.on_air))),
+        Finding("Usual SpO₂ on the decided oxygen", _agreement_rows(agreement(found.on_oxygen))),
         Finding(
-            "Run-outs",
+            "Running out",
             (
-                f"{found.ran_out} recorded, {found.ran_out_foreseen} of them foreseen as more likely than accepted.",
-                lasted,
+                ("Parts in which oxygen ran out", f"{found.ran_out}"),
+                ("Of these foreseen as more likely than accepted", f"{found.ran_out_foreseen}"),
+                ("Parts in which it lasted", f"{found.lasted}"),
+                ("Of these a run-out had been foreseen in", f"{found.lasted_but_feared}"),
             ),
         ),
-        Finding("Oxygen used", _used_sentences(found.used_to_planned)),
+        Finding("Oxygen used", used),
         Finding("On the way", tuple(journey)),
     )
 
@@ -141,7 +147,7 @@ def report_text(found: Outcomes) -> str:
         "",
     ]
     for one in findings(found):
-        lines += [f"{one.title}: {one.sentences[0]}", *(f"  {sentence}" for sentence in one.sentences[1:])]
+        lines += [one.title, *(f"  {label}: {value}" for label, value in one.rows)]
     return "\n".join([*lines, "", *reservations(found)])
 
 
@@ -203,29 +209,24 @@ def _spo2_pair(part: PartPlan, recorded: PartOutcome) -> Pair | None:
     return Pair(band[0], *widened(*band, OXIMETER_SD_PERCENT), recorded.usual_spo2_percent)
 
 
-def _agreement_sentences(found: Agreement) -> tuple[str, ...]:
+def _agreement_rows(found: Agreement) -> tuple[tuple[str, str], ...]:
     if found.bias is None or found.share_inside is None:
-        return ("no comparison.",)
-    limits = "Limits of agreement: too few comparisons."
+        return (("Comparisons", "none"),)
+    limits = "too few comparisons"
     if found.lower_limit is not None and found.upper_limit is not None:
-        limits = f"Limits of agreement (95 %): {found.lower_limit:+.1f} to {found.upper_limit:+.1f} points."
+        limits = f"{found.lower_limit:+.1f} to {found.upper_limit:+.1f} points"
     return (
-        f"{_counted(found.count, 'comparison')}.",
-        f"Bias (predicted less measured): {found.bias:+.1f} points.",
-        limits,
-        f"Inside the 90 % band, oximeter error included: {found.inside} of {found.count}, "
-        f"{100 * found.share_inside:.0f} % (95 % interval {100 * (found.inside_low or 0.0):.0f} to "
-        f"{100 * (found.inside_high or 0.0):.0f} %).",
-    )
-
-
-def _used_sentences(used_to_planned: list[float]) -> tuple[str, ...]:
-    if not used_to_planned:
-        return ("no comparison.",)
-    low, middle, high = min(used_to_planned), median(used_to_planned), max(used_to_planned)
-    return (
-        f"{_counted(len(used_to_planned), 'part')}, median {100 * middle:.0f} % of what was planned "
-        f"({100 * low:.0f} to {100 * high:.0f} %).",
+        ("Comparisons", f"{found.count}"),
+        ("Bias (predicted less measured)", f"{found.bias:+.1f} points"),
+        ("Limits of agreement (95 %)", limits),
+        (
+            "Inside the 90 % band, oximeter error included",
+            f"{found.inside} of {found.count}, {100 * found.share_inside:.0f} %",
+        ),
+        (
+            "95 % interval of that share",
+            f"{100 * (found.inside_low or 0.0):.0f} to {100 * (found.inside_high or 0.0):.0f} %",
+        ),
     )
 
 

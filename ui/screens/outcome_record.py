@@ -24,12 +24,16 @@ PERCENT, LITRES, MINUTES = plain_measure("%"), plain_measure("L"), plain_measure
 
 def with_all_parts(case: Case) -> Case:
     """The case with a place to record for every part of its trip; it is kept only when something is entered."""
-    before = case.outcome or Outcome(recorded_on=forms.today())
+    before = case.outcome or Outcome()
     known = {one.part_id: one for one in before.parts}
     ids = [part.part_id for part in case.trip.parts]
     elsewhere = [one for part_id, one in known.items() if part_id not in ids]  # of a part since removed: kept
     parts = (*(known.get(one, PartOutcome(part_id=one)) for one in ids), *elsewhere)
-    return case.model_copy(update={"outcome": before.model_copy(update={"parts": parts})})
+    return case.model_copy(
+        update={
+            "outcome": before.model_copy(update={"parts": parts, "recorded_on": before.recorded_on or forms.today()})
+        }
+    )
 
 
 class RecordPage(OutsidePage):

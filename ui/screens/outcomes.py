@@ -11,13 +11,13 @@ from kivy.uix.boxlayout import BoxLayout
 from kivy.uix.textinput import TextInput
 
 from planner.errors import PlannerError
-from ui.theme import theme
+from ui.theme import space, theme
 from ui.widgets.buttons import QuietButton
 from ui.widgets.notices import CautionStrip, Notice, Section, paint_ground
 from ui.widgets.page import Page
 from ui.widgets.reach import ESCAPE
 from ui.widgets.rows import ListRow, Stack
-from ui.widgets.text import Text, plain
+from ui.widgets.text import Fixed, Text, plain
 from ui.widgets.typing import date_text
 from ui.worker import away
 
@@ -59,6 +59,18 @@ class OutsidePage(BoxLayout):
         return True
 
 
+class Counted(BoxLayout):
+    """A label with its value at the right."""
+
+    def __init__(self, label: str, value: str) -> None:
+        super().__init__(size_hint_y=None, height=0, spacing=space(3))
+        words, number = Text(label), Fixed(value)
+        for one in (words, number):
+            one.pos_hint = {"top": 1}
+            self.add_widget(one)
+        words.bind(height=self.setter("height"))
+
+
 class OutcomesPage(OutsidePage):
     """What came out over all cases, and the cases to record for."""
 
@@ -66,8 +78,7 @@ class OutcomesPage(OutsidePage):
         super().__init__("After the trip", "Cases", app.show_cases)
         self.app = app
         self.fault, self.found, self.listed = Stack(), Stack(gap=5), Stack(gap=0)
-        for widget in (self.fault, self.found):
-            self.content.add_widget(widget)
+        self.content.add_widget(Stack(self.fault, self.found, gap=2))
         cases = Section("Record what happened")
         cases.add_widget(self.listed)
         self.content.add_widget(cases)
@@ -90,12 +101,11 @@ class OutcomesPage(OutsidePage):
         if not outcomes.cases:
             self.found.add_widget(Text(NONE_YET))
             return
-        self.found.add_widget(Text(f"Predicted beside measured, cases compared: {outcomes.cases}.", tone="muted"))
+        self.found.add_widget(Text(f"Measured beside predicted. Cases compared: {outcomes.cases}.", tone="muted"))
         for one in findings(outcomes):
-            sentences = [f"{sentence[:1].upper()}{sentence[1:]}" for sentence in one.sentences]
-            self.found.add_widget(
-                Stack(Text(f"[b]{one.title}[/b]", role="lead"), *(Text(text) for text in sentences), gap=1)
-            )
+            section = Section(one.title)
+            section.add_widget(Stack(*(Counted(label, value) for label, value in one.rows), gap=1.5))
+            self.found.add_widget(section)
         self.found.add_widget(Notice(" ".join(reservations(outcomes)), "caution"))
 
     def _fill_rows(self, recorded: dict[str, str]) -> None:
