@@ -21,6 +21,9 @@ from datetime import timedelta
 from pathlib import Path
 
 sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
+sys.path.insert(0, str(Path(__file__).resolve().parent))
+
+from measure import Row, print_table
 
 from planner.batch.progress import Progress
 from planner.batch.runner import run_batch
@@ -128,19 +131,31 @@ def _written(path: Path, texts: Iterator[str]) -> Path:
     return path
 
 
+def rows(count: int = 30, lines: int = 10_000) -> Iterator[Row]:
+    """Cases a second and core, two processes against one, and memory."""
+    for name, rate in one_core(count).items():
+        goal = GOALS[name]
+        yield Row(
+            f"Batch, {name}", f"{rate:.1f} cases a second and core", ratio=f"{rate / goal:.2f} of the goal",
+            goal=f"{goal:g}",
+        )  # fmt: skip
+    yield Row(
+        "Batch, two processes", f"{count} whole plans", "one process", f"{two_against_one(count):.2f} times as fast",
+        f"{GOAL_RATIO:g}",
+    )  # fmt: skip
+    short, long = peak_mb(100), peak_mb(lines)
+    yield Row(
+        f"Batch, peak memory, {lines:,} lines", f"{long:.0f} MB", f"100 lines, {short:.0f} MB",
+        f"{long / short:.2f} times as much", "1",
+    )  # fmt: skip
+
+
 def main() -> None:
-    """Print the table."""
+    """Print the table; --peak is this file's own process."""
     if sys.argv[1:2] == ["--peak"]:
         print(_peak_here(int(sys.argv[2])))
         return
-    count = int(sys.argv[1]) if len(sys.argv) > 1 else 30
-    lines = int(sys.argv[2]) if len(sys.argv) > 2 else 10_000
-    for name, rate in one_core(count).items():
-        goal = GOALS[name]
-        print(f"{name}: {rate:.1f} cases a second and core, ratio to the goal of {goal:g}: {rate / goal:.2f}")
-    print(f"two processes against one: {two_against_one(count):.2f} times as fast (goal {GOAL_RATIO:g})")
-    short, long = peak_mb(100), peak_mb(lines)
-    print(f"peak memory: {short:.0f} MB for 100 lines, {long:.0f} MB for {lines:,}, ratio {long / short:.2f}")
+    print_table(rows(*(int(one) for one in sys.argv[1:])))
 
 
 if __name__ == "__main__":
