@@ -55,6 +55,7 @@ def _parser() -> argparse.ArgumentParser:
     batch.add_argument("cases", type=Path, metavar="CASES.jsonl")
     batch.add_argument("--out", type=Path, required=True, metavar="FOLDER")
     batch.add_argument("--papers", action="store_true", help="write the PDF papers of each case too")
+    batch.add_argument("--forecast-only", action="store_true", help="without flows, decisions, kit and papers: faster")
     batch.add_argument("--workers", type=int, default=1, metavar="N", help="processes (default: %(default)s)")
     batch.set_defaults(run=_run_batch)
 
@@ -101,7 +102,13 @@ def _write_plan(case: Case, folder: Path) -> None:
 def _run_batch(chosen: argparse.Namespace) -> int:
     from planner.batch.runner import run_batch
 
-    return run_batch(chosen.cases, chosen.out, papers=chosen.papers, workers=chosen.workers)
+    return run_batch(
+        chosen.cases,
+        chosen.out,
+        papers=chosen.papers,
+        forecast_only=chosen.forecast_only,
+        workers=chosen.workers,
+    )
 
 
 def _run_outcomes(chosen: argparse.Namespace) -> int:

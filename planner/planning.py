@@ -103,7 +103,7 @@ def plan(
         lambda: stages.decided(case, timeline, dosing),
     )
     along = keep("along", (timeline, dosing, case.decisions), lambda: stages.along(case, timeline, dosing))
-    narrowing = keep("narrowing", (baseline, timeline), lambda: stages.narrowed(baseline, timeline))
+    narrowing = keep("narrowing", (baseline, timeline, lung), lambda: stages.narrowed(baseline, timeline, lung.fitted))
     kit = None
     if through == "kit":
         kit = keep(

@@ -9,12 +9,13 @@ from datetime import date
 from planner.case import Case
 from planner.case.decisions import Decision
 from planner.case.trip import Activity
+from planner.delivery.decided import Dose, OnOxygen, with_decisions
 from planner.delivery.devices import Device, load_devices, shortlist
 from planner.delivery.dose import Condition
 from planner.delivery.effect import DeliverySpread, inspired_rise, usual_spread
 from planner.delivery.response import GroundResponse, learn_gain
 from planner.delivery.target import Target
-from planner.delivery.titration import OnOxygen, Titration, titrate, with_decision
+from planner.delivery.titration import Titration, titrate
 from planner.errors import InputError
 from planner.evidence.along import blood_along
 from planner.evidence.baseline import Baseline
@@ -77,7 +78,7 @@ def fitted(baseline: Baseline, draws: int) -> Lung:
         return Lung(None, error.message)
 
 
-def narrowed(baseline: Baseline, timeline: Timeline) -> tuple[Narrowing, ...]:
+def narrowed(baseline: Baseline, timeline: Timeline, lung: FittedLung | None) -> tuple[Narrowing, ...]:
     """Which missing entry would narrow the forecast of the thinnest air most; empty where nothing can be fitted."""
     span = thinnest(timeline)
     if span is None or not baseline.lung_readings:
@@ -86,7 +87,7 @@ def narrowed(baseline: Baseline, timeline: Timeline) -> tuple[Narrowing, ...]:
     assert span.lowest_barometric_mmhg is not None
     condition = fitting.Condition(span.lowest_inspired_po2_mmhg, span.lowest_barometric_mmhg)
     try:
-        return narrowing(baseline.lung_readings, baseline.person, condition)
+        return narrowing(baseline.lung_readings, baseline.person, condition, fitted=lung)
     except InputError:
         return ()  # the refusal of the fit is said by fitted()
 
@@ -173,31 +174,35 @@ def conditions_of(case: Case, span: PartSpan) -> list[Condition]:
 def decided(case: Case, timeline: Timeline, needs: Dosing) -> tuple[DecidedOxygen, ...]:
     """Each decision with what the fitted lung expects from it; stale where its inputs changed since."""
     conditions = {(one.part_id, one.activity): one for span in timeline.parts for one in conditions_of(case, span)}
+    doses: dict[int, Dose] = {}
+    for place, one in enumerate(case.decisions):
+        condition, device, amount = conditions.get((one.part_id, one.activity)), *_dose_of(one, needs)
+        if condition is not None and (one.no_oxygen or (device is not None and amount is not None)):
+            doses[place] = Dose(condition, device, amount or 0.0)
+    answers: dict[int, OnOxygen | InputError] = {}
+    if needs.fitted is not None and doses:
+        found = with_decisions(
+            needs.fitted,
+            list(doses.values()),
+            needs.target,
+            spread=needs.spread,
+            breathing_rate_min=needs.breathing_rate_min,
+        )
+        answers = dict(zip(doses, found, strict=True))
     digest = case.decision_digest()
-    return tuple(_decided(one, conditions.get((one.part_id, one.activity)), needs, digest) for one in case.decisions)
+    return tuple(_decided(one, answers.get(place), needs, digest) for place, one in enumerate(case.decisions))
 
 
-def _decided(decision: Decision, condition: Condition | None, needs: Dosing, digest: str) -> DecidedOxygen:
+def _dose_of(decision: Decision, needs: Dosing) -> tuple[Device | None, float | None]:
     device = needs.known.get(decision.device_id or "")
-    amount = decision.flow_l_min if decision.flow_l_min is not None else decision.setting
-    expected: OnOxygen | None = None
+    return device, decision.flow_l_min if decision.flow_l_min is not None else decision.setting
+
+
+def _decided(decision: Decision, answer: OnOxygen | InputError | None, needs: Dosing, digest: str) -> DecidedOxygen:
+    device, amount = _dose_of(decision, needs)
     text = "no oxygen" if decision.no_oxygen else f"{decision.device_id}, which the profiles do not have"
     if device is not None and amount is not None:
         text = device.amount_text(amount)
-    fault = ""
-    if needs.fitted is not None and condition is not None and (decision.no_oxygen or device is not None):
-        try:
-            expected = with_decision(
-                needs.fitted,
-                condition,
-                device,
-                amount or 0.0,
-                needs.target,
-                spread=needs.spread,
-                breathing_rate_min=needs.breathing_rate_min,
-            )
-        except InputError as error:
-            fault = error.message
     return DecidedOxygen(
         part_id=decision.part_id,
         activity=decision.activity,
@@ -208,8 +213,8 @@ def _decided(decision: Decision, condition: Condition | None, needs: Dosing, dig
         role=decision.role,
         decided_on=decision.decided_on,
         stale=bool(decision.resting_on) and decision.resting_on != digest,
-        expected=expected,
-        fault=fault,
+        expected=answer if isinstance(answer, OnOxygen) else None,
+        fault=answer.message if isinstance(answer, InputError) else "",
     )
 
 

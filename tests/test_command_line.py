@@ -51,6 +51,14 @@ def test_a_faulty_case_gives_one_sentence_a_fault_and_status_2(tmp_path, capsys)
     assert not (tmp_path / "out").exists()
 
 
+def test_a_batch_can_be_asked_for_the_forecast_alone(tmp_path):
+    cases = tmp_path / "cases.jsonl"
+    cases.write_text(json.dumps(json.loads(profile_text("demo/copd_layover.json"))), encoding="utf-8")
+    assert main(["batch", str(cases), "--out", str(tmp_path / "out"), "--forecast-only"]) == 0
+    (plan,) = (tmp_path / "out").glob("cases/*/plan.json")
+    assert json.loads(plan.read_text(encoding="utf-8"))["through"] == "forecast"
+
+
 def test_a_missing_case_file_is_named(tmp_path, capsys):
     assert main(["plan", str(tmp_path / "nowhere.json"), "--out", str(tmp_path)]) == 2
     assert "nowhere.json" in capsys.readouterr().err

@@ -12,6 +12,7 @@ from pathlib import Path
 
 from planner.catalogue import service_folder
 from planner.errors import InputError
+from planner.results import Through
 
 MOST_LINE_BYTES = 5_000_000
 _BYTE_ORDER_MARK = b"\xef\xbb\xbf"
@@ -56,14 +57,14 @@ def planner_fingerprint() -> str:
     return digest.hexdigest()
 
 
-def fingerprint(papers: bool) -> str:
-    """What a result depends on beside its case: the planner, the packaged and the service's profiles, papers or not."""
+def fingerprint(papers: bool, through: Through = "kit") -> str:
+    """What a result depends on beside its case: the planner, all profiles, papers or not, and how far it is planned."""
     digest = hashlib.sha256(planner_fingerprint().encode())
     own = service_folder()
     for path in sorted(own.rglob("*")) if own.is_dir() else []:
         if path.is_file():
             digest.update(path.relative_to(own).as_posix().encode() + b"\0" + path.read_bytes() + b"\0")
-    return f"{digest.hexdigest()} papers={papers}"
+    return f"{digest.hexdigest()} papers={papers} through={through}"
 
 
 def _add(digest: hashlib._Hash, folder: Traversable, name: str) -> None:

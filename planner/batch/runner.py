@@ -19,6 +19,7 @@ from concurrent.futures import FIRST_COMPLETED, CancelledError, Executor, Future
 from concurrent.futures.process import BrokenProcessPool
 from contextlib import contextmanager
 from dataclasses import replace
+from functools import partial
 from multiprocessing import get_context
 from pathlib import Path
 
@@ -33,6 +34,7 @@ PART_SUFFIX, FAILED_SUFFIX = ".part", ".failed"
 MOST_WORKERS = 64
 WAITING_PER_WORKER = 3  # lines handed out ahead, so that memory stays the same for any length of file
 TOO_LONG = "The line is longer than the 5 MB a case may have."
+Work = Callable[[int, str, bytes], Worked]
 KILLED = "The process planning this case ended twice; the case may need more memory than there is."
 
 
@@ -41,26 +43,31 @@ def run_batch(
     out_dir: Path,
     *,
     papers: bool = False,
+    forecast_only: bool = False,
     workers: int = 1,
     progress: Reporter | None = None,
     executor: Executor | None = None,
 ) -> int:
     """Plan every case of cases_path (JSON lines) into out_dir; 0 when all are done, 1 when some failed.
 
-    Cases done before with the same planner, profiles and papers are kept. progress: who is told, standard error where
-    None. executor: another engine than this machine's processes. Raises InputError for an empty or unreadable file,
-    StoreError for a folder that cannot be written.
+    Cases done before with the same planner, profiles and choices are kept. forecast_only: the same forecast, without
+    flows, decisions and kit. progress: who is told, standard error where None. executor: another engine than this
+    machine's processes. Raises InputError for an empty or unreadable file, or papers without the whole plan; StoreError
+    for a folder that cannot be written.
     """
+    if papers and forecast_only:
+        raise InputError("papers", "The papers need the whole plan; leave out either the papers or the forecast only.")
     if not 1 <= workers <= MOST_WORKERS:
         raise InputError("workers", f"{workers} workers were asked for; 1 to {MOST_WORKERS} are allowed.")
     told = progress or StreamReporter()
-    mark = fingerprint(papers)
+    work = partial(work_on, papers=papers, through="forecast" if forecast_only else "kit")
+    mark = fingerprint(papers, work.keywords["through"])
     cases = _prepared(out_dir)
     total, kept = _counted(cases_path, cases, mark)
     state = Progress(kept, 0, 0, total, 0.0)
     told.progress(state)
     started = time.monotonic()
-    for worked in _worked_lines(_open_lines(cases_path, cases, mark), papers, workers, executor, told):
+    for worked in _worked_lines(_open_lines(cases_path, cases, mark), work, workers, executor, told):
         _keep(cases, worked)
         if worked.failure is None:
             state = replace(state, planned=state.planned + 1)
@@ -110,38 +117,38 @@ def _open_lines(cases_path: Path, cases: Path, mark: str) -> Iterator[tuple[Line
 
 
 def _worked_lines(
-    lines: Iterator[tuple[Line, str]], papers: bool, workers: int, executor: Executor | None, told: Reporter
+    lines: Iterator[tuple[Line, str]], work: Work, workers: int, executor: Executor | None, told: Reporter
 ) -> Iterator[Worked]:
     """Every line's result in the order they are ready."""
     if executor is not None:
-        yield from _through(executor, lines, papers, workers)
+        yield from _through(executor, lines, work, workers)
     elif workers == 1:
         for line, name in lines:
-            yield _too_long(line, name) or work_on(line.number, name, line.text or b"", papers)
+            yield _too_long(line, name) or work(line.number, name, line.text or b"")
     else:
-        yield from _in_processes(lines, papers, workers, told)
+        yield from _in_processes(lines, work, workers, told)
 
 
-def _in_processes(lines: Iterator[tuple[Line, str]], papers: bool, workers: int, told: Reporter) -> Iterator[Worked]:
+def _in_processes(lines: Iterator[tuple[Line, str]], work: Work, workers: int, told: Reporter) -> Iterator[Worked]:
     """In processes of this machine. When one is killed, the lines then in work are done again, each on its own."""
     with _one_thread_each():
         lost: list[tuple[Line, str]] = []
         ended = False
         while not ended:
             with _pool(workers) as pool:
-                yield from _through(pool, lines, papers, workers, lost.append)
+                yield from _through(pool, lines, work, workers, lost.append)
             ended = not lost
             if lost:
                 told.sentence("A worker process ended unexpectedly; the cases it had are planned again.")
             for line, name in lost:
-                yield _alone(line, name, papers)
+                yield _alone(line, name, work)
             lost.clear()
 
 
-def _alone(line: Line, name: str, papers: bool) -> Worked:
+def _alone(line: Line, name: str, work: Work) -> Worked:
     with _pool(1) as pool:
         try:
-            return pool.submit(work_on, line.number, name, line.text or b"", papers).result()
+            return pool.submit(work, line.number, name, line.text or b"").result()
         except BrokenProcessPool:
             return Worked(line.number, name, {}, KILLED)
 
@@ -149,7 +156,7 @@ def _alone(line: Line, name: str, papers: bool) -> Worked:
 def _through(
     executor: Executor,
     lines: Iterator[tuple[Line, str]],
-    papers: bool,
+    work: Work,
     workers: int,
     on_lost: Callable[[tuple[Line, str]], None] | None = None,
 ) -> Iterator[Worked]:
@@ -167,7 +174,7 @@ def _through(
                 yield too_long
                 continue
             try:
-                running[executor.submit(work_on, line.number, name, line.text or b"", papers)] = taken
+                running[executor.submit(work, line.number, name, line.text or b"")] = taken
             except BrokenProcessPool:
                 if on_lost is None:
                     raise

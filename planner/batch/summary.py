@@ -58,9 +58,10 @@ def summary_row(case: Case, plan: Plan) -> dict[str, str]:
     at_rest, kit = _at_rest(worst), plan.kit
     pao2, spo2 = (at_rest.pao2_mmhg, at_rest.spo2) if at_rest else (None, None)
     titrations = [one for part in plan.parts for one in part.titrations]
+    whole = plan.through == "kit"  # else what comes after the forecast is not worked out, and empty
     return {
         "reference": case.patient.reference,
-        "state": plan.state,
+        "state": plan.state if whole else "",
         "highest_altitude_m": _number(max((one.highest_m for one in spans if one.highest_m is not None), default=None)),
         "lowest_inspired_po2_mmhg": _number(worst.span.lowest_inspired_po2_mmhg if worst else None),
         "worst_part": (worst.span.name or worst.span.part_id) if worst else "",
@@ -77,8 +78,8 @@ def summary_row(case: Case, plan: Plan) -> dict[str, str]:
         "proposals": " | ".join(
             f"{one.part_id} {one.activity}: {one.model_amount_text}" for one in titrations if one.model_amount
         ),
-        "targets_not_reached": str(sum(not one.reaches_target for one in titrations)),
-        "decisions": str(sum(len(part.decided) for part in plan.parts)),
+        "targets_not_reached": str(sum(not one.reaches_target for one in titrations)) if whole else "",
+        "decisions": str(sum(len(part.decided) for part in plan.parts)) if whole else "",
         "pathway_advice": " | ".join(one.advice.text for one in plan.pathways if one.advice is not None),
         "kit_items": " | ".join(f"{item.count} x {item.what}" for item in kit.items) if kit else "",
         "kit_peak_kg": _number(kit.peak_kg if kit and kit.items else None),

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 from planner.batch.summary import summary_row
 from planner.errors import PlannerError
+from planner.results import Through
 
 PLAN_FILE, ROW_FILE = "plan.json", "row.json"
 
@@ -21,17 +22,20 @@ class Worked:
     failure: str | None
 
 
-def work_on(number: int, name: str, text: bytes, papers: bool) -> Worked:
-    """Plan the case of one line. Never raises: a bad case or a fault in planning it is a sentence in the result."""
+def work_on(number: int, name: str, text: bytes, papers: bool, through: Through = "kit") -> Worked:
+    """Plan the case of one line. Never raises: a bad case or a fault in planning it is a sentence in the result.
+
+    through: "forecast" leaves out all that comes after the forecast.
+    """
     from planner import plan
     from planner.plan_file import plan_as_json
     from planner.records.reading import read_case
 
     try:
         case = read_case(text)
-        result = plan(case)
+        result = plan(case, through=through)
         row = json.dumps(summary_row(case, result), ensure_ascii=False)
-        files = {PLAN_FILE: plan_as_json(result).encode(), ROW_FILE: row.encode()}
+        files = {PLAN_FILE: plan_as_json(result, compact=True).encode(), ROW_FILE: row.encode()}
         if papers:
             from planner.papers import make_papers
 

@@ -25,6 +25,7 @@ class PartOutcome(Section):
     lowest_spo2_percent: float | None = Field(None, ge=30.0, le=100.0)
     usual_spo2_percent: float | None = Field(None, ge=30.0, le=100.0)
     on_oxygen: bool | None = None
+    oxygen_used_l: float | None = Field(None, ge=0.0, le=100000.0, description="Litres of gas from cylinders or liquid")
     late_min: float | None = Field(None, ge=-600.0, le=10000.0)
     gauge_at_end_bar: float | None = Field(None, ge=0.0, le=350.0)
     ran_out: bool | None = None

@@ -94,7 +94,9 @@ def forecast(
     """The forecast of every part whose air is known, at its worst moment."""
     known = [span for span in spans if span.lowest_barometric_mmhg is not None]
     blood = {} if fitted is None else _blood_of(known, fitted)
-    return tuple(_part(span, baseline, fitted, blood, policy) for span in known)
+    by_pressure = {span.lowest_barometric_mmhg: span for span in known}
+    published = {pressure: _published(span, baseline) for pressure, span in by_pressure.items()}
+    return tuple(_part(span, baseline, fitted, blood, published[span.lowest_barometric_mmhg], policy) for span in known)
 
 
 @dataclass(frozen=True, eq=False)
@@ -117,20 +119,15 @@ def _blood_of(spans: Sequence[PartSpan], fitted: FittedLung) -> dict[tuple[str, 
     """Arterial blood of every part and activity, one call of the lung for each activity."""
     found: dict[tuple[str, Activity], _Blood] = {}
     for activity in ("rest", "walking", "asleep"):
-        here = [span for span in spans if activity in _activities(span)]
+        here = {span.part_id: _air(span) for span in spans if activity in _activities(span)}
         if not here:
             continue
-        blood = fitted.arterial(
-            np.array([span.lowest_inspired_po2_mmhg for span in here], dtype=np.float64),
-            np.array([span.lowest_barometric_mmhg for span in here], dtype=np.float64),
-            activity=activity,
-            hours_at_altitude=np.array(
-                [span.hours_at_altitude if span.altitude_kind == "ground" else 0.0 for span in here]
-            ),
-        )
+        distinct = list(dict.fromkeys(here.values()))  # the way back is often as the way out
+        inspired, barometric, hours = np.array(distinct, dtype=np.float64).T
+        blood = fitted.arterial(inspired, barometric, activity=activity, hours_at_altitude=hours)
         po2, spo2, paco2 = (_middles(one) for one in (blood.po2_mmhg, blood.saturation, blood.paco2_mmhg))
-        for column, span in enumerate(here):
-            found[span.part_id, activity] = _Blood(
+        of_air = {
+            air: _Blood(
                 blood.po2_mmhg[:, column],
                 blood.saturation[:, column],
                 po2[column],
@@ -138,7 +135,18 @@ def _blood_of(spans: Sequence[PartSpan], fitted: FittedLung) -> dict[tuple[str, 
                 paco2[column],
                 bool(blood.below_range[column]),
             )
+            for column, air in enumerate(distinct)
+        }
+        found |= {(part_id, activity): of_air[air] for part_id, air in here.items()}
     return found
+
+
+def _air(span: PartSpan) -> tuple[float, float, float]:
+    """Inspired PO2, barometric pressure (mmHg) and hours of getting used to it, at the worst moment of a part."""
+    assert span.lowest_inspired_po2_mmhg is not None
+    assert span.lowest_barometric_mmhg is not None
+    hours = span.hours_at_altitude if span.altitude_kind == "ground" else 0.0
+    return span.lowest_inspired_po2_mmhg, span.lowest_barometric_mmhg, hours
 
 
 def _part(
@@ -146,10 +154,12 @@ def _part(
     baseline: Baseline,
     fitted: FittedLung | None,
     blood: Mapping[tuple[str, Activity], _Blood],
+    published: Sequence[PredictorResult],
     policy: Policy,
 ) -> PartForecast:
     activities = tuple(
-        _activity(span, name, baseline, fitted, blood.get((span.part_id, name)), policy) for name in _activities(span)
+        _activity(span, name, baseline, fitted, blood.get((span.part_id, name)), published, policy)
+        for name in _activities(span)
     )
     why = _why_test(activities, baseline, policy)
     return PartForecast(span.part_id, activities, bool(why), why)
@@ -161,6 +171,7 @@ def _activity(
     baseline: Baseline,
     fitted: FittedLung | None,
     blood: _Blood | None,
+    published: Sequence[PredictorResult],
     policy: Policy,
 ) -> ActivityForecast:
     predictors: list[PredictorResult] = []
@@ -169,8 +180,7 @@ def _activity(
     if activity == "rest":
         measured = challenge_predictor(baseline, span)
         predictors += [] if measured is None else [measured]
-        predictors += [_regression(one, span, baseline) for one in all_regressions()]
-        predictors.append(_ratio(span, baseline))
+        predictors += published
     applying = [one for one in predictors if one.applies]
     thresholds = (policy.lower_threshold_mmhg, policy.upper_threshold_mmhg)
     draws = None if blood is None else blood.po2_mmhg
@@ -227,9 +237,13 @@ def _reading_words(pao2: float | None, spo2: float | None, barometric: float, fi
     return "SpO₂", f"{100 * (spo2 or 0.0):.0f} % at {barometric:.0f} mmHg, oxygen fraction {fio2:.3f}"
 
 
-def _regression(regression: Regression, span: PartSpan, baseline: Baseline) -> PredictorResult:
-    assert span.lowest_barometric_mmhg is not None
+def _published(span: PartSpan, baseline: Baseline) -> tuple[PredictorResult, ...]:
+    """The regressions and the constant ratio, which ask of a part only its pressure."""
     altitude = _pressure_altitude_m(span)
+    return *(_regression(one, altitude, baseline) for one in all_regressions()), _ratio(span, baseline)
+
+
+def _regression(regression: Regression, altitude: float, baseline: Baseline) -> PredictorResult:
     given = {
         "pao2_mmhg": baseline.pao2_mmhg,
         "fev1_l": baseline.fev1_l,

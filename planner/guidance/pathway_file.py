@@ -84,11 +84,22 @@ def load_pathways() -> dict[str, Pathway]:
     pathways: dict[str, Pathway] = {}
     for name in profile_names(FOLDER):
         own = read_own_profile(name)
-        pathway = read_pathway(name, own if own is not None else read_profile(name))
+        pathway = _checked(name, own if own is not None else read_profile(name))
         if pathway.id in pathways:
             raise ProfileError(name, "id", f"the pathway {pathway.id!r} stands in another file too")
         pathways[pathway.id] = pathway
     return pathways
+
+
+_kept: dict[str, tuple[Mapping[str, Any], Pathway]] = {}
+
+
+def _checked(name: str, table: Mapping[str, Any]) -> Pathway:
+    """read_pathway, once for a table: the catalogue gives the same table again while the file's text is the same."""
+    kept = _kept.get(name)
+    if kept is None or kept[0] is not table:
+        kept = _kept[name] = (table, read_pathway(name, table))
+    return kept[1]
 
 
 def read_pathway(name: str, table: Mapping[str, Any]) -> Pathway:

@@ -35,6 +35,8 @@ WALKING_STRAIN = 2.0  # of the share that diffusion takes: 19 % of the gradient 
 CURVE_POINTS = 16
 CURVE_START_MMHG = 40.0
 
+Span = tuple[float, float]
+
 
 @dataclass(frozen=True, eq=False)
 class Arterial:
@@ -158,26 +160,40 @@ class FittedLung:
     def _solved_lungs(self, walking: bool, depressed: bool) -> SolvedLungs:
         """Solved lungs that span the draws: one set for rest and sleep, another for walking."""
         if (walking, depressed) not in self._solved:
-            body, worse, rise = self.body, ventilation.SLEEP_LOG_SD_FACTOR, float(self.sleep_rise_mmhg.max())
-            if walking:
-                worse, rise = 1.0, 0.0
-                body = replace(
-                    body,
-                    oxygen_uptake_l_min=body.oxygen_uptake_l_min * ventilation.WALKING_UPTAKE_FACTOR,
-                    cardiac_output_l_min=body.cardiac_output_l_min * ventilation.WALKING_OUTPUT_FACTOR,
-                )
+            body, log_sd, shunt, pco2 = self._spans(walking, depressed)
             # Spans are rounded outwards, so that the solved tables stay the same while a digit is typed.
-            lowest = max(LOWEST_PCO2_SHARE * float(self.paco2_mmhg.min()), LOWEST_PCO2_MMHG)
-            highest = float(self.paco2_mmhg.max()) + PCO2_MARGIN_MMHG + rise
-            if depressed:
-                highest /= 1.0 - MOST_DEPRESSION
             self._solved[walking, depressed] = SolvedLungs(
                 body,
-                _outwards(float(self.log_sd.min()), worse * float(self.log_sd.max()), LOG_SD_SNAP, HIGHEST_LOG_SD),
-                (0.0, _outwards(0.0, float(self.shunt.max()), SHUNT_SNAP)[1]),
-                _outwards(lowest, highest, PCO2_SNAP_MMHG, HIGHEST_PCO2_MMHG),
+                _outwards(*log_sd, LOG_SD_SNAP, HIGHEST_LOG_SD),
+                _outwards(*shunt, SHUNT_SNAP),
+                _outwards(*pco2, PCO2_SNAP_MMHG, HIGHEST_PCO2_MMHG),
             )
         return self._solved[walking, depressed]
+
+    def _spans(self, walking: bool, depressed: bool) -> tuple[Body, Span, Span, Span]:
+        """The body, and between what its draws lie: log SD, shunt, and the arterial PCO2 that may be asked for."""
+        body, worse, rise = self.body, ventilation.SLEEP_LOG_SD_FACTOR, float(self.sleep_rise_mmhg.max())
+        if walking:
+            worse, rise = 1.0, 0.0
+            body = replace(
+                body,
+                oxygen_uptake_l_min=body.oxygen_uptake_l_min * ventilation.WALKING_UPTAKE_FACTOR,
+                cardiac_output_l_min=body.cardiac_output_l_min * ventilation.WALKING_OUTPUT_FACTOR,
+            )
+        lowest = max(LOWEST_PCO2_SHARE * float(self.paco2_mmhg.min()), LOWEST_PCO2_MMHG)
+        highest = float(self.paco2_mmhg.max()) + PCO2_MARGIN_MMHG + rise
+        if depressed:
+            highest /= 1.0 - MOST_DEPRESSION
+        log_sd = (float(self.log_sd.min()), min(worse * float(self.log_sd.max()), HIGHEST_LOG_SD))
+        return body, log_sd, (0.0, float(self.shunt.max())), (lowest, min(highest, HIGHEST_PCO2_MMHG))
+
+    def with_tables_of(self, other: FittedLung) -> FittedLung:
+        """The same lung, reading from the solved lungs of another at rest where they span its draws.
+
+        What is read differs from its own tables by less than the error that both have (planner.lung.response).
+        """
+        solved = other._solved_lungs(False, False)
+        return replace(self, _solved={(False, False): solved} if solved.covers(*self._spans(False, False)) else {})
 
     def _pco2_mmhg(self, inspired: Array, hours: Array, rows: slice) -> Array:
         """Arterial PCO2 awake, (draws, points): acute response, its spread, and what days have added."""

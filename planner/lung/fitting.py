@@ -204,18 +204,26 @@ def fit_log_sd(
 
 
 def narrowing(
-    readings: Sequence[LungReading], person: Person, condition: Condition, *, seed: int = 20260101
+    readings: Sequence[LungReading],
+    person: Person,
+    condition: Condition,
+    *,
+    fitted: FittedLung | None = None,
+    seed: int = 20260101,
 ) -> tuple[Narrowing, ...]:
     """Which missing entry would narrow the forecast most: first the one that would most; only those that would.
 
-    For each, the lung is fitted again with that entry added at the value now expected. Raises what fit_lung raises.
+    For each, the lung is fitted again with that entry added at the value now expected. fitted: this person's lung where
+    there is one already; the lungs solved for it are read again. Raises what fit_lung raises.
     """
     ordered = usable(readings)
     now = fit_lung(ordered, person, draws=NARROWING_DRAWS, seed=seed)
+    now = now if fitted is None else now.with_tables_of(fitted)
     spread_now = _spread_mmhg(now, condition)
     found = []
     for name, more_readings, more_person in _with_one_more(ordered, person, condition, now):
-        then = _spread_mmhg(fit_lung(more_readings, more_person, draws=NARROWING_DRAWS, seed=seed), condition)
+        more = fit_lung(more_readings, more_person, draws=NARROWING_DRAWS, seed=seed)
+        then = _spread_mmhg(more.with_tables_of(now), condition)
         if then < spread_now - LEAST_NARROWING_MMHG:
             found.append(Narrowing(name, spread_now, then))
     return tuple(sorted(found, key=lambda one: one.spread_then_mmhg))

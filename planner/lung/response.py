@@ -9,10 +9,12 @@ solution: at most 0.35 mmHg on air between 30 and 100 mmHg of arterial PO2, and 
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from copy import copy
+from dataclasses import dataclass, replace
 from functools import cached_property, lru_cache
 
 import numpy as np
+from numpy.typing import NDArray
 
 from planner.air.ranges import Array
 from planner.lung import blood
@@ -94,6 +96,22 @@ class SolvedLungs:
         self.pco2_half_mmhg = 0.5 * (pco2_span_mmhg[1] - pco2_span_mmhg[0])
         self.curve = ContentCurve(body.haemoglobin_g_dl)
 
+    def covers(
+        self,
+        body: Body,
+        log_sd_span: tuple[float, float],
+        shunt_span: tuple[float, float],
+        pco2_span_mmhg: tuple[float, float],
+    ) -> bool:
+        """Whether draws of this body within these spans can be read from these lungs."""
+        return (
+            body == self.body
+            and bool(self.log_sd_nodes[0] <= log_sd_span[0] and log_sd_span[1] <= self.log_sd_nodes[-1])
+            and bool(self.shunt_nodes[0] <= shunt_span[0] and shunt_span[1] <= self.shunt_nodes[-1])
+            and self.pco2_middle_mmhg - self.pco2_half_mmhg <= pco2_span_mmhg[0]
+            and pco2_span_mmhg[1] <= self.pco2_middle_mmhg + self.pco2_half_mmhg
+        )
+
     @cached_property
     def air(self) -> Solved:
         """Breathing air, at any pressure."""
@@ -136,6 +154,16 @@ class Response:
         self.draws = log_sd.size
         by_log_sd, by_shunt = lagrange(log_sd, solved.log_sd_nodes), lagrange(shunt, solved.shunt_nodes)
         self._weights = (by_log_sd[:, :, None] * by_shunt[:, None, :]).reshape(self.draws, -1)
+
+    def of_draws(self, taken: NDArray[np.int64]) -> Response:
+        """The response of some of the draws, with what is tabled of them already."""
+        fewer = copy(self)
+        fewer.draws, fewer._weights = taken.size, self._weights[taken]
+        for name in ("_air", "_rich"):
+            if name in vars(self):
+                branch: Branch = getattr(self, name)
+                vars(fewer)[name] = replace(branch, po2=branch.po2[taken])
+        return fewer
 
     def arterial_po2_mmhg(self, inspired_mmhg: Array, dry_mmhg: Array, pco2_mmhg: Array, first_draw: int = 0) -> Array:
         """Arterial PO2 of the draws from first_draw on, as many as pco2_mmhg (draws, points) has rows.

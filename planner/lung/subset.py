@@ -22,7 +22,11 @@ def thinned(lung: FittedLung, draws: int) -> FittedLung:
         if isinstance(value := getattr(lung, field.name), np.ndarray) and value.shape == (have,)
     }
     # What is solved already spans these draws too; what they have solved later would not span all, so it is not shared.
-    return replace(lung, **arrays, _solved=dict(lung._solved), _responses={})
+    responses = {key: response.of_draws(taken) for key, response in lung._responses.items()}
+    fewer = replace(lung, **arrays, _solved=dict(lung._solved), _responses=responses)
+    if "_acute_curve" in vars(lung):
+        vars(fewer)["_acute_curve"] = lung._acute_curve[taken]
+    return fewer
 
 
 def log_sd_spread(lung: FittedLung) -> tuple[float, float, float]:

@@ -47,6 +47,7 @@ def test_the_services_own_profiles_and_the_papers_change_what_a_result_depends_o
     monkeypatch.setenv("PLANNER_PROFILES_DIR", str(tmp_path))
     plain = fingerprint(papers=False)
     assert fingerprint(papers=True) != plain
+    assert fingerprint(papers=False, through="forecast") != plain
     assert fingerprint(papers=False) == plain
     (tmp_path / "delivery.toml").write_text("format = 'x'\n")
     assert fingerprint(papers=False) != plain

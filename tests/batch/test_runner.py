@@ -4,17 +4,20 @@ import csv
 import json
 import multiprocessing
 import os
+import pickle
 import signal
 import subprocess
 import sys
 import time
 import tracemalloc
+from functools import partial
 from pathlib import Path
 
 import pytest
 
 from planner.batch.lines import fingerprint, read_lines
 from planner.batch.runner import run_batch
+from planner.batch.worker import work_on
 from planner.catalogue import profile_text
 from planner.errors import InputError, StoreError
 
@@ -116,6 +119,52 @@ def test_with_papers_each_case_gets_its_pages_and_a_run_without_them_does_not_co
     assert told.states[0].kept == 0
     pages = {path.name: path.read_bytes()[:5] for path in out.glob("cases/*/*.pdf")}
     assert pages == dict.fromkeys(("record.pdf", "carrier.pdf", "supplier.pdf", "traveller.pdf"), b"%PDF-")
+
+
+FORECAST_COLUMNS = {
+    "highest_altitude_m", "lowest_inspired_po2_mmhg", "worst_part", "rest_pao2_median_mmhg", "rest_pao2_low_mmhg",
+    "rest_pao2_high_mmhg", "rest_spo2_median_percent", "rest_spo2_low_percent", "rest_spo2_high_percent",
+    "predictors_agree", "test_advised", "carbon_dioxide_risk", "stop_findings", "pathway_advice",
+}  # fmt: skip
+
+
+def test_the_forecast_alone_is_the_whole_plans_and_what_comes_after_it_is_empty(finished, tmp_path):
+    cases, out, _, _ = finished
+    assert run_batch(cases, tmp_path / "out", forecast_only=True, progress=Told()) == 0
+    whole, alone = table(out), table(tmp_path / "out")
+    assert [{key: row[key] for key in FORECAST_COLUMNS} for row in alone] == [
+        {key: row[key] for key in FORECAST_COLUMNS} for row in whole
+    ]
+    assert all(float(row["rest_pao2_median_mmhg"]) > 25 for row in alone)
+    later = set(whole[0]) - FORECAST_COLUMNS - {"line", "status", "reference", "message"}
+    assert {row[key] for row in alone for key in later} == {""}
+    plans = [json.loads(path.read_text(encoding="utf-8")) for path in tmp_path.glob("out/cases/*/plan.json")]
+    assert [(one["through"], one["kit"]) for one in plans] == [("forecast", None)] * 3
+
+
+def test_the_forecast_alone_does_not_count_as_the_plan(finished, tmp_path):
+    cases, _, _, _ = finished
+    assert run_batch(cases, tmp_path / "out", forecast_only=True, progress=Told()) == 0
+    told = Told()
+    assert run_batch(cases, tmp_path / "out", progress=told) == 0
+    assert told.states[0].kept == 0
+    assert [(row["state"], row["decisions"]) for row in table(tmp_path / "out")] == [
+        ("Draft", str(len(DEMO["decisions"])))
+    ] * 3
+
+
+def test_papers_of_the_forecast_alone_are_refused(tmp_path):
+    cases = write_cases(tmp_path / "cases.jsonl", ["a"])
+    with pytest.raises(InputError, match="need the whole plan"):
+        run_batch(cases, tmp_path / "out", papers=True, forecast_only=True, progress=Told())
+
+
+def test_the_work_on_a_line_is_pure_and_can_be_sent_to_another_process():
+    work = partial(work_on, 1, "000001-a", case_text("a").encode(), papers=False)
+    first = work()
+    assert first.failure is None
+    assert pickle.loads(pickle.dumps(work))() == first
+    assert pickle.loads(pickle.dumps(first)) == first
 
 
 def test_a_second_run_keeps_what_is_done(finished):

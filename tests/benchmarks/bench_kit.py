@@ -7,22 +7,25 @@ of 10 parts against the goal of 0.3 s, and against the same trips played one aft
 
 from __future__ import annotations
 
-import statistics
 import sys
 import time
+from collections.abc import Iterator
 from dataclasses import fields, replace
 from pathlib import Path
 
 import numpy as np
 
 sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
+sys.path.insert(0, str(Path(__file__).resolve().parent))
+
+from measure import Row, against, print_table, spread
 
 from planner.kit.endurance import Assumptions, Carried, Draws, draw_trips, play, run_out
 from planner.kit.legs import Choice, Leg, Power
 from planner.kit.selection import select
 
 PARTS, TRIPS, DRAWS, ONE_BY_ONE = 10, 40, 100_000, 500
-GOAL_SELECT_S, GOAL_PLAY_S = 2.0, 0.3
+GOAL_SELECT, GOAL_PLAY = "2 s", "0.3 s"
 POWER = Power("c", "Portable", 2.2, 78.0, 85.0, 85.0, 0.6, 1, 90.0, 12)
 CHOICES = tuple(
     Choice(f"size {number}", f"size {number}", litres, litres, kg, None, kg <= 5.0)
@@ -76,36 +79,38 @@ def one_draw(drawn: Draws, number: int) -> Draws:
     return replace(drawn, **{one.name: getattr(drawn, one.name)[number : number + 1] for one in fields(drawn)})
 
 
-def main() -> None:
-    """Print the times and their ratio to the goals and to the plain way."""
-    times, gaps = [], []
+def rows() -> Iterator[Row]:
+    """The selection, then the trips played."""
+    times = []
     for seed in range(TRIPS):
         legs = random_trip(np.random.default_rng(seed))
         start = time.perf_counter()
-        found = select(legs, CHOICES, POWER, reserve_fraction=0.25)
-        times.append(time.perf_counter() - start)
-        gaps.append(found.gap)
-    median, worst = statistics.median(times), max(times)
-    print(f"select, {PARTS} parts x {len(CHOICES)} sizes, {TRIPS} trips: median {median:.3f} s, slowest {worst:.3f} s")
-    print(f"  ratio of the median to the goal of {GOAL_SELECT_S:g} s: {median / GOAL_SELECT_S:.3f}")
-    print(f"  largest gap left: {100 * max(gaps):.2f} %")
+        select(legs, CHOICES, POWER, reserve_fraction=0.25)
+        times.append(1000.0 * (time.perf_counter() - start))
+    yield Row(
+        f"Kit chosen, {PARTS} parts and {len(CHOICES)} sizes, {TRIPS} random trips", spread(times), goal=GOAL_SELECT
+    )
 
     legs, carried = covered_trip()
     assumed = Assumptions()
     rng = np.random.default_rng(2)
     waits, longer = rng.exponential(20.0, (DRAWS, PARTS)), rng.exponential(10.0, (DRAWS, PARTS))
-    start = time.perf_counter()
     drawn = draw_trips(legs, waits, longer, rng, assumed)
-    chance = run_out(play(legs, carried, POWER, drawn, assumed))
-    together = time.perf_counter() - start
-    start = time.perf_counter()
     alone = [float(play(legs, carried, POWER, one_draw(drawn, n), assumed).short_h.sum()) for n in range(ONE_BY_ONE)]
-    each = (time.perf_counter() - start) / ONE_BY_ONE
-    same = np.allclose(alone, play(legs, carried, POWER, drawn, assumed).short_h[:ONE_BY_ONE].sum(axis=1))
-    print(f"endurance, {DRAWS:,} trips x {PARTS} parts: {together:.3f} s, chance {chance.chance:.4f}")
-    print(f"  ratio to the goal of {GOAL_PLAY_S:g} s: {together / GOAL_PLAY_S:.3f}")
-    print(f"  one by one it would take {each * DRAWS:.1f} s, {each * DRAWS / together:.0f} times as long; same: {same}")
+    if not np.allclose(alone, play(legs, carried, POWER, drawn, assumed).short_h[:ONE_BY_ONE].sum(axis=1)):
+        raise SystemExit("trips played together end otherwise than one by one")
+    yield against(
+        f"{DRAWS:,} trips of {PARTS} parts played with delays",
+        lambda: run_out(
+            play(legs, carried, POWER, draw_trips(legs, waits, longer, np.random.default_rng(2), assumed), assumed)
+        ),
+        lambda: [play(legs, carried, POWER, one_draw(drawn, n), assumed) for n in range(ONE_BY_ONE)],
+        "one trip after the other",
+        repeats=5,
+        share=ONE_BY_ONE / DRAWS,
+        goal=GOAL_PLAY,
+    )
 
 
 if __name__ == "__main__":
-    main()
+    print_table(rows())

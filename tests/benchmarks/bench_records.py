@@ -12,6 +12,9 @@ import time
 from pathlib import Path
 
 sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
+sys.path.insert(0, str(Path(__file__).resolve().parent))
+
+from measure import Row, print_table, spread, times_as_fast
 
 from planner.case import Case
 from planner.catalogue import profile_text
@@ -28,7 +31,8 @@ def milliseconds(call):
     return 1000 * (time.perf_counter() - start)
 
 
-def main():
+def rows():
+    """The save, then the list."""
     case = Case.model_validate_json(profile_text("demo/copd_layover.json"))
     content = write_case(case).encode()
     with tempfile.TemporaryDirectory() as folder:
@@ -41,9 +45,21 @@ def main():
             listed = milliseconds(store.entries)
         bare = [milliseconds(lambda i=i: _written(Path(folder) / f"{i}.json", content)) for i in range(SAVES)]
         read = milliseconds(lambda: [Case.model_validate_json(content) for _ in range(CASES)])
-    save, file = statistics.median(saved), statistics.median(bare)
-    print(f"save a version: median {save:.2f} ms; bare file with fsync {file:.2f} ms; ratio {save / file:.1f}")
-    print(f"list {CASES + 1} cases: {listed:.0f} ms; validating {CASES} cases {read:.0f} ms; ratio {listed / read:.2f}")
+    ratio = statistics.median(saved) / statistics.median(bare)
+    yield Row(
+        "A version saved durably", spread(_most(saved)), f"the same bytes in a file with fsync, {spread(_most(bare))}",
+        f"{ratio:.1f} times as long", "5 ms",
+    )  # fmt: skip
+    yield Row(
+        f"List of {CASES:,} cases", f"{listed:.0f} ms", f"validating as many cases, {read:.0f} ms",
+        times_as_fast([read / listed]).split(" (")[0], "100 ms",
+    )  # fmt: skip
+
+
+def _most(times):
+    """All but the quickest and slowest 5 %."""
+    cut = len(times) // 20
+    return sorted(times)[cut : len(times) - cut]
 
 
 def _written(path, content):
@@ -54,4 +70,4 @@ def _written(path, content):
 
 
 if __name__ == "__main__":
-    main()
+    print_table(rows())

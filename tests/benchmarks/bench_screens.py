@@ -13,7 +13,12 @@ import subprocess
 import sys
 import tempfile
 import time
+from collections.abc import Iterator
 from pathlib import Path
+
+sys.path.insert(0, str(Path(__file__).resolve().parent))
+
+from measure import Row, print_table
 
 ROOT = Path(__file__).parents[2]
 FRAME_MS = 1000 / 60
@@ -122,20 +127,27 @@ def on_screen() -> dict[str, tuple[float, float]]:
     }
 
 
-def main() -> None:
-    """Print the table."""
+def rows() -> Iterator[Row]:
+    """Cold start and memory against bare Kivy, then the frames of typing and dragging."""
     starts = cold_start()
     bare_s, bare_mib = starts["bare"]
-    print("what | here | bare Kivy | ratio | goal")
     for name, goal in (("first frame", 1.35), ("usable", 2.4)):
         seconds = starts[name][0]
-        print(f"{name} | {seconds:.2f} s | {bare_s:.2f} s | {seconds / bare_s:.2f} | {goal}")
+        yield Row(
+            f"Cold start: {name}", f"{seconds:.2f} s", f"a bare Kivy program, {bare_s:.2f} s",
+            f"{seconds / bare_s:.2f} times as long", f"{goal:g}",
+        )  # fmt: skip
     mib = starts["usable"][1]
-    print(f"peak memory | {mib:.0f} MiB | {bare_mib:.0f} MiB | {mib / bare_mib:.2f} | 1.35")
-    print("what | median | 95th percentile | goal")
+    yield Row(
+        "Peak memory", f"{mib:.0f} MiB", f"a bare Kivy program, {bare_mib:.0f} MiB",
+        f"{mib / bare_mib:.2f} times as much", "1.35",
+    )  # fmt: skip
     for name, (median, tail) in on_screen().items():
-        print(f"{name} | {median:.1f} ms | {tail:.1f} ms | {FRAME_MS:.1f} and {2 * FRAME_MS:.1f} ms")
+        yield Row(
+            f"{name.capitalize()} to the drawn frame", f"{median:.1f} ms, 95th percentile {tail:.1f} ms",
+            goal=f"{FRAME_MS:.1f} and {2 * FRAME_MS:.1f} ms",
+        )  # fmt: skip
 
 
 if __name__ == "__main__":
-    main()
+    print_table(rows())

@@ -6,10 +6,13 @@ Baselines of the same run: a scan of every airport's name with str.find; one atm
 
 import statistics
 import sys
-import time
+from collections.abc import Iterator
 from pathlib import Path
 
 sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
+sys.path.insert(0, str(Path(__file__).resolve().parent))
+
+from measure import Row, against, milliseconds, print_table, spread
 
 from planner.air.atmosphere import isa_pressure_mmhg
 from planner.case import Case
@@ -21,34 +24,33 @@ TYPED = ("m", "mu", "mun", "muni", "san", "los a", "zur", "k", "int", "xyz")
 REPEATS = 20
 
 
-def median_ms(call):
-    """Median milliseconds of one call."""
-    call()
-    taken = []
-    for _ in range(REPEATS):
-        start = time.perf_counter()
-        call()
-        taken.append(1000 * (time.perf_counter() - start))
-    return statistics.median(taken)
-
-
-def main():
-    rows = read_profile("airports.json")["rows"]
-    names = [str(row[1]).lower() for row in rows]
-    searched = [median_ms(lambda text=text: search(text)) for text in TYPED]
-    scanned = [median_ms(lambda text=text: [name for name in names if name.find(text) >= 0]) for text in TYPED]
-    print(
-        f"search among {len(rows)} airports: median {statistics.median(searched):.2f} ms, worst {max(searched):.2f} ms"
+def rows() -> Iterator[Row]:
+    """The search, then the timeline."""
+    places = read_profile("airports.json")["rows"]
+    names = [str(row[1]).lower() for row in places]
+    slowest = max(TYPED, key=lambda text: statistics.median(milliseconds(lambda: search(text), REPEATS)))
+    yield Row(
+        f"Airport search, {len(places):,} places, the slowest of {len(TYPED)} texts",
+        spread(milliseconds(lambda: search(slowest), REPEATS)),
+        goal="16 ms",
     )
-    print(f"plain scan:                     median {statistics.median(scanned):.2f} ms")
-    print(f"ratio {statistics.median(searched) / statistics.median(scanned):.1f}")
+    yield against(
+        f"The same, all {len(TYPED)} texts",
+        lambda: [search(text) for text in TYPED],
+        lambda: [[name for name in names if name.find(text) >= 0] for text in TYPED],
+        "a plain scan of the names",
+        repeats=REPEATS,
+    )
     case = Case.model_validate_json(profile_text("demo/copd_layover.json"))
     timeline = lay_out(case.trip, case.policy)
-    laid = median_ms(lambda: lay_out(case.trip, case.policy))
-    one_by_one = median_ms(lambda: [isa_pressure_mmhg(float(one)) for one in timeline.altitude_m])
-    print(f"timeline of {timeline.minutes.size} samples: {laid:.2f} ms, of which one by one: {one_by_one:.2f} ms")
-    print(f"ratio {laid / one_by_one:.2f}")
+    yield against(
+        f"A trip laid out in time and air, {timeline.minutes.size} samples",
+        lambda: lay_out(case.trip, case.policy),
+        lambda: [isa_pressure_mmhg(float(one)) for one in timeline.altitude_m],
+        "its pressures alone, one by one",
+        repeats=REPEATS,
+    )
 
 
 if __name__ == "__main__":
-    main()
+    print_table(rows())

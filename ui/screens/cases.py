@@ -12,6 +12,7 @@ from kivy.uix.boxlayout import BoxLayout
 from planner.case import Case
 from planner.errors import PlannerError
 from ui.library import CaseRow
+from ui.screens.outcomes import show_outcomes
 from ui.theme import theme
 from ui.widgets.buttons import PlainButton, PrimaryButton
 from ui.widgets.entries import TextEntry
@@ -78,7 +79,11 @@ class CasesPage(BoxLayout):
         if rows and not self.library.protected:
             folds.add_widget(Fold("Passphrase", "Seal the cases on this device", self._fill_passphrase))
         if rows:
+            folds.add_widget(ListRow("[b]After the trip[/b]", "What happened, beside the plan", "›", show_outcomes))
             folds.add_widget(Fold("Remove a case", "With all its versions", self._fill_removal))
+            folds.add_widget(
+                ListRow("[b]After the trip[/b]", "What happened beside what was planned", "›", show_outcomes)
+            )
         self.content.add_widget(folds)
 
     def _fill_demos(self, body: BoxLayout) -> None:
