@@ -404,9 +404,9 @@ def test_a_trip_is_started_from_a_template_and_gets_its_way_back(new_case):
     driver.tap("Add to the trip")
     driver.tap("Add the same way back")
     parts = case(driver).trip.parts
-    assert [part.kind for part in parts[6:]] == ["road", "flight", "layover", "flight", "wait", "road"]
-    assert (parts[9].origin_place_id, parts[9].destination_place_id) == ("MAD", "VIE")
-    assert parts[9].zone_at_end == "Europe/Vienna"
+    assert [part.kind for part in parts[6:]] == ["road", "wait", "flight", "layover", "flight", "road"]
+    assert (parts[10].origin_place_id, parts[10].destination_place_id) == ("MAD", "VIE")
+    assert parts[10].zone_at_end == "Europe/Vienna"
     assert parts[11].start_elevation_m == 183.0
     assert len({part.part_id for part in parts}) == 12
     driver.tap(driver.app.shell.undo)

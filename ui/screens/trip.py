@@ -8,10 +8,11 @@ from typing import Any
 from kivy.uix.boxlayout import BoxLayout
 
 from planner.charts.ribbon import Layer, Reading
+from planner.trip.templates import TEMPLATES
 from ui import measures
 from ui.screens.form import Form, Live
 from ui.screens.screen import Screen
-from ui.screens.trip_edits import TEMPLATES, TripEdits
+from ui.screens.trip_edits import TripEdits
 from ui.screens.trip_part import PartForm
 from ui.screens.trip_ribbon import KIND_WORDS, RibbonOfTrip, value_at
 from ui.theme import space
@@ -125,6 +126,7 @@ class TripScreen(Screen):
             PlainButton("Earlier", lambda: self.edits.move(index, -1), role="label", disabled=index == 0),
             PlainButton("Later", lambda: self.edits.move(index, 1), role="label", disabled=index == last),
             PlainButton("Duplicate", lambda: self._open(self.edits.duplicate(index)), role="label"),
+            PlainButton("Turn round", lambda: self.edits.turn(index), role="label"),
             PlainButton("Remove", lambda: self.edits.remove(index), role="label", tone="stop"),
             least_sp=86,
         )
