@@ -22,6 +22,7 @@ from planner.case.trip import Trip
 
 FORMAT: Final = "oxygen-altitude-case"
 VERSION: Final = 1
+_OF_THE_KIT = {"holds_until", "reserve_fraction", "residual_bar", "run_out_chance", "stress", "stress_late_min"}
 _NOT_CONFIRMED = {"display", "confirmation", "outcome"}
 
 
@@ -60,9 +61,12 @@ class Case(Section):
         return _digest(self.model_dump(mode="json", exclude=_NOT_CONFIRMED))
 
     def decision_digest(self) -> str:
-        """SHA-256 over what a decided flow rests on: patient, measurements, prescription, cautions, trip, policy."""
+        """SHA-256 over what a decided flow rests on: patient, measurements, prescription, cautions, trip, policy.
+
+        What of the policy sizes the kit only is not part of it.
+        """
         keep = {"patient", "measurements", "prescription", "cautions", "trip", "policy"}
-        return _digest(self.model_dump(mode="json", include=keep))
+        return _digest(self.model_dump(mode="json", include=keep, exclude={"policy": _OF_THE_KIT}))
 
 
 def _digest(content: dict[str, object]) -> str:

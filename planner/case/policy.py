@@ -3,10 +3,13 @@
 from __future__ import annotations
 
 from datetime import date
+from typing import Literal
 
 from pydantic import Field, model_validator
 
 from planner.case.section import Section
+
+StressKind = Literal["late", "missed_connection", "overnight", "diversion"]
 
 
 class Policy(Section):
@@ -27,7 +30,8 @@ class Policy(Section):
     reserve_fraction: float = Field(0.25, ge=0.0, le=1.0, description="Extra oxygen carried beyond the plan")
     residual_bar: float = Field(14.0, ge=0.0, le=60.0, description="Gauge pressure at which a cylinder is changed")
     run_out_chance: float = Field(0.02, ge=0.001, le=0.2)
-    stress_late_min: float = Field(180.0, ge=0.0, le=2880.0)
+    stress: StressKind | None = Field(None, description="None: every flight late")
+    stress_late_min: float = Field(180.0, ge=0.0, le=2880.0, description="In the case of every flight late")
 
     @model_validator(mode="after")
     def _ordered(self) -> Policy:

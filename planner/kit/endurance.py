@@ -234,14 +234,13 @@ def wilson(hits: int, draws: int, z: float = 1.959964) -> tuple[float, float]:
     return max(float(centre - half), 0.0), min(float(centre + half), 1.0)
 
 
-def on_time(legs: Sequence[Leg], late_min: float = 0.0, assumed: Assumptions | None = None) -> Draws:
-    """One trip with everything as assumed on average; late_min: every flight that much late (the stress case)."""
+def on_time(legs: Sequence[Leg], assumed: Assumptions | None = None) -> Draws:
+    """One trip without delays and with everything as assumed on average."""
     assumed = assumed or Assumptions()
     count = len(legs)
-    waits = np.array([[late_min / 60.0 if leg.flight else 0.0 for leg in legs]])
     yes = np.ones((1, count), dtype=bool)
     return Draws(
-        waits_h=waits,
+        waits_h=np.zeros((1, count)),
         longer_h=np.zeros((1, count)),
         flow=np.ones(1),
         breathing=np.ones(1),

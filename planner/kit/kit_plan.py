@@ -9,6 +9,7 @@ from planner.air.ranges import Array
 from planner.kit.cautions import KitCaution
 from planner.kit.endurance import RunOut
 from planner.kit.turn_back import TurnBack
+from planner.trip.stress import Stress
 
 ItemKind = Literal["cylinder", "liquid", "conserver", "concentrator", "battery", "carrier", "stationary"]
 
@@ -71,7 +72,7 @@ class CrossCheck:
 
 @dataclass(frozen=True, eq=False)
 class Left:
-    """What is there at the start and the end of each leg; arrays (points,). stress: every flight that much late."""
+    """What is there at the start and the end of each leg; arrays (points,). stress: in the stress case."""
 
     minutes: Array
     litres: Array
@@ -102,6 +103,7 @@ class KitPlan:
     assumptions: tuple[tuple[str, str], ...]
     gap: float  # inf where nothing better was sought
     finished: bool
+    stress: Stress | None = None  # the case of the dotted line
     own: OwnSet | None = None
     cross_checks: tuple[CrossCheck, ...] = ()
 

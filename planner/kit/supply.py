@@ -26,6 +26,7 @@ from planner.kit.strengthen import Stronger, strengthen
 from planner.kit.trip_legs import TripLegs, carried_of, part_supplies
 from planner.kit.turn_back import turn_back
 from planner.trip.itinerary import PartSpan
+from planner.trip.stress import stress
 
 DRAWS = 20_000
 SEED = 20260301
@@ -113,9 +114,10 @@ def plan_kit(
     tell("Confirming it on other trips", 0.8)
     others = trip.draw(SEED + 1, draws)
     played = play(trip.legs, stronger.carried, used_power, others, trip.assumed)
-    late, on_plan = (
-        play(trip.legs, stronger.carried, used_power, on_time(trip.legs, minutes, trip.assumed), trip.assumed)
-        for minutes in (policy.stress_late_min, 0.0)
+    case = stress(policy.stress or "late", policy.stress_late_min, spans)
+    on_plan, late = (
+        play(trip.legs, stronger.carried, used_power, drawn, trip.assumed)
+        for drawn in (on_time(trip.legs, trip.assumed), trip.stressed(case))
     )
     chance = run_out(played)
     items = items_to_carry(found, stronger, choices, used_power, conserver, trip.legs)
@@ -153,6 +155,7 @@ def plan_kit(
             ("Cylinder is changed at", f"{policy.residual_bar:g} bar"),
             ("Trips played", f"{draws:,}"),
         ),
+        stress=case,
         gap=found.gap,
         finished=found.finished,
         own=None if of_own is None else own_set(of_own, own, trip, power, conserver, others),

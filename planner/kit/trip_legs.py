@@ -3,19 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from planner.air.ranges import Array
 from planner.case.trip import Part
 from planner.kit.demand import Demand
-from planner.kit.endurance import Assumptions, Carried, Draws, RunOut, draw_trips
+from planner.kit.endurance import Assumptions, Carried, Draws, RunOut, draw_trips, on_time
 from planner.kit.kit_plan import PartSupply
 from planner.kit.legs import Choice, Leg
 from planner.kit.selection import LegUse, Selection
 from planner.trip.delays import sample_delays
 from planner.trip.itinerary import PartSpan
+from planner.trip.stress import Stress
 
 
 @dataclass(frozen=True)
@@ -33,6 +34,12 @@ class TripLegs:
         rng = np.random.default_rng(seed)
         waits, longer = sample_delays(self.spans, self.parts, rng, draws)
         return draw_trips(self.legs, self._first(waits), self._shared(longer), rng, self.assumed)
+
+    def stressed(self, case: Stress) -> Draws:
+        """One trip with everything as assumed on average, in this stress case."""
+        drawn = on_time(self.legs, self.assumed)
+        waits, longer = self._first(case.waits_min[None, :]), self._shared(case.longer_min[None, :])
+        return replace(drawn, waits_h=waits / 60.0, longer_h=longer / 60.0)
 
     def _first(self, by_part: Array) -> Array:
         new = [number == 0 or self.part_of[number - 1] != part for number, part in enumerate(self.part_of)]

@@ -90,8 +90,12 @@ def write_endurance(flow: Flow, desk: Desk) -> None:
         if kit.own.uncovered_h > 0.0:
             flow.note(say("kit.own_uncovered", duration=q.duration(60.0 * kit.own.uncovered_h)))
     reserve = desk.case.policy.reserve_fraction
-    late = q.duration(desk.case.policy.stress_late_min)
-    flow.paragraph(say("kit.reserve", reserve=q.percent(100.0 * reserve), late=late), scale=0.9, role="muted")
+    flow.paragraph(say("kit.reserve", reserve=q.percent(100.0 * reserve)), scale=0.9, role="muted")
+    if kit.stress is not None:
+        case = say(
+            f"kit.stress.{kit.stress.kind}", duration=q.duration(kit.stress.minutes), name=kit.stress.where or q.unknown
+        )
+        flow.paragraph(say("kit.dotted", case=case), scale=0.9, role="muted")
     for drawing in supply_ribbons(desk, flow.panel.width):
         flow.drawing(drawing)
 

@@ -89,7 +89,7 @@ def _assumptions(flow: Flow, desk: Desk) -> None:
                 reserve=q.percent(policy.reserve_fraction * 100),
                 residual=q.gauge(policy.residual_bar),
             ),
-            say("assumptions.chance", chance=q.chance(policy.run_out_chance), late=q.duration(policy.stress_late_min)),
+            say("assumptions.chance", chance=q.chance(policy.run_out_chance)),
             say("assumptions.estimate"),
         ]
     )

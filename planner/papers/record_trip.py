@@ -10,6 +10,7 @@ from planner.charts.series import blood_over_time
 from planner.papers import fonts
 from planner.papers.desk import Desk, capital
 from planner.papers.flow import Column, Flow, Row
+from planner.trip.cabins import MeasuredCabins, measured_for
 
 RIBBON_PT = 112.0
 LAYERED_RIBBON_PT = 128.0
@@ -125,3 +126,28 @@ def _table(flow: Flow, desk: Desk) -> None:
         name = "\n".join([desk.part_name(span.part_id), *span.unknown])
         rows.append(Row((name, starts, q.duration(span.duration_min), capital(height), air, capital(allowed))))
     flow.table(columns, rows)
+    _measured_cabins(flow, desk)
+
+
+def _measured_cabins(flow: Flow, desk: Desk) -> None:
+    """What cabins were measured at on flights as long as these, against what is planned."""
+    say, q = desk.say, desk.quantities
+    alike: dict[tuple[MeasuredCabins, float], list[str]] = {}
+    for part in desk.case.trip.parts:
+        found = measured_for(part) if part.kind == "flight" else None
+        if found is not None:
+            planned = part.cabin_altitude_m
+            if planned is None:
+                planned = desk.case.policy.planning_cabin_altitude_m
+            alike.setdefault((found, planned), []).append(desk.part_name(part.part_id))
+    for (found, planned), names in alike.items():
+        text = say(
+            "trip.measured_cabins",
+            names=", ".join(names),
+            half=q.altitude_both(found.quantile_m(0.5)),
+            most=q.altitude_both(found.quantile_m(0.95)),
+            above=q.chance(found.share_above(planned)),
+            planned=q.altitude_both(planned),
+            source=found.source,
+        )
+        flow.paragraph(text, scale=0.9, role="muted")

@@ -92,6 +92,12 @@ def _flight_wait(span: PartSpan, part: Part, place: Array, rng: np.random.Genera
     return result
 
 
+def diversion_min() -> float:
+    """Minutes that a diverted flight takes longer: the middle of the profile's hours."""
+    entry = _entry("flight")
+    return float(60.0 * 0.5 * (entry["diverted_min_h"] + entry["diverted_max_h"]))
+
+
 def _diverted(rng: np.random.Generator, draws: int) -> Array:
     entry = _entry("flight")
     hours = rng.uniform(entry["diverted_min_h"], entry["diverted_max_h"], draws)

@@ -75,6 +75,11 @@ def planning_flight_min(distance_km: float) -> float:
     return 5.0 * round((GATE_MIN + 60.0 * distance_km / CRUISE_KM_PER_H) / 5.0)
 
 
+def distance_of_min(flight_min: float) -> float:
+    """Kilometres that a flight of this length is planned with: the inverse of planning_flight_min, without rounding."""
+    return max(flight_min - GATE_MIN, 0.0) * CRUISE_KM_PER_H / 60.0
+
+
 @cache
 def _places() -> tuple[dict[str, Place], tuple[tuple[str, str, str], ...]]:
     """Places by code, and for each its code, city and name in small plain letters, the last two after a space."""

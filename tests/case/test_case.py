@@ -102,3 +102,18 @@ def test_an_entry_that_only_a_later_version_has_changes_no_digest_until_it_is_ma
     later = LaterCase.model_validate_json(now.model_dump_json())
     assert later.inputs_digest() == now.inputs_digest()
     assert later.model_copy(update={"later": "made"}).inputs_digest() != now.inputs_digest()
+
+
+def test_what_sizes_the_kit_only_does_not_take_decided_flows_back():
+    base = case(trip={"parts": [FLIGHT]})
+    for kit_only in (
+        {"reserve_fraction": 0.5},
+        {"stress": "overnight"},
+        {"stress_late_min": 60.0},
+        {"run_out_chance": 0.1},
+    ):
+        changed = case(trip={"parts": [FLIGHT]}, policy=kit_only)
+        assert changed.decision_digest() == base.decision_digest()
+        assert changed.inputs_digest() != base.inputs_digest()
+    target = case(trip={"parts": [FLIGHT]}, policy={"confidence": 0.8})
+    assert target.decision_digest() != base.decision_digest()

@@ -125,11 +125,6 @@ def test_draws_follow_their_assumptions():
     assert drawn.airline_ok.mean() == pytest.approx(0.99, abs=0.005)
 
 
-def test_the_stress_case_makes_every_flight_late_and_nothing_else():
-    drawn = on_time([ROAD, FLIGHT], 180.0)
-    assert drawn.waits_h.tolist() == [[0.0, 3.0]]
-
-
 def test_gas_left_behind_before_a_flight_is_not_there_after_it():
     # Two cylinders of 300 L; only one may fly on, though nothing of the other was used.
     still = replace(ROAD, oxygen_h=0.0)

@@ -9,6 +9,7 @@ from planner.kit.legs import Leg
 from planner.kit.trip_legs import TripLegs
 from planner.trip.delays import sample_delays
 from planner.trip.itinerary import PartSpan
+from planner.trip.stress import stress
 
 SHARES = {"rest": 1.0, "walking": 0.0, "asleep": 0.0}
 
@@ -42,3 +43,14 @@ def test_other_trips_confirm_a_set_than_those_it_was_chosen_on():
     trip = TripLegs(spans, parts, (leg("flight", 3.0, True),), (0,), Assumptions())
     assert not np.array_equal(trip.draw(1, 100).flow, trip.draw(2, 100).flow)
     assert np.array_equal(trip.draw(1, 100).flow, trip.draw(1, 100).flow)
+
+
+def test_a_stress_case_is_played_on_the_legs_of_its_part():
+    spans = [span("road", "road", 120.0), span("flight", "flight", 180.0)]
+    parts = [Part(part_id=one.part_id, kind=one.kind, duration_min=one.duration_min) for one in spans]
+    legs = (leg("road", 2.0), leg("flight", 2.0, True), leg("flight", 1.0, True))
+    trip = TripLegs(spans, parts, legs, (0, 1, 1), Assumptions())
+    late = trip.stressed(stress("late", 180.0, spans))
+    assert late.waits_h.tolist() == [[0.0, 3.0, 0.0]]
+    diverted = trip.stressed(stress("diversion", 0.0, spans))
+    assert diverted.longer_h.tolist() == [pytest.approx([0.0, 3.5 * 2 / 3, 3.5 / 3])]

@@ -155,3 +155,20 @@ def test_litres_and_watt_hours_are_both_read_on_the_ribbon(kit):
     kit.tap("Watt-hours")
     assert kit.reads(" Wh[/b] left")
     assert kit.reads("A second source for 1 h is not possible")
+
+
+def test_a_missed_connection_and_a_diversion_are_one_touch(kit):
+    kit.tap("Connection missed")
+    settle(kit)
+    assert kit.app.session.case.policy.stress == "missed_connection"
+    kit.app.shell.screen.ribbon.plot.minute = kit.app.session.timeline.parts[4].start_min + 60.0
+    kit.frames(6)
+    assert kit.reads("if the connection is missed at Flight 2")
+    assert kit.app.session.plan.kit.stress.waits_min[4] == 360.0
+    kit.tap("Diverted")
+    settle(kit)
+    assert kit.reads("if diverted at Flight 2")
+    assert kit.app.session.plan.state == "Flows decided"
+    kit.tap("On time")
+    settle(kit)
+    assert not kit.reads("if diverted")

@@ -18,7 +18,9 @@ from ui.widgets.notices import Notice, Section
 from ui.widgets.rows import Fold, ListRow, Side, Stack
 from ui.widgets.text import Text, plain, strong
 
-STRESSES = ((0.0, "On time"), (60.0, "1 h late"), (180.0, "3 h late"), (720.0, "Overnight"))
+LATE = ((0.0, "On time"), (60.0, "1 h late"), (180.0, "3 h late"))
+_IF = {"missed_connection": "if the connection is missed", "overnight": "with a night more", "diversion": "if diverted"}
+OTHERS = {"missed_connection": "Connection missed", "overnight": "A night more", "diversion": "Diverted"}
 
 
 class KitScreen(ResultScreen):
@@ -29,7 +31,7 @@ class KitScreen(ResultScreen):
 
     def build_results(self) -> None:
         """Stress case, the few numbers, run-out sentence, list, turn-back readings, cautions, assumptions, entries."""
-        self.stress = Choice("Every flight", STRESSES, None, self._stress)
+        self.stress = Stack(gap=0)
         self.supply = Choice("Left along the trip", (("L", "Litres"), ("Wh", "Watt-hours")), "L", self._shown_supply)
         self.supplies = Stack(gap=0)
         self.open_notes = Stack(gap=2)
@@ -93,13 +95,15 @@ class KitScreen(ResultScreen):
         words = f"{strong(f'{reading.median:,.0f} {unit}')} left"
         if reading.low is not None and reading.high is not None and reading.high - reading.low >= 1:
             words += f" ({reading.low:,.0f} to {reading.high:,.0f})"
-        late = measures.hours_minutes(self.session.case.policy.stress_late_min)
-        return words if reading.stress is None else f"{words}, if {late} late {strong(f'{reading.stress:,.0f} {unit}')}"
+        case = plan.kit.stress
+        if reading.stress is None or case is None or not (case.waits_min.any() or case.longer_min.any()):
+            return words
+        return f"{words}, {self._case_words(case)} {strong(f'{reading.stress:,.0f} {unit}')}"
 
     def show_part(self, part: Any, plan: Any) -> None:
         """The kit belongs to the whole trip; the part only moves the reading."""
         kit = plan.kit
-        self.stress.show(self.session.case.policy.stress_late_min)
+        self._show_stress()
         self._show_open(plan)
         sized = kit is not None and bool(kit.items)
         self._show_numbers(kit if sized else None)
@@ -125,8 +129,31 @@ class KitScreen(ResultScreen):
         chosen = self.supply.value
         return chosen if chosen in carried else carried[0] if carried else "L"
 
-    def _stress(self, minutes: float) -> None:
-        self.session.choose("policy.stress_late_min", minutes, "the stress case")
+    def _show_stress(self) -> None:
+        """The cases that can happen on this trip, the chosen one ticked; none where nothing flies."""
+        from planner.trip.stress import possible
+
+        kinds = possible(self.session.timeline.parts)
+        policy = self.session.case.policy
+        late = [(("late", minutes), words) for minutes, words in LATE] if kinds else []
+        options = [*late, *(((kind, None), OTHERS[kind]) for kind in kinds if kind in OTHERS)]
+        kind = policy.stress or "late"
+        choice = Choice("What if", options, (kind, policy.stress_late_min if kind == "late" else None), self._stress)
+        self.stress.hold(choice if options else None)
+
+    def _stress(self, chosen: tuple[str, float | None]) -> None:
+        kind, minutes = chosen
+        changes: dict[str, Any] = {"policy.stress": kind}
+        if minutes is not None:
+            changes["policy.stress_late_min"] = minutes
+        self.session.set_many(changes, "the stress case")
+
+    def _case_words(self, case: Any) -> str:
+        """The stress case as it is said in the line of reading."""
+        if case.kind == "late":
+            return f"if {measures.hours_minutes(case.minutes)} late"
+        where = f" at {plain(case.where)}" if case.where else ""
+        return f"{_IF[case.kind]}{where}"
 
     def _show_open(self, plan: Any) -> None:
         self.open_notes.clear_widgets()

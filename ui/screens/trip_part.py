@@ -71,7 +71,7 @@ class PartForm(Stack):
                 ),
             )
         )  # fmt: skip
-        self.add_widget(Fold("What cabins were measured at", "Published series of flights", self._fill_cabins))
+        self.add_widget(Fold("What cabins were measured at", self._cabin_summary(), self._fill_cabins))
 
     def _unknown_fields(self) -> tuple[tuple[str, str], ...]:
         """The elevations that the airports do not give: what the form must ask for."""
@@ -89,6 +89,21 @@ class PartForm(Stack):
         ]
         if asked:
             group.add_widget(Side(*asked))
+
+    def _cabin_summary(self) -> str:
+        """The measured cabins of flights as long as this one, against what is planned."""
+        from planner.trip.cabins import measured_for
+
+        part, altitude = self.session.get(self.path), self._altitude()
+        found = measured_for(part)
+        if found is None:
+            return "Published series of flights"
+        planned = part.cabin_altitude_m
+        if planned is None:
+            planned = self.session.case.policy.planning_cabin_altitude_m
+        half, most = (altitude.with_unit(found.quantile_m(share)) for share in (0.5, 0.95))
+        above = f"{100 * found.share_above(planned):.0f} of 100 above {altitude.with_unit(planned)}"
+        return f"{found.name}: half above {half}, 1 in 20 above {most}, {above}"
 
     def _fill_cabins(self, body: BoxLayout) -> None:
         from planner.trip.cabins import measured_cabins
