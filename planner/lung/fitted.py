@@ -30,6 +30,7 @@ LOWEST_PCO2_MMHG, HIGHEST_PCO2_MMHG = 12.0, 120.0
 LOWEST_PCO2_SHARE, PCO2_MARGIN_MMHG = 0.6, 4.0  # how far from that at rest the tables reach
 LEAST_MMHG = 25.0  # an arterial PO2 below is "below model range"
 LOG_SD_SNAP, SHUNT_SNAP, PCO2_SNAP_MMHG = 0.4, 0.05, 4.0
+WIDEST_SHARED = 1.25  # spans of solved lungs read again, over those that would be solved anew: wider ones are coarser
 BLOCK = 125  # draws worked together; their arrays stay in the processor's cache
 WALKING_STRAIN = 2.0  # of the share that diffusion takes: 19 % of the gradient at rest, 40 % on exercise (Agusti 1991)
 CURVE_POINTS = 16
@@ -188,12 +189,15 @@ class FittedLung:
         return body, log_sd, (0.0, float(self.shunt.max())), (lowest, min(highest, HIGHEST_PCO2_MMHG))
 
     def with_tables_of(self, other: FittedLung) -> FittedLung:
-        """The same lung, reading from the solved lungs of another at rest where they span its draws.
+        """The same lung, reading from the solved lungs of another at rest where they span its draws, and not far more.
 
         What is read differs from its own tables by less than the error that both have (planner.lung.response).
         """
-        solved = other._solved_lungs(False, False)
-        return replace(self, _solved={(False, False): solved} if solved.covers(*self._spans(False, False)) else {})
+        solved, (body, log_sd, *rest) = other._solved_lungs(False, False), self._spans(False, False)
+        low, high = _outwards(*log_sd, LOG_SD_SNAP, HIGHEST_LOG_SD)
+        as_fine = solved.log_sd_nodes[-1] - solved.log_sd_nodes[0] <= WIDEST_SHARED * (high - low)
+        shares = as_fine and solved.covers(body, log_sd, *rest)
+        return replace(self, _solved={(False, False): solved} if shares else {})
 
     def _pco2_mmhg(self, inspired: Array, hours: Array, rows: slice) -> Array:
         """Arterial PCO2 awake, (draws, points): acute response, its spread, and what days have added."""

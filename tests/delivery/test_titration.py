@@ -6,6 +6,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from planner.air.atmosphere import isa_pressure_mmhg
+from planner.delivery.decided import Dose, with_decisions
 from planner.delivery.devices import load_devices
 from planner.delivery.effect import usual_spread
 from planner.delivery.titration import Condition, Target, rule_amount, titrate, with_decision
@@ -303,6 +304,31 @@ def test_a_decided_amount_the_device_does_not_have_is_refused(device, amount, fi
     with pytest.raises(InputError) as caught:
         with_decision(MODERATE, at(2438.4, part_kind="flight"), DEVICES[device], amount, NO_RISK)
     assert caught.value.field == field
+
+
+def test_many_decisions_asked_together_answer_as_one_by_one_and_a_refused_one_stops_no_other():
+    doses = [
+        Dose(at(2438.4), DEVICES["cannula"], 2.0),
+        Dose(at(2438.4), DEVICES["cannula"], 20.0),
+        Dose(at(1000.0, "walking"), DEVICES["pulse_conserver"], 3.0),
+        Dose(at(2438.4), None, 0.0),
+    ]
+    first, refused, pulses, none = with_decisions(MODERATE, doses, NO_RISK)
+    assert isinstance(refused, InputError)
+    assert [first, pulses, none] == [
+        with_decision(MODERATE, one.condition, one.device, one.amount, NO_RISK)
+        for one in (doses[0], doses[2], doses[3])
+    ]
+    assert none.device_id is None
+
+
+def test_one_decision_the_lung_cannot_be_asked_stops_no_other():
+    too_high = Condition("peak", "rest", 200.0, 32.0)
+    first, fault = with_decisions(
+        MODERATE, [Dose(at(2438.4), DEVICES["cannula"], 2.0), Dose(too_high, DEVICES["cannula"], 2.0)], NO_RISK
+    )
+    assert first == with_decision(MODERATE, at(2438.4), DEVICES["cannula"], 2.0, NO_RISK)
+    assert "200 mmHg is outside the range" in fault.message
 
 
 def test_a_flow_without_its_device_is_refused():

@@ -59,3 +59,18 @@ def test_where_the_air_is_not_known_nothing_is_said_and_the_rest_stays(trip):
     assert hidden.any()
     assert (hidden | kept).all()
     assert holed.spo2_median_percent[~hidden] == pytest.approx(whole.spo2_median_percent[~hidden])
+
+
+def test_points_of_the_same_air_share_an_answer_and_oxygen_in_one_part_stays_in_it(trip):
+    lung, timeline = trip
+    flat = np.full_like(timeline.inspired_po2_mmhg, 120.0)
+    level = replace(timeline, inspired_po2_mmhg=flat, barometric_mmhg=np.full_like(flat, 620.0))
+    level = replace(level, hours_at_altitude=np.zeros_like(flat))
+    air = blood_along(lung, level)
+    expected = np.quantile(lung.arterial(120.0, 620.0).po2_mmhg, 0.5)
+    assert air.pao2_median_mmhg == pytest.approx(np.full(air.minutes.size, expected))
+    on_oxygen = blood_along(lung, level, {"short": np.full(lung.log_sd.size, 30.0)})
+    inside = on_oxygen.minutes < timeline.minutes[timeline.part_index == 0][-1]
+    after = on_oxygen.minutes > timeline.minutes[timeline.part_index == 1][0]
+    assert (on_oxygen.pao2_median_mmhg[inside] > expected + 5.0).all()
+    assert on_oxygen.pao2_median_mmhg[after] == pytest.approx(np.full(after.sum(), expected))

@@ -311,3 +311,13 @@ def test_a_service_can_add_a_pathway_and_replace_one(tmp_path, monkeypatch):
     assert "ours" in loaded
     assert loaded["edvardsen_2012_copd"].version == 7
     assert loaded["bts_2022_adult"].version == 1
+
+
+def test_a_pathway_file_changed_meanwhile_is_read_anew(tmp_path, monkeypatch):
+    monkeypatch.setenv("PLANNER_PROFILES_DIR", str(tmp_path))
+    (tmp_path / "pathways").mkdir()
+    own, text = tmp_path / "pathways" / "edvardsen_2012_copd.toml", profile_text("pathways/edvardsen_2012_copd.toml")
+    for version in (7, 8):
+        own.write_text(text.replace("version = 1", f"version = {version}"), "utf-8")
+        assert load_pathways()["edvardsen_2012_copd"].version == version
+        assert load_pathways()["edvardsen_2012_copd"] is load_pathways()["edvardsen_2012_copd"]

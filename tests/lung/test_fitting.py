@@ -289,3 +289,26 @@ def test_with_everything_known_only_a_challenge_is_left_to_ask_for():
 def test_what_would_not_narrow_the_forecast_is_not_asked_for():
     # At the very place of the gas its own error is the spread; the carbon dioxide there adds nothing.
     assert narrowing([dataclasses.replace(GAS, paco2_mmhg=None)], COPD, Condition(*SEA_LEVEL)) == ()
+
+
+@pytest.mark.parametrize("reading", [GAS, OXIMETRY, dataclasses.replace(GAS, paco2_mmhg=None, age_days=None)])
+def test_what_would_narrow_is_the_same_when_read_from_the_lungs_solved_before(reading):
+    condition = Condition(*CABIN)
+    alone = {one.input_name: one for one in narrowing([reading], COPD, condition)}
+    shared = {one.input_name: one for one in narrowing([reading], COPD, condition, fitted=fit_lung([reading], COPD))}
+    assert alone.keys() == shared.keys()
+    for name, one in alone.items():
+        assert shared[name].spread_now_mmhg == pytest.approx(one.spread_now_mmhg, abs=0.35)  # the error of both tables
+        assert shared[name].spread_then_mmhg == pytest.approx(
+            one.spread_then_mmhg, abs=0.35
+        )  # the error of both tables
+
+
+def test_solved_lungs_of_another_body_or_narrower_spans_are_not_read():
+    gas, again = fit_lung([GAS], COPD, draws=200), fit_lung([GAS], COPD, draws=150)
+    wide = fit_lung([OXIMETRY], COPD, draws=200)
+    anaemic = fit_lung([GAS], dataclasses.replace(COPD, haemoglobin_g_dl=9.0), draws=200)
+    assert again.with_tables_of(gas)._solved[False, False] is gas._solved[False, False]
+    assert wide.with_tables_of(gas)._solved == {}
+    assert gas.with_tables_of(wide)._solved == {}  # it would be read coarsely
+    assert anaemic.with_tables_of(gas)._solved == {}

@@ -19,6 +19,16 @@ def test_the_draws_kept_answer_as_before():
     assert few.arterial(*CABIN).po2_mmhg == pytest.approx(before[places], abs=1e-9)
 
 
+@pytest.mark.parametrize("inspired", [CABIN[0], 200.0])
+def test_what_is_tabled_already_is_kept_and_answers_the_same(inspired):
+    whole = fit_lung([GAS], Person("copd"), draws=400)
+    fresh = thinned(whole, 100).arterial(inspired, CABIN[1], activity="walking").po2_mmhg
+    whole.arterial(inspired, CABIN[1], activity="walking")
+    kept = thinned(whole, 100)
+    assert kept._responses
+    assert kept.arterial(inspired, CABIN[1], activity="walking").po2_mmhg == pytest.approx(fresh, abs=0.1)
+
+
 def test_asking_the_few_first_does_not_change_what_all_answer():
     fresh, asked = (fit_lung([GAS], Person("copd"), draws=400) for _ in range(2))
     thinned(asked, 60).arterial(*CABIN, activity="walking")
