@@ -257,10 +257,3 @@ def test_a_row_of_the_test_is_taken_back_and_all_is_there_after_leaving(answered
     assert len(answered.app.shell.screen.test.rows) == 2
     answered.tap(answered.app.shell.undo)
     assert len(answered.app.shell.screen.test.rows) == 3
-
-
-def test_how_a_number_was_worked_out_is_one_touch_away(answered):
-    go(answered, "forecast")
-    answered.tap("How was this worked out")
-    for words in ("Gong 1984", "Am Rev Respir Dis 1984"):
-        assert answered.reads(words)
