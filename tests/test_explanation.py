@@ -99,7 +99,7 @@ def test_the_fitted_lung_names_each_measurement_with_its_day_and_its_air(planned
 
 
 def test_the_air_of_a_cabin_is_worked_out_from_its_altitude(planned, case):
-    """Standard atmosphere at 8,000 ft: 752.6 hPa (ICAO tables), so 564.5 mmHg and 0.2093 x (564.5 - 47) = 108.3 mmHg."""
+    """Standard atmosphere at 8,000 ft: 752.6 hPa (ICAO tables), 564.5 mmHg; 0.2093 x (564.5 - 47) = 108.3 mmHg."""
     found = asked(planned, case, "air")
     assert "14.4 kPa (108 mmHg)" in found.result
     assert "564.5 mmHg" in words(found)
