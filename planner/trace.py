@@ -25,18 +25,20 @@ def trace_lines(
     return (*_air(case, timeline), *_lung(baseline, lung), *_guidance(pathways))
 
 
+def air_formula(altitude_kind: str) -> tuple[str, str]:
+    """Formula and source of the air pressure: of a cabin ("cabin"), else of the ground."""
+    if altitude_kind == "cabin":
+        return "P = 101325 Pa (1 − 0.0065 h / 288.15)^5.2559", "ICAO standard atmosphere, ISO 2533:1975"
+    return "ln P = 6.63268 − 0.1112 h − 0.00149 h², P in mmHg, h in km", "West JB, J Appl Physiol 1996;81:1850"
+
+
 def _air(case: Case, timeline: Timeline) -> list[TraceLine]:
     lines = []
     for span in timeline.parts:
         if span.lowest_barometric_mmhg is None or span.lowest_inspired_po2_mmhg is None or span.highest_m is None:
             continue
         cabin = span.altitude_kind == "cabin"
-        formula = (
-            "P = 101325 Pa (1 − 0.0065 h / 288.15)^5.2559"
-            if cabin
-            else "ln P = 6.63268 − 0.1112 h − 0.00149 h², P in mmHg, h in km"
-        )
-        source = "ICAO standard atmosphere, ISO 2533:1975" if cabin else "West JB, J Appl Physiol 1996;81:1850"
+        formula, source = air_formula(span.altitude_kind)
         inspired, pressure = span.lowest_inspired_po2_mmhg, span.lowest_barometric_mmhg
         lines.append(
             TraceLine(

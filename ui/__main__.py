@@ -88,8 +88,14 @@ def _prepare_kivy(home: Path, *, without_window: bool) -> None:
         os.environ["SDL_VIDEODRIVER"] = "offscreen"
     # Kivy calls it critical when two X11 tools for the middle mouse button are not installed; nothing here needs them.
     logging.getLogger("kivy").addFilter(lambda record: not str(record.msg).startswith("Cutbuffer"))
+    configure_window()
+
+
+def configure_window() -> None:
+    """Size and limits of the window. Edges are smoothed where they are drawn; sampling all of it costs half a frame."""
     from kivy.config import Config
 
+    Config.set("graphics", "multisamples", "0")
     Config.set("graphics", "width", str(SIZE[0]))
     Config.set("graphics", "height", str(SIZE[1]))
     Config.set("graphics", "minimum_width", "320")

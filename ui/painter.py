@@ -8,7 +8,7 @@ from typing import Any
 
 import numpy as np
 from kivy.core.text import Label as CoreLabel
-from kivy.graphics import Color, Ellipse, Line, Mesh, Rectangle, SmoothLine
+from kivy.graphics import Color, Line, Mesh, Rectangle, SmoothEllipse, SmoothLine
 from kivy.graphics.instructions import InstructionGroup
 from kivy.metrics import dp
 
@@ -107,16 +107,18 @@ def _marker(group: InstructionGroup, marker: Marker, x: float, y: float) -> None
     cx, cy, radius = marker.x + x, marker.y + y, marker.radius
     circle = {"pos": (cx - radius, cy - radius), "size": (2 * radius, 2 * radius)}
     if marker.shape == "dot":
-        group.add(Ellipse(**circle))
+        group.add(SmoothEllipse(**circle))
     elif marker.shape == "ring":
         group.add(Color(*theme.ground))
-        group.add(Ellipse(**circle))
+        group.add(SmoothEllipse(**circle))
         group.add(Color(*colour_of(marker.role)))
         group.add(SmoothLine(circle=(cx, cy, radius), width=dp(0.8)))
     elif marker.shape == "diamond":
         corners = [(0, radius), (radius, 0), (0, -radius), (-radius, 0)]
         vertices = [value for dx, dy in corners for value in (cx + 1.2 * dx, cy + 1.2 * dy, 0, 0)]
         group.add(Mesh(vertices=vertices, indices=range(4), mode="triangle_fan"))
+        edge = [value for dx, dy in corners for value in (cx + 1.2 * dx, cy + 1.2 * dy)]
+        group.add(SmoothLine(points=edge, close=True, width=dp(0.5)))
     else:
         for sign in (1, -1):
             group.add(Line(points=[cx - radius, cy - sign * radius, cx + radius, cy + sign * radius], width=dp(0.8)))

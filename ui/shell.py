@@ -25,6 +25,8 @@ from ui.widgets.stepbar import StepBar
 from ui.widgets.text import Text, plain
 
 SIDE_DP = 268
+ASIDE_DP = 340  # beside a step whose numbers can be asked about
+ASIDE_FROM_DP = 1100
 PATIENCE_S = 1.0
 
 
@@ -36,6 +38,8 @@ class Shell(BoxLayout):
         self.session, self.leave = session, leave
         self.step, self._before = step, "patient"
         self.screen: Any = None
+        self.aside: Any = None
+        self._asking: tuple[str, Any, Any] | None = None  # the step left to ask about a number, its screen and page
         self._show_again = Clock.create_trigger(self._show, -1)
         paint_ground(self, theme.ground)
         self._build()
@@ -48,6 +52,11 @@ class Shell(BoxLayout):
         """True where there is room for two panes."""
         return bool(Window.width >= dp(WIDE_FROM_DP))
 
+    @property
+    def roomy(self) -> bool:
+        """True where the answer to a question about a number fits beside the step."""
+        return bool(Window.width >= dp(ASIDE_FROM_DP))
+
     def close(self) -> None:
         """Stop listening to the session."""
         self.session.unbind(**self._bindings)
@@ -56,7 +65,7 @@ class Shell(BoxLayout):
 
     def _build(self) -> None:
         self.clear_widgets()
-        self._built_wide = self.wide
+        self._built_wide = (self.wide, self.roomy)
         steps = [(step.name, step.title) for step in STEPS]
         self.bar = StepBar(steps, not self.wide, self.go)
         self.who = Text("", role="body", pos_hint={"center_y": 0.5})
@@ -94,13 +103,15 @@ class Shell(BoxLayout):
 
     def on_size(self, *_: Any) -> None:
         """Change between one and two panes when the window does."""
-        if self.screen is not None and self.wide != self._built_wide:
+        if self.screen is not None and (self.wide, self.roomy) != self._built_wide:
             Clock.schedule_once(lambda _dt: self._build(), 0)
 
     # -- steps
 
     def go(self, step: str) -> None:
         """Show another step."""
+        if step == "why" and self._ask():
+            return
         if self.screen is not None and step == self.step:
             step = self._before if step == "display" else step
         if step == "text":
@@ -114,13 +125,40 @@ class Shell(BoxLayout):
     def _open_step(self) -> None:
         self.work.clear_widgets()
         self.bar.current = self.step
-        self.screen = screen_class(self.step)(self.session, self.go)
-        self.page = Page(self.screen)
+        asking, self._asking = self._asking, None
+        if asking is not None and asking[0] == self.step:
+            _, self.screen, self.page = asking  # as it was left: scrolled, with its folds open
+            self.screen.show()
+        else:
+            self.screen = screen_class(self.step)(self.session, self.go)
+            self.page = Page(self.screen)
+            self._asking = asking if self.step == "why" else None
         self.work.add_widget(self.page)
+        self.aside = None
+        if self.roomy and self.screen.explains:
+            self.session.place["why"] = None
+            self.aside = screen_class("why")(self.session, lambda _step: self.aside.show())
+            line = Widget(size_hint_x=None, width=max(1, dp(1)))
+            paint_ground(line, theme.line)
+            self.work.add_widget(line)
+            self.work.add_widget(Page(self.aside, size_hint_x=None, width=dp(ASIDE_DP)))
         self._show_frame()
+
+    def _ask(self) -> bool:
+        """Answer beside the step where there is room (True); else keep the step as it is while the page is read."""
+        if self.step != "why":
+            self.session.place["why_from"] = self.step
+        if self.aside is not None:
+            self.aside.show()
+            return True
+        if self.step != "why":
+            self._asking = (self.step, self.screen, self.page)
+        return False
 
     def _show(self, *_: Any) -> None:
         self.screen.show()
+        if self.aside is not None:
+            self.aside.show()
         self._show_frame()
 
     def _show_frame(self) -> None:
@@ -145,6 +183,10 @@ class Shell(BoxLayout):
             self.go(STEPS[key - ord("1")].name)
             return True
         if key == 27:
+            if self.aside is not None and self.session.place.get("why") is not None:
+                self.session.place["why"] = None
+                self.aside.show()
+                return True
             if self.screen.escape():
                 return True
             if self.step not in [one.name for one in STEPS]:

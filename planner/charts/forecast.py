@@ -52,6 +52,13 @@ class Threshold:
     text: str
 
 
+@dataclass(frozen=True)
+class ForecastDrawing(Drawing):
+    """The drawing with where each row stands: (bottom, top) from the drawing's lower edge, in the order of the rows."""
+
+    rows: tuple[tuple[float, float], ...] = ()
+
+
 def lay_forecast(
     rows: Sequence[ForecastRow],
     thresholds: Sequence[Threshold],
@@ -64,7 +71,7 @@ def lay_forecast(
     tick_text: Callable[[float], str] = "{:g}".format,
     least_row: float = 0.0,
     label_share: float = LABEL_SHARE,
-) -> Drawing:
+) -> ForecastDrawing:
     """Lay the rows out below each other; the drawing's height follows from them.
 
     title stands at the upper left (what is shown, for which part), unit over the column of values. least_row: smallest
@@ -91,13 +98,15 @@ def lay_forecast(
     items.append(Text(unit, width, total - small * 0.75, small, "muted", "right"))
     y = total - head
     items.append(rule(0.0, y, width, y))
+    places = []
     for row, lines, height in zip(rows, laid, heights, strict=True):
         items += _row(row, lines, axis, y, height, width, text_size, small)
+        places.append((y - height, y))
         y -= height
         items.append(rule(0.0, y, width, y))
     items += _thresholds(thresholds, axis, y, total - head, small, measure)
     items += _tick_texts(axis, y - small * 0.9, small, measure, tick_text)
-    return Drawing(width, total, tuple(items))
+    return ForecastDrawing(width, total, tuple(items), tuple(places))
 
 
 def _axis(rows: Sequence[ForecastRow], thresholds: Sequence[Threshold], plot: tuple[float, float]) -> Axis:

@@ -40,9 +40,10 @@ Window.bind(on_flip=flip)
 """
 BARE = SIZE + END.format(condition="") + "from kivy.app import App\nfrom kivy.uix.widget import Widget\n"
 BARE += "A = type('A', (App,), {'build': lambda self: Widget()}); A().run()\n"
-FIRST = SIZE + END.format(condition="") + "import sys, pathlib\nfrom ui.app import PlannerApp\n"
+OURS = "from ui.__main__ import configure_window; configure_window()\n"
+FIRST = OURS + END.format(condition="") + "import sys, pathlib\nfrom ui.app import PlannerApp\n"
 FIRST += "PlannerApp(data_folder=pathlib.Path(sys.argv[1])).run()\n"
-USABLE = SIZE + END.format(condition="if not getattr(App.get_running_app(), 'cases', None): return").replace(
+USABLE = OURS + END.format(condition="if not getattr(App.get_running_app(), 'cases', None): return").replace(
     "import os, sys", "import os, sys\nfrom kivy.app import App"
 )
 USABLE += (
@@ -88,8 +89,9 @@ def on_screen() -> dict[str, tuple[float, float]]:
     sys.path.insert(0, str(ROOT))
     from kivy.config import Config
 
-    Config.set("graphics", "width", "390")
-    Config.set("graphics", "height", "844")
+    from ui.__main__ import configure_window
+
+    configure_window()
     Config.set("graphics", "maxfps", "0")
     from kivy.base import EventLoop
     from kivy.core.window import Window

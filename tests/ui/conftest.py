@@ -16,6 +16,7 @@ for provider in ("CLIPBOARD", "IMAGE", "TEXT", "WINDOW"):
 
 from kivy.config import Config  # noqa: E402
 
+Config.set("graphics", "multisamples", "0")  # as the app sets it
 # Made once, larger than every size a test asks for: SDL's offscreen surface cannot grow later.
 Config.set("graphics", "width", "1280")
 Config.set("graphics", "height", "1280")

@@ -89,10 +89,24 @@ def test_without_a_trip_nothing_can_be_decided_or_saved(planner, tmp_path, monke
         for words in ("Write this decision", "No oxygen here", "Turn-back readings", "On to the"):
             assert not driver.reads(words)
     go(driver, "papers")
-    driver.tap("Save the four papers")
-    assert driver.reads("Nothing saved: there is no trip yet.")
-    assert not list(tmp_path.rglob("*.pdf"))
+    assert driver.reads("There is no trip yet, so there is nothing to hand over.")
+    for words in ("Save the four papers", "Confirm this plan", "Preview"):
+        assert not driver.reads(words)
+    driver.tap("Enter the trip")
+    assert driver.app.shell.step == "trip"
     driver.close()
+
+
+def test_undecided_flows_keep_the_papers_drafts_and_the_way_to_decide_stands_beside_it(answered):
+    session = answered.app.session
+    session.set("decisions", session.case.decisions[1:])
+    settle(answered)
+    go(answered, "papers")
+    assert answered.reads("1 of the flows are not decided yet. Until then the papers are drafts")
+    assert not answered.reads("Confirm this plan")
+    assert answered.reads("Save the four papers")
+    answered.tap("Decide the flows")
+    assert answered.app.shell.step == "oxygen"
 
 
 def test_a_removed_part_takes_no_decision_while_the_plan_is_worked_out(answered):
@@ -257,10 +271,3 @@ def test_a_row_of_the_test_is_taken_back_and_all_is_there_after_leaving(answered
     assert len(answered.app.shell.screen.test.rows) == 2
     answered.tap(answered.app.shell.undo)
     assert len(answered.app.shell.screen.test.rows) == 3
-
-
-def test_how_a_number_was_worked_out_is_one_touch_away(answered):
-    go(answered, "forecast")
-    answered.tap("How was this worked out")
-    for words in ("Gong 1984", "Am Rev Respir Dis 1984"):
-        assert answered.reads(words)

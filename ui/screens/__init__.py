@@ -15,6 +15,8 @@ makes a bound entry for a path in the case; the range comes from the case model.
 `self.session.place` keeps where the person was. `escape()` may take Escape.
 
 Results never stand without the caution strip: the shell puts it at the foot of every step.
+A number that can be asked about stands in a `ui.widgets.why.Why` whose tap calls `ui.screens.why.ask`; the screen sets
+`explains = True`, so that a wide window keeps room for the answer beside it.
 The ribbon: `ui.screens.trip_ribbon.RibbonOfTrip(session)`, with a layer given by the step. Pictures of planner.charts
 other than the ribbon: `ui.widgets.ribbon.DrawingView`. Widgets: ui/widgets (buttons, choices, entries, notices, rows,
 text); units: ui/measures.py. Then add the screen to STEPS below; tests/ui/test_every_screen.py checks it from then on.
@@ -46,6 +48,7 @@ PAGES = (  # reached from elsewhere than the bar
     Step("display", "Display", "ui.screens.display:DisplayScreen"),
     Step("challenge", "Challenge test", "ui.screens.challenge:ChallengeScreen"),
     Step("text", "As text", "ui.screens.as_text:TextScreen"),
+    Step("why", "How was this worked out", "ui.screens.why:WhyScreen"),
 )
 
 

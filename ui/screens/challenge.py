@@ -15,12 +15,14 @@ from ui.screens.challenge_gases import GasEntries
 from ui.screens.challenge_live import PHASES, DuringTest
 from ui.screens.form import today
 from ui.screens.screen import Screen
+from ui.screens.why import ask
 from ui.theme import theme
 from ui.widgets.buttons import PlainButton, PrimaryButton, QuietButton
 from ui.widgets.notices import Notice
 from ui.widgets.ribbon import DrawingView
 from ui.widgets.rows import Fold, ListRow, Side, Stack
 from ui.widgets.text import plain, strong
+from ui.widgets.why import Why
 
 METHODS = (
     ("mask", "Mask"),
@@ -44,6 +46,7 @@ class ChallengeScreen(Screen):
 
     step = "challenge"
     question = "What did the challenge test show?"
+    explains = True
 
     def build(self) -> None:
         """The reading first, then the plan, the record and the gases."""
@@ -102,7 +105,8 @@ class ChallengeScreen(Screen):
             f"For {shown.with_unit(altitude)}: {strong(f'{100 * plan.fio2:.1f} %')} oxygen, {plan.duration_min:g} min. "
             f"15 % here would simulate {shown.with_unit(plan.usual_fio2_simulates_m)}. {plain(plan.stop_rule)}"
         )
-        self.reading.add_widget(Notice(words, "note", title="In this laboratory."))
+        notice = Notice(words, "note", title="In this laboratory.")
+        self.reading.add_widget(Why(notice, lambda: ask(self.session, self.go, "mixture")))
 
     def _show_reading(self, test: Any) -> None:
         from planner.guidance.challenge import read_challenge
@@ -110,7 +114,8 @@ class ChallengeScreen(Screen):
         read = read_challenge(test, self.session.case.policy)
         if test.rows or test.gases:
             kind = "caution" if read.below_threshold or read.below_threshold is None else "note"
-            self.reading.add_widget(Notice(plain(f"{read.headline} {read.band_text}"), kind, title="The reading."))
+            notice = Notice(plain(f"{read.headline} {read.band_text}"), kind, title="The reading.")
+            self.reading.add_widget(Why(notice, lambda: ask(self.session, self.go, "challenge")))
         if read.acidosis_on_oxygen:
             self.reading.add_widget(Notice(plain(read.acidosis_text), "stop", title="Acidosis on oxygen."))
         for sentence in read.warnings:

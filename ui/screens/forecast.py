@@ -11,11 +11,13 @@ from ui.screens.guidance import GuidanceFolds
 from ui.screens.result_screen import ResultScreen
 from ui.screens.screen import GREY
 from ui.screens.trip_ribbon import value_at
+from ui.screens.why import ask
+from ui.theme import target
 from ui.widgets.buttons import PlainButton, PrimaryButton
 from ui.widgets.notices import Notice
-from ui.widgets.ribbon import DrawingView
-from ui.widgets.rows import Fold, Stack
+from ui.widgets.rows import Stack
 from ui.widgets.text import Text, plain, strong
+from ui.widgets.why import Why, WhyRows
 
 VERDICT_WORDS = {"likely below": "Likely below", "uncertain": "Uncertain", "likely above": "Likely above"}
 AGREEMENT_WORDS = {
@@ -32,21 +34,19 @@ class ForecastScreen(ResultScreen):
 
     step = "forecast"
     question = "What happens to the blood?"
+    explains = True
 
     def build_results(self) -> None:
-        """Verdict, methods, other activities, what would narrow it, guidance, how it was worked out."""
+        """Verdict, methods, this lung in each activity, the air, what would narrow it, guidance."""
         self.verdict = Text("", role="lead")
-        self.chart = DrawingView()
+        self.chart = WhyRows(self._ask_method)
         self.others = Stack(gap=0)
         self.narrow = Text("", tone="muted")
         self.notes = Stack(gap=2)
         self.guidance = GuidanceFolds(self.session)
-        self.worked_out = Fold(
-            "How was this worked out", "Formula, inputs and source of each method", self._fill_methods
-        )
         self.test = PlainButton("Hypoxic challenge test", lambda: self.go("challenge"))
-        self.put(self.verdict, self.chart, self.others, self.narrow, self.notes)
-        self.put(self.test, self.guidance, self.worked_out)
+        self.put(Why(self.verdict, lambda: self._ask("verdict")), self.chart, self.others, self.narrow, self.notes)
+        self.put(self.test, self.guidance)
         self.put(PrimaryButton("On to the oxygen", lambda: self.go("oxygen")))
 
     @property
@@ -95,18 +95,20 @@ class ForecastScreen(ResultScreen):
         rest = forecast.activities[0] if forecast is not None else None
         self.verdict.text = self._verdict(part, rest)
         self.chart.show(None if rest is None else lambda **size: self._lay(part, rest, **size))
-        if rest is None:
-            self.chart.height = 0
-        self._show_others(forecast)
+        self._show_others(part)
         if plan.through != "forecast":
             self.narrow.text = self._narrowing(plan)
         self._show_notes(plan, forecast)
         self.guidance.show_plan(plan)
-        if self.worked_out.open:
-            self.worked_out.body.clear_widgets()
-            self._fill_methods(self.worked_out.body)
 
     # -- inside
+
+    def _ask(self, kind: str, item: str = "") -> None:
+        if self.part is not None:
+            ask(self.session, self.go, kind, self.part.span.part_id, item)
+
+    def _ask_method(self, index: int) -> None:
+        self._ask("method", self.part.forecast.activities[0].predictors[index].predictor_id)
 
     def _verdict(self, part: Any, rest: Any) -> str:
         if rest is None:
@@ -132,6 +134,7 @@ class ForecastScreen(ResultScreen):
             title=f"PaO₂ in {part.span.name}, at rest on air",
             unit=shown.unit,
             tick_text=lambda value: measures.number_text(value, shown.decimals),
+            least_row=target(),
             **size,
         )
 
@@ -142,8 +145,10 @@ class ForecastScreen(ResultScreen):
         text = "–" if one.pao2_mmhg is None else shown.text(one.pao2_mmhg)
         return ForecastRow(one.label, detail, *values, text, kind if one.applies else "not applicable")
 
-    def _show_others(self, forecast: Any) -> None:
+    def _show_others(self, part: Any) -> None:
+        """This lung in each activity, and the air it breathes."""
         self.others.clear_widgets()
+        forecast = part.forecast
         shown = measures.pressure(self.session.case.display.pressure)
         for one in forecast.activities if forecast is not None else ():
             if one.spo2 is None or one.pao2_mmhg is None:
@@ -153,9 +158,12 @@ class ForecastScreen(ResultScreen):
             pao2 = f"PaO₂ {shown.with_unit(middle.median)} ({shown.text(middle.low)} to {shown.text(middle.high)})"
             if one.below_model_range:
                 spo2, pao2 = "below model range", "Most of the spread lies below what the model covers."
-            self.others.add_widget(
-                Text(f"{strong(ACTIVITY_WORDS[one.activity])}, this lung: SpO₂ {strong(spo2)}, {pao2}")
-            )
+            words = Text(f"{strong(ACTIVITY_WORDS[one.activity])}, this lung: SpO₂ {strong(spo2)}, {pao2}")
+            self.others.add_widget(Why(words, lambda activity=one.activity: self._ask("blood", activity)))
+        inspired = part.span.lowest_inspired_po2_mmhg
+        if inspired is not None:
+            words = Text(f"{strong('Air')} at the worst moment: inspired PO₂ {strong(shown.with_unit(inspired))}")
+            self.others.add_widget(Why(words, lambda: self._ask("air")))
 
     def _narrowing(self, plan: Any) -> str:
         if not plan.narrowing:
@@ -177,24 +185,3 @@ class ForecastScreen(ResultScreen):
                 self.notes.add_widget(Notice(plain(note.text), "caution"))
         for sentence in plan.lung.widened if plan.lung is not None else ():
             self.notes.add_widget(Notice(plain(sentence), "note", title="Wider spread."))
-
-    def _fill_methods(self, body: Any) -> None:
-        part = self.part
-        if part is None or part.forecast is None:
-            body.add_widget(Text("There is nothing worked out for this part yet.", tone="muted"))
-            return
-        for one in part.forecast.activities[0].predictors:
-            lines = [
-                plain(one.formula),
-                "Inputs: " + ("; ".join(plain(f"{name} {value}") for name, value in one.inputs) or "none"),
-                "Made from: " + plain(one.population),
-                "Source: " + plain(one.source),
-                *(plain(reason) for reason in one.reasons),
-            ]
-            body.add_widget(
-                Stack(
-                    Text(f"{strong(plain(one.label))}, {plain(one.detail)}"),
-                    Text("\n".join(lines), role="label", tone="muted"),
-                    gap=1,
-                )
-            )

@@ -12,6 +12,7 @@ from ui import measures
 from ui.screens.decide import DecideForm
 from ui.screens.forecast import ACTIVITY_WORDS
 from ui.screens.result_screen import ResultScreen
+from ui.screens.why import ask
 from ui.theme import theme
 from ui.widgets.buttons import PrimaryButton
 from ui.widgets.choices import Choice
@@ -20,6 +21,7 @@ from ui.widgets.ribbon import DrawingView
 from ui.widgets.rows import ListRow, Side, Stack
 from ui.widgets.text import Text, plain, strong
 from ui.widgets.typing import date_text
+from ui.widgets.why import Why
 
 CHART_SP = 230
 
@@ -29,6 +31,7 @@ class OxygenScreen(ResultScreen):
 
     step = "oxygen"
     question = "Which flow, and who decided?"
+    explains = True
 
     def build_results(self) -> None:
         """Activity, risk, dose view, the three answers, the decision, the table."""
@@ -100,6 +103,10 @@ class OxygenScreen(ResultScreen):
 
     # -- inside
 
+    def _ask(self, kind: str) -> None:
+        if self.part is not None:
+            ask(self.session, self.go, kind, self.part.span.part_id, self.activity)
+
     def _choose(self, activity: str) -> None:
         self.activity = activity
         self.session.place["activity"] = activity
@@ -155,19 +162,17 @@ class OxygenScreen(ResultScreen):
                 )
                 or "no name"
             )
-        for heading, value, below, tone in (
-            ("Pathway", rule, source, "ink"),
-            ("Model", model, reach, "ink"),
-            ("Decided", amount, who, "data"),
-        ):
-            self.answers.add_widget(
-                Stack(
-                    Text(heading, role="label", tone="muted"),
-                    Text(strong(plain(value)), role="lead", tone=tone),
-                    Text(plain(below), role="label", tone="muted"),
-                    gap=0.5,
-                )
+        cells = [("model", "Model", model, reach, "ink"), ("decided", "Decided", amount, who, "data")]
+        if rule:
+            cells.insert(0, ("rule", "Pathway", rule, source, "ink"))
+        for kind, heading, value, below, tone in cells:
+            words = Stack(
+                Text(heading, role="label", tone="muted"),
+                Text(strong(plain(value)), role="lead", tone=tone),
+                Text(plain(below), role="label", tone="muted"),
+                gap=0.5,
             )
+            self.answers.add_widget(Why(words, lambda kind=kind: self._ask(kind)))
 
     def _show_risk(self, plan: Any) -> None:
         self.risk.clear_widgets()
@@ -179,7 +184,7 @@ class OxygenScreen(ResultScreen):
         words = f"{target} {' '.join(risk.reasons)}"
         if risk.test_on_oxygen_advised:
             words += " Test on oxygen advised."
-        self.risk.add_widget(Notice(plain(words), "caution", title=title))
+        self.risk.add_widget(Why(Notice(plain(words), "caution", title=title), lambda: self._ask("target")))
 
     def _show_said(self, titration: Any, decided: Any) -> None:
         self.said.clear_widgets()
@@ -246,7 +251,7 @@ def _curve(titration: Any, decided: Any) -> Any:
 
 
 def _rule(case: Any, plan: Any) -> tuple[str, str]:
-    """The flow of the first pathway that names one, and where it is from."""
+    """The flow of the first pathway that names one, and where it is from; "" where none does."""
     from planner.delivery.target import rule_amount
 
     prescribed = case.prescription
@@ -254,14 +259,17 @@ def _rule(case: Any, plan: Any) -> tuple[str, str]:
     if prescribed.uses_oxygen is False:
         usual = 0.0
     for result in plan.pathways:
-        if result.flow_rule is not None:
-            amount, _ = rule_amount(result.flow_rule.kind, result.flow_rule.l_min, usual)
-            if result.flow_rule.kind == "fixed":
-                return f"{result.flow_rule.l_min:g} L/min", result.title
-            shown = f"{amount:g} L/min" if amount is not None else "–"
-            unknown = "; no usual flow at rest is entered" if usual is None else ""
-            return shown, f"{result.title}: usual + {result.flow_rule.l_min:g} L/min{unknown}"
-    return "–", "no pathway names a flow"
+        rule = result.flow_rule
+        if rule is None:
+            continue
+        amount, _ = rule_amount(rule.kind, rule.l_min, usual)
+        if rule.kind == "fixed":
+            return f"{rule.l_min:g} L/min", result.title
+        words = f"usual + {rule.l_min:g} L/min"
+        if usual is None:
+            return words, "no usual flow is entered"
+        return (words, "above 4 L/min") if amount is None else (f"{amount:g} L/min", words)
+    return "", ""
 
 
 def _reach(titration: Any, policy: Any) -> str:

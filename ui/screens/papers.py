@@ -56,23 +56,50 @@ class PapersScreen(Screen):
         self.halves = Choice("Pages", HALVES, "", self.frame.show_half)
         self.where = Fold("Save to another folder", str(self.folder), self._fill_folder)
         self.saved = Text("", tone="muted")
-        self.put(self.state, self.confirmation, self.holds, self.choice, self.halves, self.frame, self.where)
-        self.put(PrimaryButton("Save the four papers", self._save), self.saved)
-        self.put(PlainButton("Open the folder to print or send", self._open))
+        self.confirming, self.there = Stack(), Stack()
+        save = PrimaryButton("Save the four papers", self._save)
+        opens = PlainButton("Open the folder to print or send", self._open)
+        self.papers = Stack(
+            self.confirming,
+            self.holds,
+            self.choice,
+            self.halves,
+            self.frame,
+            self.where,
+            save,
+            self.saved,
+            opens,
+            gap=5,
+        )
+        self.put(self.state, self.there)
         self._laid: Any = None
 
     def refresh(self) -> None:
         """Show the state and the preview of the plan as it is."""
         plan = self.session.plan
         self.state.clear_widgets()
+        self.there.hold(self.papers if plan is not None and plan.parts else None)
         if plan is None:
             self.state.add_widget(Text("The plan is being worked out."))
             return
-        kind = {"Draft": "caution", "Flows decided": "note", "Confirmed": "good"}[plan.state]
-        self.state.add_widget(Notice(plain(plan.state_reason), kind, title=f"{plan.state}."))
+        self.state.add_widget(self._state_of(plan))
+        self.confirming.hold(None if plan.state == "Draft" else self.confirmation)
         self.confirm.disabled = plan.state == "Draft" or self.session.stale
-        self._show_preview(plan)
-        self.grey(self.preview)
+        if plan.parts:
+            self._show_preview(plan)
+            self.grey(self.preview)
+
+    def _state_of(self, plan: Any) -> Notice:
+        """The state with its reason, and the way to what is missing."""
+        if not plan.parts:
+            words = "There is no trip yet, so there is nothing to hand over."
+            return Notice(words, "caution", title="Draft.", actions=(("Enter the trip", lambda: self.go("trip")),))
+        kind = {"Draft": "caution", "Flows decided": "note", "Confirmed": "good"}[plan.state]
+        way = (("Decide the flows", lambda: self.go("oxygen")),) if plan.state == "Draft" else ()
+        words = plan.state_reason
+        if plan.state == "Draft":
+            words += " Until then the papers are drafts and cannot be confirmed."
+        return Notice(plain(words), kind, title=f"{plan.state}.", actions=way)
 
     # -- inside
 
@@ -132,9 +159,6 @@ class PapersScreen(Screen):
         plan = self.session.shown_plan
         if plan is None:
             self.saved.text = "The plan is being worked out; try again in a moment."
-            return
-        if not plan.parts:
-            self.saved.text = "Nothing saved: there is no trip yet. Enter one first."
             return
         folder = self.folder
         try:

@@ -24,6 +24,7 @@ class Prescribed:
     def __init__(self, session: Any) -> None:
         self.session = session
         self._chosen: dict[str, str] = {}
+        self._devices = load_devices()
 
     def signature(self) -> Any:
         """The group is made again when this changes: whether oxygen is used, and the device of each activity."""
@@ -34,7 +35,7 @@ class Prescribed:
         if self.session.case.prescription.uses_oxygen is not True:
             return
         group.add_widget(Side(*(self._amount(form, name, label) for name, label in ACTIVITIES), least_sp=110))
-        names = {load_devices()[self._device_id(name)].name for name, _ in ACTIVITIES}
+        names = {self._devices[self._device_id(name)].name for name, _ in ACTIVITIES}
         summary = names.pop() if len(names) == 1 else "Not the same for all"
         devices = Fold("By which device", summary, lambda body: self._fill_devices(body))
         if self.session.place.get("devices open"):
@@ -49,10 +50,10 @@ class Prescribed:
     def _device_id(self, name: str) -> str:
         line = self._line(name)
         device_id = line.device_id if line is not None else self._chosen.get(name, DEVICE)
-        return device_id if device_id in load_devices() else DEVICE
+        return device_id if device_id in self._devices else DEVICE
 
     def _field(self, name: str) -> str:
-        return "setting" if load_devices()[self._device_id(name)].unit == "setting" else "flow_l_min"
+        return "setting" if self._devices[self._device_id(name)].unit == "setting" else "flow_l_min"
 
     def _amount(self, form: Form, name: str, label: str) -> NumberEntry:
         field = self._field(name)
@@ -76,7 +77,7 @@ class Prescribed:
         for name, label in ACTIVITIES:
             usable = [
                 (device.id, device.name)
-                for device in load_devices().values()
+                for device in self._devices.values()
                 if device.supply != "airline" and name in device.activities
             ]
             body.add_widget(Choice(label, usable, self._device_id(name), lambda value, n=name: self._choose(n, value)))
@@ -86,7 +87,7 @@ class Prescribed:
         before, line = self._field(name), self._line(name)
         amount = getattr(line, before) if line is not None else None
         self._chosen[name] = device_id
-        same_unit = (load_devices()[device_id].unit == "setting") == (before == "setting")
+        same_unit = (self._devices[device_id].unit == "setting") == (before == "setting")
         made = PrescribedOxygen(device_id=device_id, **{before: amount}) if same_unit and amount is not None else None
         self.session.choose(f"prescription.{name}", made, f"the device, {dict(ACTIVITIES)[name].lower()}")
         self.session.show_again()

@@ -20,6 +20,7 @@ class Screen(BoxLayout):
 
     step: ClassVar[str] = ""
     question: ClassVar[str] = ""
+    explains: ClassVar[bool] = False  # its numbers can be asked about
 
     def __init__(self, session: Any, go: Callable[[str], None]) -> None:
         super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(5))

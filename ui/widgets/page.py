@@ -37,6 +37,7 @@ class Page(ScrollView):
         self._holder.add_widget(self._column)
         self.add_widget(self._holder)
         self.bind(width=self._fit)
+        self._fit()
 
     def _fit(self, *_: Any) -> None:
         self._column.width = min(self.width, dp(WORK_WIDTH_DP))
