@@ -36,6 +36,7 @@ from planner.charts.timescale import LONG_MIN, TimeScale, time_scale
 SILHOUETTE_SHARE = 0.72  # of the plot's height, for the highest point
 LEAST_PEAK_M = 1500.0  # a trip over flat ground is drawn flat
 LABEL_GAP = 5.0
+DAY_MIN = 1440.0
 READ_TOLERANCE_MIN = 1e-6
 
 
@@ -146,12 +147,14 @@ def lay_ribbon(
     altitude_text: Callable[[float], str] | None = None,
     unknown_text: str = "?",
     shortened_text: str = "",
+    day_text: Callable[[int], str] | None = None,
 ) -> Ribbon:
     """Lay out the ribbon of a trip with at least one part.
 
     minutes and altitude_m have shape (points,), NaN where the altitude is not known: there a pale box with unknown_text
-    stands. altitude_text(m), where there is no layer, writes each plateau's height. shortened_text is put at the lower
-    left where any part is shortened. Nothing reaches outside width and height, and no two labels overlap.
+    stands. day_text(n) names the days of a stay, where there is room for them. altitude_text(m), where there is no
+    layer, writes each plateau's height. shortened_text is put at the lower left where any part is shortened. Nothing
+    reaches outside width and height, and no two labels overlap.
     """
     line = text_size * 1.35
     has_clock = any(part.start_text for part in parts)
@@ -173,7 +176,7 @@ def lay_ribbon(
         items += _heights(scale, parts, minutes, altitude_m, altitude_axis, text_size, measure, altitude_text)
     if layer is not None and axis is not None:
         items += _layer(layer, axis, scale, ticks, gutter, right, text_size, measure, top + text_size)
-    items += _part_axis(scale, parts, bottom, text_size, line, measure)
+    items += _part_axis(scale, parts, bottom, text_size, line, measure, day_text)
     if says_short:
         items.append(Text(shortened_text, gutter, line * 0.5, text_size * 0.9, "muted"))
     return Ribbon(
@@ -298,17 +301,39 @@ def _band(x: Array, low: Array, high: Array, role: Role) -> Band:
     return Band(x[keep], low[keep], high[keep], role)
 
 
+def _days(
+    scale: TimeScale, part: RibbonPart, bottom: float, label_y: float, size: float, measure: Measure,
+    day_text: Callable[[int], str],
+) -> list[Item]:  # fmt: skip
+    """A tick at each day of a long stay and the days' names, where each has the room; else nothing."""
+    days = int(np.ceil(part.duration_min / DAY_MIN))
+    edges = np.minimum(part.start_min + DAY_MIN * np.arange(days + 1), part.start_min + part.duration_min)
+    x = scale.of(edges)
+    names = [day_text(number + 1) for number in range(days)]
+    room = float(x[1] - x[0]) - 2 * LABEL_GAP
+    if days < 2 or max(measure(name, size) for name in names) > room:
+        return []
+    items: list[Item] = [rule(float(one), bottom, float(one), bottom + 4.0, "muted", 0.8) for one in x[1:-1]]
+    for name, left, right in zip(names, x[:-1], x[1:], strict=True):
+        if measure(name, size) <= right - left - LABEL_GAP:
+            items.append(Text(name, float(left + right) / 2, label_y, size, "muted", "middle"))
+    return items
+
+
 def _part_axis(
-    scale: TimeScale, parts: Sequence[RibbonPart], bottom: float, size: float, line: float, measure: Measure
-) -> list[Item]:
+    scale: TimeScale, parts: Sequence[RibbonPart], bottom: float, size: float, line: float, measure: Measure,
+    day_text: Callable[[int], str] | None,
+) -> list[Item]:  # fmt: skip
     items: list[Item] = [rule(float(scale.x[0]), bottom, float(scale.x[-1]), bottom, "muted", 0.8)]
     items += [rule(float(x), bottom, float(x), bottom - 4.0, "muted", 0.8) for x in scale.x]
     label_y = bottom - line * 0.75
     last_right = -np.inf
     for number, part in enumerate(parts):
         x0, x1 = float(scale.x[number]), float(scale.x[number + 1])
+        days = [] if day_text is None else _days(scale, part, bottom, label_y, size, measure, day_text)
+        items += days
         words = fitting((*part.labels, str(number + 1)), size, x1 - x0 - 3.0, measure)
-        if words:
+        if words and not days:
             items.append(Text(words, (x0 + x1) / 2, label_y, size, "muted", "middle"))
         if scale.shortened[number]:
             middle = (x0 + x1) / 2

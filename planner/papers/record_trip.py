@@ -123,7 +123,7 @@ def _table(flow: Flow, desk: Desk) -> None:
         sources = ", ".join(say(f"words.source.{source}") for source in part.sources) or say("trip.sources_unknown")
         allowed = say("trip.allowed_value", sources=sources, power=say(f"words.power.{part.power or 'unknown'}"))
         height = height_text(desk, span.part_id)
-        name = "\n".join([desk.part_name(span.part_id), *span.unknown])
+        name = "\n".join([desk.part_name(span.part_id), *span.unknown, *span.doubts])
         rows.append(Row((name, starts, q.duration(span.duration_min), capital(height), air, capital(allowed))))
     flow.table(columns, rows)
     _measured_cabins(flow, desk)

@@ -69,9 +69,9 @@ def sample_delays(
             own = rng.standard_normal(draws)
             place = _normal_share(np.sqrt(COMMON_SHARE) * common + np.sqrt(1.0 - COMMON_SHARE) * own)
             waits[:, number] = _flight_wait(span, part, place, rng)
-            longer[:, number] = _diverted(rng, draws)
+            longer[:, number] = _en_route(rng, draws) + _diverted(rng, draws)
         elif span.kind in MOVING:
-            longer[:, number] = _ground_longer(span, rng, draws)
+            longer[:, number] = _ground_longer(span, common, rng, draws)
     return waits, longer
 
 
@@ -105,10 +105,17 @@ def _diverted(rng: np.random.Generator, draws: int) -> Array:
     return result
 
 
-def _ground_longer(span: PartSpan, rng: np.random.Generator, draws: int) -> Array:
+def _en_route(rng: np.random.Generator, draws: int) -> Array:
+    """Minutes that the flight itself takes longer than scheduled; often it takes less."""
+    entry = _entry("flight")
+    return np.asarray(entry["en_route_mean_min"] + entry["en_route_sd_min"] * rng.standard_normal(draws))
+
+
+def _ground_longer(span: PartSpan, common: Array, rng: np.random.Generator, draws: int) -> Array:
     entry = _entry("ground")
     log_sd = np.sqrt(np.log(1.0 + entry["spread"] ** 2))
-    longer: Array = span.duration_min * np.expm1(log_sd * rng.standard_normal(draws))
+    place = np.sqrt(COMMON_SHARE) * common + np.sqrt(1.0 - COMMON_SHARE) * rng.standard_normal(draws)
+    longer: Array = span.duration_min * np.expm1(log_sd * place)
     hours = rng.uniform(entry["closed_min_h"], entry["closed_max_h"], draws)
     closed: Array = np.where(rng.random(draws) < entry["closed"], 60.0 * hours, 0.0)
     result: Array = longer + closed

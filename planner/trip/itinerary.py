@@ -42,6 +42,7 @@ class PartSpan:
     hours_at_altitude: float
     shares: dict[Activity, float]
     unknown: tuple[str, ...]
+    doubts: tuple[str, ...] = ()  # what may be wrong with its clock, as sentences
 
 
 @dataclass(frozen=True, eq=False)
@@ -78,7 +79,8 @@ def lay_out(trip: Trip, policy: Policy) -> Timeline:
         pressure = _where_known(isa_pressure_mmhg if flight else mountain_pressure_mmhg, altitude)
         hours = _hours_high(at, altitude, hours_high, counted=not flight)
         ends = None if clock is None else _end_of(part, clock)
-        spans.append(_span(part, now_min, clock, ends, altitude, pressure, hours, unknown))
+        doubts = _clock_doubts(part, clock, ends)
+        spans.append(_span(part, now_min, clock, ends, altitude, pressure, hours, unknown, doubts))
         minutes.append(now_min + at)
         altitudes.append(altitude)
         pressures.append(pressure)
@@ -193,7 +195,10 @@ def _ground_corners(part: Part) -> list[float]:
 
 
 def _hours_high(at: Array, altitude: Array, before: float, *, counted: bool) -> Array:
-    """Hours spent above 1500 m on the ground up to each moment; a cabin is acute, and going down ends it."""
+    """Hours spent above 1500 m on the ground up to each moment.
+
+    Below 1500 m they start again from 0, at once: what acclimatisation may be left is not counted on. A cabin is acute.
+    """
     if not counted:
         return np.zeros(at.size)
     step = np.diff(at, prepend=at[0]) / 60.0
@@ -214,6 +219,7 @@ def _span(
     pressure: Array,
     hours: Array,
     unknown: tuple[str, ...],
+    doubts: tuple[str, ...],
 ) -> PartSpan:
     known = not np.isnan(altitude).any()
     worst = int(np.argmin(pressure)) if known else 0
@@ -233,6 +239,7 @@ def _span(
         hours_at_altitude=float(hours[worst]),
         shares={"rest": part.shares.rest, "walking": part.shares.walking, "asleep": part.shares.asleep},
         unknown=unknown,
+        doubts=doubts,
     )
 
 
@@ -248,6 +255,34 @@ def _end_of(part: Part, starts: datetime) -> datetime:
     place = by_id(part.destination_place_id) if part.destination_place_id else None
     zone = _zone(part.zone_at_end or (place.zone if place else None))
     return ends.astimezone(zone or starts.tzinfo)
+
+
+def _clock_doubts(part: Part, starts: datetime | None, ends: datetime | None) -> tuple[str, ...]:
+    """Where the clock that was entered is not that of the airports, by the hours it differs at that moment."""
+    if starts is None or ends is None:
+        return ()
+    doubts = []
+    if part.zone_at_end and _zone(part.zone_at_end) is None:
+        doubts.append(f"There is no time zone {part.zone_at_end!r}; the clock before {_named(part)} goes on.")
+    for moment, place_id, verb in (
+        (starts, part.origin_place_id, "leaves"),
+        (ends, part.destination_place_id, "reaches"),
+    ):
+        place = by_id(place_id) if place_id else None
+        zone = _zone(place.zone) if place is not None else None
+        if place is None or zone is None:
+            continue
+        there = moment.astimezone(zone)
+        if there.utcoffset() != moment.utcoffset():
+            doubts.append(
+                f"{_named(part)} {verb} {place.city or place.name} at {there:%H:%M} by the clock there, but at "
+                f"{moment:%H:%M} by the time zone entered; check the zone."
+            )
+    return tuple(doubts)
+
+
+def _named(part: Part) -> str:
+    return part.name or part.kind
 
 
 def _zone(name: str | None) -> ZoneInfo | None:

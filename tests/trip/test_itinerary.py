@@ -204,3 +204,37 @@ def test_parts_follow_one_another_and_time_adds_up(parts):
     for before, after in zip(trip.parts, trip.parts[1:], strict=False):
         assert after.start_min == pytest.approx(before.start_min + before.duration_min)
     assert np.isfinite(trip.inspired_po2_mmhg).all()
+
+
+LEAVES = {"departs_at": "2026-12-01T08:00:00", "departure_zone": "Europe/Amsterdam"}
+
+
+def test_a_time_zone_that_is_not_the_airports_is_said():
+    right = laid(FLIGHT, **LEAVES).parts[0]
+    assert right.doubts == ()
+    landed = laid(FLIGHT | {"zone_at_end": "Europe/London"}, **LEAVES).parts[0]
+    assert landed.doubts == (
+        "flight reaches Madrid at 11:00 by the clock there, but at 10:00 by the time zone entered; check the zone.",
+    )
+    left = laid(FLIGHT, **(LEAVES | {"departure_zone": "America/New_York"})).parts[0]
+    assert "leaves Amsterdam at 14:00 by the clock there, but at 08:00" in left.doubts[0]
+
+
+def test_a_zone_of_another_name_with_the_same_clock_is_no_doubt():
+    assert laid(FLIGHT | {"zone_at_end": "Europe/Berlin"}, **LEAVES).parts[0].doubts == ()
+
+
+def test_a_zone_that_does_not_exist_is_said_and_the_clock_goes_on():
+    part = laid(FLIGHT | {"destination_place_id": None, "zone_at_end": "Europe/Nowhere"}, **LEAVES).parts[0]
+    assert "There is no time zone 'Europe/Nowhere'" in part.doubts[0]
+    assert f"{part.ends_at:%H:%M}" == "11:00"
+
+
+def test_going_down_ends_acclimatisation_and_a_flight_does_not_count():
+    up = {"kind": "stay", "duration_min": 2880, "start_elevation_m": 2500.0, "end_elevation_m": 2500.0}
+    low = {"part_id": "low", "kind": "stay", "duration_min": 120, "start_elevation_m": 400.0, "end_elevation_m": 400.0}
+    trip = laid(up | {"part_id": "a"}, low, up | {"part_id": "b"})
+    hours = [trip.hours_at_altitude[trip.part_index == part] for part in range(3)]
+    assert hours[0][-1] == pytest.approx(48.0)
+    assert not hours[1].any()
+    assert hours[2][0] == 0.0

@@ -113,6 +113,22 @@ class Driver:
         EventLoop.post_dispatch_input("end", touch)
         self.frames(3)
 
+    def pinch(self, start: tuple[float, float], end: tuple[float, float], by: float, steps: int = 6) -> None:
+        """Two fingers put down at two places and moved apart along x by so much, half of it each."""
+        touches = [Touch(*start), Touch(*end)]
+        for touch in touches:
+            EventLoop.post_dispatch_input("begin", touch)
+            self.frames(1)
+        for step in range(1, steps + 1):
+            moved = 0.5 * by * step / steps
+            for touch, (x, y), sign in zip(touches, (start, end), (-1, 1), strict=True):
+                touch.move(place(x + sign * moved, y))
+                EventLoop.post_dispatch_input("update", touch)
+            self.frames(1)
+        for touch in touches:
+            EventLoop.post_dispatch_input("end", touch)
+        self.frames(3)
+
     def type(self, text: str) -> None:
         for character in text:
             Window.dispatch("on_key_down", ord(character), 0, character, [])

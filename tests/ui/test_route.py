@@ -1,5 +1,7 @@
 """Altitudes that the Trip step takes from elsewhere: a recorded route, and an airport the data do not know well."""
 
+import pytest
+
 from tests.trip.test_track import gpx
 
 
@@ -54,3 +56,99 @@ def test_an_airport_without_elevation_in_the_data_is_asked_for_and_a_new_airport
     driver.frames(6)
     assert driver.app.session.case.trip.parts[2].end_elevation_m is None
     assert not [one for one in driver.widgets() if getattr(one, "label", "") == "Elevation of the airport reached"]
+
+
+def test_two_fingers_zoom_the_ribbon_and_read_nothing_else(demo):
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    plot = demo.app.shell.screen.ribbon.plot
+    x, y = plot.to_window(plot.center_x, plot.center_y)
+    demo.pinch((x - 40, y), (x + 40, y), by=160)
+    assert plot.zoom == pytest.approx(3.0, rel=0.05)
+    read = plot.minute
+    demo.pinch((x - 120, y), (x + 120, y), by=-200)
+    assert plot.zoom == 1.0
+    demo.drag((x, y), (x + 30, y))
+    assert plot.minute != read  # one finger reads again
+
+
+def test_the_days_of_a_stay_are_named_where_the_ribbon_is_zoomed_in(demo):
+    demo.app.shell.go("forecast")
+    demo.frames(8)
+    ribbon = demo.app.shell.screen.ribbon
+    stay = next(span for span in demo.app.session.timeline.parts if span.kind == "stay")
+    assert not [text for text in ribbon.plot.ribbon.drawing.texts() if text.text == "day 2"]
+    ribbon.plot.minute = stay.start_min + 1.5 * 1440
+    demo.frames(6)
+    assert demo.reads(", day 2 of 4")
+    for _ in range(6):
+        ribbon.plot.zoom_by(1.5)
+    demo.frames(8)
+    names = [text.text for text in ribbon.plot.ribbon.drawing.texts() if text.text.startswith("day ")]
+    assert names[:3] == ["day 1", "day 2", "day 3"]
+
+
+@pytest.mark.parametrize(
+    ("row", "field", "typed", "path", "said"),
+    [
+        ("3 · Flight 1", "Gate to gate", "100 h", "duration_min", "up to 1 d 6 h"),
+        ("3 · Flight 1", "Cabin altitude", "-20", "cabin_altitude_m", "0 to 4"),
+        ("3 · Flight 1", "Cabin altitude", "9000", "cabin_altitude_m", "0 to 4"),
+        ("1 · Road over the pass", "Highest point on the way", "9000", "highest_m", "8"),
+    ],
+)
+def test_what_cannot_be_is_said_beside_the_field_and_what_was_typed_stays(demo, row, field, typed, path, said):
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    demo.tap(row)
+    index = int(row.split(" ")[0]) - 1
+    before = getattr(demo.app.session.case.trip.parts[index], path)
+    entry = demo.field(field)
+    demo.fill(entry, typed)
+    demo.frames(4)
+    assert getattr(demo.app.session.case.trip.parts[index], path) == before
+    assert entry.input.text == typed
+    assert any(said in text for text in _texts(entry)), _texts(entry)
+
+
+def _texts(widget):
+    return [one.text for one in widget.walk() if getattr(one, "text", "")]
+
+
+def test_an_unknown_airport_is_not_taken(demo):
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    demo.tap("3 · Flight 1")
+    demo.fill(demo.field("To"), "Nowhereville")
+    demo.frames(4)
+    assert demo.field("To").input.text == "Nowhereville"
+    assert demo.reads("Nothing is found by these letters.")
+    assert demo.app.session.case.trip.parts[2].destination_place_id is None
+    assert demo.reads("The elevation where Flight 1 lands is not known; enter the airport.")
+
+
+def test_cold_in_a_part_is_typed_where_its_oxygen_is_chosen(demo):
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    demo.tap("2 · Check-in and wait")
+    demo.tap("Oxygen and power here")
+    demo.fill(demo.field("Cylinders and batteries at"), "-5")
+    assert demo.app.session.case.trip.parts[1].equipment_c == -5.0
+
+
+def test_a_part_is_turned_round_by_touch(demo):
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    demo.tap("3 · Flight 1")
+    part = demo.app.session.case.trip.parts[2]
+    demo.tap("Turn round")
+    turned = demo.app.session.case.trip.parts[2]
+    assert (turned.origin_place_id, turned.destination_place_id) == (part.destination_place_id, part.origin_place_id)
+
+
+def test_a_clock_that_is_not_the_airports_is_said(demo):
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    demo.app.session.set("trip.parts.2.zone_at_end", "America/New_York", "zone")
+    demo.frames(4)
+    assert demo.reads("by the time zone entered; check the zone.")

@@ -57,7 +57,7 @@ class TripScreen(Screen):
         self.ribbon.show_case()
         self.empty.show()
         self.parts.show()
-        sentences = [sentence for span in self.session.timeline.parts for sentence in span.unknown]
+        sentences = [sentence for span in self.session.timeline.parts for sentence in (*span.unknown, *span.doubts)]
         if sentences != getattr(self, "_said_unknown", None):
             self._said_unknown = sentences
             self.unknown.clear_widgets()

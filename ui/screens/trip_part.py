@@ -216,7 +216,17 @@ class PartForm(Stack):
         yes_no = ((True, "Yes"), (False, "No"))
         body.add_widget(form.choice(f"{path}.refill", "Cylinders can be refilled or swapped at its start", yes_no))
         body.add_widget(form.choice(f"{path}.delivery", "Equipment is delivered at its start", yes_no))
-        body.add_widget(Side(form.number(f"{path}.carry_limit_kg", "Most that can be carried", plain_measure("kg", 1))))
+        body.add_widget(
+            Side(
+                form.number(f"{path}.carry_limit_kg", "Most that can be carried", plain_measure("kg", 1)),
+                form.number(
+                    f"{path}.equipment_c",
+                    "Cylinders and batteries at",
+                    plain_measure("°C"),
+                    why="Empty: not cold or hot",
+                ),
+            )
+        )
         if self.session.get(path).kind == "flight":
             offers = tuple((flow, f"{flow:g} L/min") for flow in (1.0, 2.0, 3.0, 4.0))
             body.add_widget(

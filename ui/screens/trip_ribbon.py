@@ -6,7 +6,7 @@ from collections.abc import Callable
 from datetime import timedelta
 from typing import Any
 
-from planner.charts.ribbon import Layer, Reading, RibbonPart, lay_ribbon
+from planner.charts.ribbon import DAY_MIN, Layer, Reading, RibbonPart, lay_ribbon
 from ui import measures
 from ui.widgets.ribbon import RibbonView
 from ui.widgets.text import plain, strong
@@ -74,6 +74,7 @@ class RibbonOfTrip(RibbonView):
             altitude_text=altitude.with_unit,
             unknown_text="not known",
             shortened_text=SHORTENED,
+            day_text="day {}".format,
             **size,
         )
 
@@ -84,7 +85,7 @@ class RibbonOfTrip(RibbonView):
         timeline, display = self.session.timeline, self.session.case.display
         span = timeline.parts[reading.part]
         name = plain(span.name or KIND_WORDS[span.kind])
-        lines = [f"{clock_text(span, reading.minute)}  {strong(name)}"]
+        lines = [f"{clock_text(span, reading.minute)}  {strong(name)}{_day_of(span, reading.minute)}"]
         if reading.altitude_m is None:
             lines.append("Altitude not known: enter it below")
         else:
@@ -94,6 +95,14 @@ class RibbonOfTrip(RibbonView):
         if self.tell is not None:
             lines.append(self.tell(reading))
         return "\n".join(line for line in lines if line)
+
+
+def _day_of(span: Any, minute: float) -> str:
+    """Which day of a long stay it is: acclimatisation and nights count by it."""
+    days = -(-span.duration_min // DAY_MIN)
+    if days < 2:
+        return ""
+    return f", day {min(int((minute - span.start_min) // DAY_MIN) + 1, int(days))} of {days:.0f}"
 
 
 def clock_text(span: Any, minute: float) -> str:

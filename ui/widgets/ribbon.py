@@ -1,4 +1,4 @@
-"""The trip ribbon: drag along it, move along it by arrow keys, zoom by + and − or by its buttons, and read the moment.
+"""The trip ribbon: drag along it, move along it by arrow keys, zoom by two fingers, + and − or its buttons, and read.
 
 It shows what `lay` lays out (planner.charts.ribbon) for its size, and asks `tell` for the line of reading above it.
 What does not move is painted once; a drag repaints only the scrub line, its ring and the line of text.
@@ -45,6 +45,8 @@ class RibbonPlot(Reachable, Widget):  # type: ignore[misc]
         self.handle_part: int | None = None  # the part whose end can be dragged
         self.on_lengthen: Callable[[int, float], None] | None = None
         self._lengthening: tuple[float, float, float] | None = None  # x and minutes at the start, minutes per pixel
+        self._fingers: dict[Any, float] = {}  # x of the touches held here
+        self._pinch: tuple[float, float] | None = None  # distance of two fingers and zoom at the start
         self._offset = 0.0
         self._still, self._moving = InstructionGroup(), InstructionGroup()
         with self.canvas:
@@ -147,13 +149,22 @@ class RibbonPlot(Reachable, Widget):  # type: ignore[misc]
             return bool(super().on_touch_down(touch))
         super().on_touch_down(touch)
         touch.grab(self)
-        if not self._grip(touch):
+        self._fingers[touch] = touch.x
+        if len(self._fingers) == 2:
+            self._lengthening = None
+            self._pinch = (self._apart(), self.zoom)
+        elif not self._grip(touch):
             self._to_minute(touch.x)
         return True
 
     def on_touch_move(self, touch: Any) -> bool:
         """Read where the finger is."""
         if touch.grab_current is self:
+            self._fingers[touch] = touch.x
+            if self._pinch is not None:
+                apart, zoom = self._pinch
+                self.zoom = min(MOST_ZOOM, max(1.0, zoom * self._apart() / apart))
+                return True
             (self._lengthen if self._lengthening is not None else self._to_minute)(touch.x)
             return True
         return bool(super().on_touch_move(touch))
@@ -163,8 +174,15 @@ class RibbonPlot(Reachable, Widget):  # type: ignore[misc]
         if touch.grab_current is self:
             touch.ungrab(self)
             self._lengthening = None
+            self._fingers.pop(touch, None)
+            if not self._fingers:
+                self._pinch = None  # the finger that stays does not jump to another moment
             return True
         return bool(super().on_touch_up(touch))
+
+    def _apart(self) -> float:
+        """How far two fingers are apart along the ribbon, at least a finger's width."""
+        return max(abs(max(self._fingers.values()) - min(self._fingers.values())), float(dp(24)))
 
     def keyboard_on_key_down(self, window: Any, keycode: tuple[int, str], text: str, modifiers: list[str]) -> bool:
         """Arrows move by a hundredth of the drawing, with Shift by a part; + and − zoom."""
