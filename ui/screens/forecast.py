@@ -94,7 +94,8 @@ class ForecastScreen(ResultScreen):
         forecast = part.forecast
         rest = forecast.activities[0] if forecast is not None else None
         self.verdict.text = self._verdict(part, rest)
-        self.chart.show(None if rest is None else lambda **size: self._lay(part, rest, **size))
+        answered = rest is not None and any(one.pao2_mmhg is not None for one in rest.predictors)
+        self.chart.show((lambda **size: self._lay(part, rest, **size)) if answered else None)
         self._show_others(part)
         if plan.through != "forecast":
             self.narrow.text = self._narrowing(plan)
