@@ -13,6 +13,15 @@ from ui.app import PlannerApp
 from ui.screens import STEPS
 
 PATIENCE_S = 60.0
+# An invented test: minute, phase, SpO2 (%), heart rate (a minute), flow (L/min).
+TEST_ROWS = (
+    (0.0, "before", 93.0, 84.0, None),
+    (4.0, "challenge", 89.0, 90.0, None),
+    (9.0, "challenge", 85.0, 94.0, None),
+    (14.0, "challenge", 83.0, 97.0, None),
+    (20.0, "challenge", 83.0, 98.0, None),
+    (26.0, "on_oxygen", 91.0, 90.0, 2.0),
+)
 
 
 class _Pictures:
@@ -39,14 +48,35 @@ class _Pictures:
 
     def _step(self, number: int) -> None:
         if number == len(STEPS):
-            self.app.stop()
+            self._then(self._ask, "why", lambda: self._then(self._test, "challenge", self.app.stop))
             return
-        self.app.shell.go(STEPS[number].name)
-        Clock.schedule_once(lambda _dt: self._picture(number), 0.4)
+        self._then(lambda: self.app.shell.go(STEPS[number].name), STEPS[number].name, lambda: self._step(number + 1))
 
-    def _picture(self, number: int) -> None:
-        self._save(STEPS[number].name)
-        self._step(number + 1)
+    def _ask(self) -> None:
+        """How the verdict on the part under the finger was worked out."""
+        self.app.shell.go("forecast")
+        self.app.shell.screen.ask_verdict()
+
+    def _test(self) -> None:
+        """A challenge test half-way through."""
+        from planner.case.measurements import Challenge, ChallengeRow, Place
+
+        names = ("at_min", "phase", "spo2_percent", "heart_rate_min", "flow_l_min")
+        rows = tuple(ChallengeRow(**dict(zip(names, row, strict=True))) for row in TEST_ROWS)
+        test = Challenge(challenge_fio2=0.15, place=Place(elevation_m=240.0), rows=rows)
+        session = self.app.session
+        session.set("measurements", (*session.case.measurements, test))
+        self.app.shell.go("challenge")
+
+    def _then(self, act: Callable[[], None], name: str, after: Callable[[], None]) -> None:
+        """Do something, and once it is drawn keep a picture of it and go on."""
+        act()
+
+        def keep(_dt: float) -> None:
+            self._save(name)
+            after()
+
+        Clock.schedule_once(keep, 0.4)
 
     def _save(self, name: str) -> None:
         path = self.folder / f"{name}.png"

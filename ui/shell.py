@@ -16,7 +16,7 @@ from kivy.uix.widget import Widget
 
 from ui.progress import step_states
 from ui.screens import STEPS, screen_class
-from ui.theme import MARGIN_DP, WIDE_FROM_DP, space, theme
+from ui.theme import LOW_UNTIL_DP, MARGIN_DP, WIDE_FROM_DP, space, theme
 from ui.widgets.buttons import QuietButton
 from ui.widgets.icons import IconButton
 from ui.widgets.notices import CautionStrip, paint_ground
@@ -27,6 +27,8 @@ from ui.widgets.text import Text, plain
 SIDE_DP = 268
 ASIDE_DP = 340  # beside a step whose numbers can be asked about
 ASIDE_FROM_DP = 1100
+LOW_FROM_DP = 700
+HEADER_DP = 300  # beside the steps, on a phone on its side
 PATIENCE_S = 1.0
 
 
@@ -57,6 +59,11 @@ class Shell(BoxLayout):
         """True where the answer to a question about a number fits beside the step."""
         return bool(Window.width >= dp(ASIDE_FROM_DP))
 
+    @property
+    def low(self) -> bool:
+        """True on a phone on its side."""
+        return bool(Window.height < dp(LOW_UNTIL_DP) and Window.width >= dp(LOW_FROM_DP))
+
     def close(self) -> None:
         """Stop listening to the session."""
         self.session.unbind(**self._bindings)
@@ -65,7 +72,7 @@ class Shell(BoxLayout):
 
     def _build(self) -> None:
         self.clear_widgets()
-        self._built_wide = (self.wide, self.roomy)
+        self._built_for = (self.wide, self.roomy, self.low)
         steps = [(step.name, step.title) for step in STEPS]
         self.bar = StepBar(steps, not self.wide, self.go)
         self.who = Text("", role="body", pos_hint={"center_y": 0.5})
@@ -97,13 +104,17 @@ class Shell(BoxLayout):
                 self.add_widget(widget)
         else:
             self.orientation = "vertical"
-            for widget in (header, said, self.bar, self.work, self.working, self.strip):
+            frame: tuple[Widget, ...] = (header, said, self.bar)
+            if self.low:
+                header.size_hint_x, header.width = None, dp(HEADER_DP)
+                frame = (beside(header, self.bar), said)
+            for widget in (*frame, self.work, self.working, self.strip):
                 self.add_widget(widget)
         self._open_step()
 
     def on_size(self, *_: Any) -> None:
         """Change between one and two panes when the window does."""
-        if self.screen is not None and (self.wide, self.roomy) != self._built_wide:
+        if self.screen is not None and (self.wide, self.roomy, self.low) != self._built_for:
             Clock.schedule_once(lambda _dt: self._build(), 0)
 
     # -- steps
@@ -195,6 +206,15 @@ class Shell(BoxLayout):
                 self.leave()
             return True
         return False
+
+
+def beside(*widgets: Widget) -> BoxLayout:
+    """Widgets in one row, as high as the highest."""
+    row = BoxLayout(size_hint_y=None, height=0)
+    for widget in widgets:
+        row.add_widget(widget)
+    row.bind(minimum_height=row.setter("height"))
+    return row
 
 
 class Working(BoxLayout):

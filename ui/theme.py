@@ -18,6 +18,7 @@ Colour = tuple[float, float, float, float]
 
 FONT = "Paper"
 WIDE_FROM_DP = 900  # two panes from this width on
+LOW_UNTIL_DP = 480  # a phone on its side: what frames the work shares one row
 MARGIN_DP = 20
 TARGET_DP = 48  # smallest side of anything that can be touched
 WORK_WIDTH_DP = 760  # text wider than this is hard to read

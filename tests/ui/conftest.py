@@ -1,6 +1,7 @@
 """UI tests run without a display: SDL's offscreen driver, no user configuration, a fixed density."""
 
 import os
+import subprocess
 import tempfile
 
 os.environ["KIVY_NO_ARGS"] = "1"
@@ -88,3 +89,20 @@ def bench():
     yield show
     for driver in drivers:
         driver.close()
+
+
+@pytest.fixture
+def display():
+    """A display of its own for one real window, as large as a phone's."""
+    read, write = os.pipe()
+    server = subprocess.Popen(
+        ["Xvfb", "-displayfd", str(write), "-screen", "0", "390x844x24", "-nolisten", "tcp", "-noreset"],
+        pass_fds=[write],
+        stderr=subprocess.DEVNULL,
+    )
+    os.close(write)
+    with os.fdopen(read) as pipe:
+        name = ":" + pipe.readline().strip()
+    yield name
+    server.terminate()
+    server.wait(10)

@@ -224,3 +224,25 @@ def test_altitudes_and_pressures_convert_exactly():
     assert measures.altitude("ft").stored(8000.0) == pytest.approx(2438.4)
     assert measures.pressure("kPa").with_unit(49.5) == "6.6 kPa"
     assert measures.barometric("kPa").with_unit(760.0) == "1\u202f013 hPa"
+
+
+def test_no_text_on_a_screen_breaks_a_line_between_a_number_and_its_unit(bench):
+    from kivy.uix.boxlayout import BoxLayout
+
+    from ui.widgets.text import Text
+
+    column = BoxLayout(orientation="vertical")
+    texts = [
+        Text("PaO₂ 6.6 kPa at 738 mmHg, SpO₂ 86 % at 2438 m (8000 ft) for 3.5 h", size_hint_x=None, width=width)
+        for width in range(110, 340, 7)
+    ]
+    for text in texts:
+        column.add_widget(text)
+    bench(column)
+    starts = set()
+    for text in texts:
+        lines = ["".join(word.text for word in line.words).strip() for line in text._label._cached_lines]
+        assert len(lines) > 1
+        starts |= {line.split()[0] for line in lines}
+        assert "\u00a0" not in text.text  # what is read and copied stays as it was given
+    assert not starts & {"kPa", "mmHg,", "%", "m", "ft)", "h"}

@@ -1,65 +1,16 @@
 """Through the real window system: X server, mouse, key codes, and the file that is left behind."""
 
-import os
 import subprocess
 import sys
 import time
-from pathlib import Path
 
 import numpy as np
-import pytest
-from PIL import Image
 
 from planner.records.store import CaseStore
 from tests.ui.driver import TAB
+from tests.ui.real_window import ROOT, Window, without_settings
 
-ROOT = Path(__file__).parents[2]
 DATA_GREEN = (27, 91, 87)
-
-
-@pytest.fixture
-def display():
-    read, write = os.pipe()
-    server = subprocess.Popen(
-        ["Xvfb", "-displayfd", str(write), "-screen", "0", "390x844x24", "-nolisten", "tcp", "-noreset"],
-        pass_fds=[write],
-        stderr=subprocess.DEVNULL,
-    )
-    os.close(write)
-    with os.fdopen(read) as pipe:
-        name = ":" + pipe.readline().strip()
-    yield name
-    server.terminate()
-    server.wait(10)
-
-
-class Window:
-    def __init__(self, display, folder):
-        self.display, self.folder = display, folder
-
-    def do(self, *arguments):
-        environment = os.environ | {"DISPLAY": self.display}
-        subprocess.run(["xdotool", *map(str, arguments)], env=environment, check=True, capture_output=True)
-
-    def click(self, x, y):
-        self.do("mousemove", x, y, "mousedown", 1)
-        time.sleep(0.12)
-        self.do("mouseup", 1)
-        time.sleep(0.4)
-
-    def picture(self):
-        path = self.folder / "window.png"
-        subprocess.run(["import", "-display", self.display, "-window", "root", path], check=True)
-        return np.asarray(Image.open(path).convert("RGB")).astype(int)
-
-    def until(self, true, patience_s=20.0):
-        begun = time.monotonic()
-        while True:
-            picture = self.picture()
-            if true(picture):
-                return picture
-            assert time.monotonic() - begun < patience_s, "the window does not show it"
-            time.sleep(0.1)
 
 
 def coloured(picture, rgb, tolerance=12):
@@ -86,8 +37,7 @@ def tabs_to(driver, text):
 
 def test_a_new_case_is_begun_by_mouse_filled_by_keys_and_found_again(display, tmp_path, new_case):
     times = tabs_to(new_case, "COPD")
-    environment = {name: value for name, value in os.environ.items() if not name.startswith(("KIVY", "WAYLAND"))}
-    environment |= {"DISPLAY": display, "SDL_VIDEODRIVER": "x11"}
+    environment = without_settings(display)
     folder = tmp_path / "kept"
     command = [sys.executable, "-m", "ui", "--data", str(folder)]
     window = Window(display, tmp_path)

@@ -3,6 +3,7 @@
 import platformdirs
 import pytest
 
+from planner.case.prescription import PrescribedOxygen
 from tests.ui.driver import Driver
 from ui.app import PlannerApp, load_planner
 from ui.screens import form
@@ -271,3 +272,94 @@ def test_a_row_of_the_test_is_taken_back_and_all_is_there_after_leaving(answered
     assert len(answered.app.shell.screen.test.rows) == 2
     answered.tap(answered.app.shell.undo)
     assert len(answered.app.shell.screen.test.rows) == 3
+
+
+def test_as_prescribed_at_home_is_written_with_its_device_its_flow_and_its_basis(answered):
+    session = answered.app.session
+    home = PrescribedOxygen(device_id="cannula", flow_l_min=1.5)
+    session.set_many({"prescription.uses_oxygen": True, "prescription.rest": home})
+    settle(answered)
+    go(answered, "oxygen")
+    at_part(answered, "flight_1")
+    answered.fill(answered.field("Decided by"), "Dr Example")
+    answered.tap("As prescribed at home")
+    written = decision(answered, "flight_1", "rest")
+    assert (written.device_id, written.flow_l_min, written.basis) == ("cannula", 1.5, "as_at_home")
+    assert written.decided_by == "Dr Example"
+
+
+def test_as_at_home_cannot_be_pressed_where_nothing_is_prescribed(answered):
+    session = answered.app.session
+    session.set("prescription.rest", None)
+    settle(answered)
+    go(answered, "oxygen")
+    before = case(answered).decisions
+    assert answered.app.shell.screen.decide.home.disabled
+    answered.fill(answered.field("Decided by"), "Dr Example")
+    answered.tap("As prescribed at home")
+    assert case(answered).decisions == before
+
+
+def test_no_oxygen_is_a_decision_of_its_own_and_needs_a_name_too(answered):
+    go(answered, "oxygen")
+    at_part(answered, "flight_1")
+    before = case(answered).decisions
+    answered.app.shell.screen.decide.by.input.text = ""
+    answered.tap("No oxygen here")
+    assert case(answered).decisions == before
+    answered.fill(answered.field("Decided by"), "Dr Example")
+    answered.tap("No oxygen here")
+    written = decision(answered, "flight_1", "rest")
+    assert written.no_oxygen
+    assert (written.device_id, written.flow_l_min, written.setting) == (None, None, None)
+    settle(answered)
+    assert answered.reads("With no added oxygen SpO₂ would be")
+
+
+def test_the_app_closed_during_a_challenge_test_opens_with_every_row_and_its_clock_goes_on(planner, tmp_path):
+    def start():
+        return Driver(PlannerApp(data_folder=tmp_path / "data", load_planner=planner), (390, 844), 1.0)
+
+    first = start()
+    first.app.cases.open_demo()
+    settle(first)
+    go(first, "challenge")
+    first.tap("Record a test")
+    first.tap("Start the clock from 0")
+    first.tap("On the mixture")
+    first.tap("−5 %")
+    first.tap("Write the row")
+    case_id, begun = first.app.session.case_id, first.app.shell.screen.test.started_at
+    first.app.library.close()  # as a battery that runs out: nothing is said to the app
+    first.app.library.save = lambda *_: None
+    first.close()
+    second = start()
+    second.app.open_case(case_id, second.app.library.read(case_id), "challenge")
+    second.frames(8)
+    test = second.app.shell.screen.test
+    assert [(row.phase, row.spo2_percent) for row in test.rows] == [("challenge", 90.0)]
+    assert test.started_at == begun
+    second.tap("Write the row")
+    rows = second.app.shell.screen.test.rows
+    assert len(rows) == 2
+    assert rows[1].at_min >= rows[0].at_min
+    second.close()
+
+
+def test_a_finger_along_the_ribbon_changes_the_verdict_to_that_of_the_part_under_it(answered):
+    go(answered, "forecast")
+    screen = answered.app.shell.screen
+    plot, timeline = screen.ribbon.plot, answered.app.session.timeline
+    verdicts = {}
+    x, y = plot.to_window(plot.x, plot.center_y)
+    flight = next(one for one in timeline.parts if one.part_id == "flight_1")
+    home = timeline.parts[0]
+    for span in (flight, home):
+        there = plot.ribbon.scale.at(span.start_min + span.duration_min / 2)
+        answered.drag((x + plot.width / 2, y), (x + there, y))
+        answered.frames(4)
+        verdicts[span.part_id] = screen.verdict.text
+        assert span.name in screen.verdict.text
+        assert screen.part.span.part_id == span.part_id
+    assert verdicts["flight_1"].startswith("[b]Uncertain[/b]")
+    assert verdicts[home.part_id].startswith("[b]Likely above[/b]")

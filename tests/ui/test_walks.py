@@ -431,3 +431,16 @@ def test_the_keys_used_here_are_kivys():
 
     codes = Keyboard.keycodes
     assert (codes["down"], codes["left"], codes["right"], codes["escape"]) == (DOWN, LEFT, RIGHT, ESCAPE)
+
+
+def test_on_a_phone_on_its_side_the_whole_ribbon_stands_between_the_steps_and_the_caution(opened):
+    driver = opened((844, 390))
+    driver.app.cases.open_demo()
+    driver.app.shell.go("forecast")
+    driver.frames(10)
+    shell = driver.app.shell
+    plot = shell.screen.ribbon.plot
+    bottom, top = plot.to_window(plot.x, plot.y)[1], plot.to_window(plot.x, plot.top)[1]
+    assert bottom >= shell.strip.top
+    assert top <= shell.page.top
+    assert shell.bar.x > shell.who.right

@@ -45,7 +45,7 @@ class ForecastScreen(ResultScreen):
         self.notes = Stack(gap=2)
         self.guidance = GuidanceFolds(self.session)
         self.test = PlainButton("Hypoxic challenge test", lambda: self.go("challenge"))
-        self.put(Why(self.verdict, lambda: self._ask("verdict")), self.chart, self.others, self.narrow, self.notes)
+        self.put(Why(self.verdict, self.ask_verdict), self.chart, self.others, self.narrow, self.notes)
         self.put(self.test, self.guidance)
         self.put(PrimaryButton("On to the oxygen", lambda: self.go("oxygen")))
 
@@ -94,12 +94,17 @@ class ForecastScreen(ResultScreen):
         forecast = part.forecast
         rest = forecast.activities[0] if forecast is not None else None
         self.verdict.text = self._verdict(part, rest)
-        self.chart.show(None if rest is None else lambda **size: self._lay(part, rest, **size))
+        answered = rest is not None and any(one.pao2_mmhg is not None for one in rest.predictors)
+        self.chart.show((lambda **size: self._lay(part, rest, **size)) if answered else None)
         self._show_others(part)
         if plan.through != "forecast":
             self.narrow.text = self._narrowing(plan)
         self._show_notes(plan, forecast)
         self.guidance.show_plan(plan)
+
+    def ask_verdict(self) -> None:
+        """Show how the verdict on the part under the finger was worked out."""
+        self._ask("verdict")
 
     # -- inside
 

@@ -4,9 +4,13 @@ from __future__ import annotations
 
 from typing import Any
 
+from kivy.core.window import Window
+from kivy.metrics import dp
+
 from planner.charts.ribbon import Layer, Reading
 from ui.screens.screen import Screen
 from ui.screens.trip_ribbon import RibbonOfTrip
+from ui.theme import LOW_UNTIL_DP
 from ui.widgets.buttons import PrimaryButton
 from ui.widgets.rows import Stack
 from ui.widgets.text import Text
@@ -21,7 +25,8 @@ class ResultScreen(Screen):
         """The ribbon, or what to do first."""
         self.part_index = -1
         self._shown: Any = None
-        self.ribbon = RibbonOfTrip(self.session, layer=self.layer, tell=self.tell)
+        low = Window.height < dp(LOW_UNTIL_DP)  # seen whole on a phone on its side
+        self.ribbon = RibbonOfTrip(self.session, layer=self.layer, tell=self.tell, height_sp=140 if low else 190)
         self.ribbon.plot.bind(minute=lambda *_: self._part_changed())
         self.above = Stack()
         self.empty = Stack(Text(self.EMPTY), PrimaryButton("Enter the trip", lambda: self.go("trip")))

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from typing import Any
+from typing import Any, ClassVar
 
 from kivy.clock import Clock
 from kivy.core.window import Window
@@ -58,6 +58,7 @@ class Reachable(FocusBehavior):  # type: ignore[misc]
     """Takes the focus by Tab and by touch; draws a ring round itself while the keyboard is in use."""
 
     ring = BooleanProperty(False)
+    ring_inset_dp: ClassVar[float] = 2.0  # below 0: round the widget, for words that begin at its edge
 
     def __init__(self, **keywords: Any) -> None:
         super().__init__(**keywords)
@@ -67,7 +68,7 @@ class Reachable(FocusBehavior):  # type: ignore[misc]
         self.bind(pos=self._draw_ring, size=self._draw_ring, focus=self._focused)
 
     def _draw_ring(self, *_: Any) -> None:
-        inset = dp(2)
+        inset = dp(self.ring_inset_dp)
         self._ring_line.rounded_rectangle = (
             self.x + inset,
             self.y + inset,

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from typing import Any
+from typing import Any, ClassVar
 
 from kivy.graphics import Color, Rectangle, SmoothLine
 from kivy.metrics import dp, sp
@@ -22,6 +22,7 @@ class ListRow(Tappable):
     """A title and a line under it at the left, a value at the right; tapping it acts."""
 
     chosen = BooleanProperty(False)
+    ring_inset_dp: ClassVar[float] = -4.0
 
     def __init__(
         self, title: str, detail: str = "", value: str = "", on_tap: Callable[[], None] | None = None, **keywords: Any

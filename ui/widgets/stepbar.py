@@ -141,7 +141,7 @@ class StepBar(BoxLayout):
         height = max(dp(54), sp(54))
         self._scroll.height = height
         self._row.height = height
-        least = [max(dp(48), sp(6.9 * len(tab._plain) + 12)) for tab in self.tabs.values()]
+        least = [max(dp(48), sp(6.9 * len(tab._plain) + 9)) for tab in self.tabs.values()]
         spare = max(0.0, self.width - sum(least)) / max(len(least), 1)
         for tab, width in zip(self.tabs.values(), least, strict=True):
             tab.width = width + spare

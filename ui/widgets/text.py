@@ -2,13 +2,16 @@
 
 from __future__ import annotations
 
+import re
 from typing import Any
 
 from kivy.properties import StringProperty
 from kivy.uix.label import Label
-from kivy.utils import escape_markup
+from kivy.utils import escape_markup, get_hex_from_color
 
 from ui.theme import FONT, theme
+
+_DIGIT = re.compile(r"\d")
 
 
 class Text(Label):
@@ -45,6 +48,19 @@ class Text(Label):
     def _restyle(self, *_: Any) -> None:
         self.font_size = theme.size(self.role)
         self.color = theme.colour(self.tone)
+
+    def texture_update(self, *arguments: Any) -> None:
+        """Draw the text with no line broken between a number and its unit; `text` itself stays as it was given."""
+        if not self.markup or not _DIGIT.search(self.text):
+            super().texture_update(*arguments)
+            return
+        from planner.charts.layout import with_units_kept
+
+        colour = get_hex_from_color(self.disabled_color if self.disabled else self.color)
+        self._label.text = f"[color={colour}]{with_units_kept(self.text)}[/color]"
+        self._label.refresh()
+        self.texture = self._label.texture
+        self.texture_size = list(self.texture.size)
 
 
 class Fixed(Text):

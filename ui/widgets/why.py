@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from typing import Any
+from typing import Any, ClassVar
 
 from kivy.graphics import Color, SmoothLine
 from kivy.metrics import dp, sp
@@ -33,7 +33,13 @@ class Onward(Widget):
         self._line.points = [x + w * 0.35, y + h * 0.85, x + w * 0.7, y + h * 0.5, x + w * 0.35, y + h * 0.15]
 
 
-class Why(Tappable):
+class Asked(Tappable):
+    """What can be asked about."""
+
+    ring_inset_dp: ClassVar[float] = -4.0
+
+
+class Why(Asked):
     """One thing that shows a number, with the mark at its right. on_tap: what a touch does."""
 
     def __init__(self, thing: Widget, on_tap: Callable[[], None], **keywords: Any) -> None:
@@ -71,7 +77,7 @@ class WhyRows(DrawingView):
             self.remove_widget(self.children[0])
         while len(self.children) < len(rows):
             number = len(self.children)
-            touch = Tappable(lambda index=number: self.on_row(index), size_hint=(None, None))
+            touch = Asked(lambda index=number: self.on_row(index), size_hint=(None, None))
             touch.add_widget(Widget())
             touch.add_widget(Onward())
             self.add_widget(touch)
