@@ -306,7 +306,7 @@ def test_what_would_narrow_is_the_same_when_read_from_the_lungs_solved_before(re
 
 def test_solved_lungs_of_another_body_or_narrower_spans_are_not_read():
     gas, again = fit_lung([GAS], COPD, draws=200), fit_lung([GAS], COPD, draws=150)
-    wide = fit_lung([OXIMETRY], COPD, draws=200)
+    wide = fit_lung([dataclasses.replace(OXIMETRY, age_days=None, stable=False)], COPD, draws=1000)
     anaemic = fit_lung([GAS], dataclasses.replace(COPD, haemoglobin_g_dl=9.0), draws=200)
     assert again.with_tables_of(gas)._solved[False, False] is gas._solved[False, False]
     assert wide.with_tables_of(gas)._solved == {}

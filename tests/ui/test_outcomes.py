@@ -2,6 +2,8 @@
 
 import sqlite3
 
+import pytest
+
 from planner import plan
 from planner.case import Case
 from planner.case.confirmation import Outcome, PartOutcome
@@ -183,3 +185,25 @@ def test_a_case_without_a_trip_has_nothing_to_record(opened, tmp_path):
     after_the_trip(driver)
     driver.tap("No initials yet")
     assert driver.reads("there is nothing to record")
+
+
+@pytest.mark.parametrize(
+    ("width", "height", "scale", "name"),
+    [(390, 844, 1.0, "light"), (390, 844, 1.0, "dark"), (320, 568, 1.5, "light"), (1180, 820, 1.0, "light")],
+)
+def test_both_pages_are_whole_at_every_size(opened, tmp_path, width, height, scale, name):
+    from tests.ui import checks
+    from ui.theme import theme
+
+    kept(tmp_path, one=recorded(on_oxygen=False, usual_spo2_percent=86.0, ran_out=True, late_min=40.0), demo=DEMO)
+    theme.use(name)
+    try:
+        driver = opened((width, height), scale)
+        after_the_trip(driver)
+        assert checks.all_faults(driver) == {}
+        driver.tap("Recorded")
+        driver.tap(f"{DEMO.trip.parts.index(FLIGHT) + 1} · {FLIGHT.name}")
+        driver.frames(6)
+        assert checks.all_faults(driver) == {}
+    finally:
+        theme.use("light")
