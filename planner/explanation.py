@@ -8,7 +8,7 @@ from collections.abc import Callable
 from datetime import date
 from typing import NamedTuple
 
-from planner import explanation_oxygen
+from planner import explanation_kit, explanation_oxygen
 from planner.case import Case
 from planner.case.measurements import BloodGas, Challenge, LungFunction, Oximetry
 from planner.evidence.baseline import Baseline
@@ -253,4 +253,5 @@ _MAKERS: dict[str, Callable[[Plan, Case, PartPlan | None, str], Explanation | No
     "blood": _blood,
     "verdict": _verdict,
     **explanation_oxygen.MAKERS,
+    **explanation_kit.MAKERS,
 }

@@ -1,4 +1,4 @@
-"""How the flows, the target, the challenge test and the supply were worked out; see planner.explanation."""
+"""How the flows, the target and the challenge test were worked out; see planner.explanation."""
 
 from __future__ import annotations
 
@@ -214,41 +214,6 @@ def _test(case: Case) -> Challenge | None:
     return next((one for one in reversed(case.measurements) if isinstance(one, Challenge)), None)
 
 
-def _supply(plan: Plan, case: Case, part: PartPlan | None, _: str) -> Explanation | None:
-    """What one part needs, how it is covered, and how often it would run short."""
-    if part is None or plan.kit is None:
-        return None
-    one = next((p for p in plan.kit.parts if p.part_id == part.span.part_id), None)
-    if one is None:
-        return None
-    q = Quantities.of(case.display)
-    need = "nothing decided" if one.litres is None else q.litres(one.litres)
-    return Explanation(
-        title=f"Oxygen needed, {one.name}",
-        result=f"{need}; it runs short in {100 * one.run_out_chance:.1f} of 100 trips",
-        formula="Decided flow × time × share of the time in each activity; a pulse setting by its mL a breath and the "
-        "breathing rate. The chance is the share of many played trips, with delays, flow, filling and failures drawn",
-        inputs=(
-            *(
-                Named(f"decided {d.activity}", d.amount_text, d.decided_on)
-                for d in part.decided
-                if part.span.shares.get(d.activity, 0) > 0  # type: ignore[call-overload]
-            ),
-            Named("duration", q.duration(part.span.duration_min)),
-            *(Named(name, q.duration(60 * hours)) for name, hours in one.hours_by.items()),
-            *(Named(name, value) for name, value in plan.kit.assumptions),
-        ),
-        source="Oxygen as a real gas: Schmidt R, Wagner W, Fluid Phase Equilib 1985;19:175; the rest of the list are "
-        "planning assumptions",
-        valid="The flows decided and the sources allowed in this part; nothing is sized from a flow nobody decided.",
-        otherwise=tuple(
-            Named(f"a full {c.name}", f"{q.litres(c.real_l)} by the real gas, {q.litres(c.textbook_l)} by the factor")
-            for c in plan.kit.cross_checks
-        ),
-        otherwise_note="Beside the duration factor of the handbooks." if plan.kit.cross_checks else "",
-    )
-
-
 MAKERS: dict[str, Callable[[Plan, Case, PartPlan | None, str], Explanation | None]] = {
     "model": _model,
     "rule": _rule,
@@ -256,5 +221,4 @@ MAKERS: dict[str, Callable[[Plan, Case, PartPlan | None, str], Explanation | Non
     "target": _target,
     "mixture": _mixture,
     "challenge": _challenge,
-    "supply": _supply,
 }

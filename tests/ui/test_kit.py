@@ -2,7 +2,7 @@
 
 import pytest
 
-from tests.ui.driver import Driver
+from tests.ui.driver import ESCAPE, Driver
 from ui.app import PlannerApp, load_planner
 from ui.screens import kit_words
 
@@ -117,10 +117,10 @@ def test_what_is_still_open_is_counted_and_leads_to_the_decisions(planner, tmp_p
 
 def test_a_battery_reading_above_full_says_what_to_do():
     class Reading:
-        name, gauge_bar, temperature_c, fresh_cylinders, liquid_kg = "Flight", (), 15.0, 0, None
+        part_id, name, gauge_bar, temperature_c, fresh_cylinders, liquid_kg = "f", "Flight", (), 15.0, 0, None
         battery_percent = 130.0
 
-    ((where, detail, value),) = kit_words.turn_back_rows([Reading()], "bar")
+    ((where, detail, value, _),) = kit_words.turn_back_rows([Reading()], "bar")
     assert (where, value) == ("Starting: Flight", "more than full")
     assert "take another pack" in detail
 
@@ -172,3 +172,20 @@ def test_a_missed_connection_and_a_diversion_are_one_touch(kit):
     kit.tap("On time")
     settle(kit)
     assert not kit.reads("if diverted")
+
+
+def test_each_number_of_the_kit_leads_to_how_it_was_worked_out_and_back(kit):
+    kit.tap("would run short")
+    assert kit.app.shell.step == "why"
+    assert kit.reads("How often this set would run short")
+    assert kit.reads("Wilson EB")
+    kit.key(ESCAPE)
+    kit.frames(6)
+    assert kit.app.shell.step == "kit"
+    kit.tap("Starting: Village house")
+    assert kit.reads("Turn-back reading, starting Village house, 4 nights")
+    kit.tap("Back")
+    kit.tap("Part by part")
+    kit.tap(next(one for one in kit.widgets() if getattr(one, "text", "") == "308 L"))
+    assert kit.reads("Oxygen needed, Flight 1")
+    assert kit.reads("2 L/min by nasal cannula")

@@ -12,11 +12,13 @@ from ui.screens import kit_words
 from ui.screens.kit_assumptions import fill_assumptions
 from ui.screens.kit_entries import fill_kit_entries
 from ui.screens.result_screen import ResultScreen
+from ui.screens.why import ask
 from ui.widgets.buttons import PrimaryButton
 from ui.widgets.choices import Choice
 from ui.widgets.notices import Notice, Section
 from ui.widgets.rows import Fold, ListRow, Side, Stack
 from ui.widgets.text import Text, plain, strong
+from ui.widgets.why import Onward, Why
 
 LATE = ((0.0, "On time"), (60.0, "1 h late"), (180.0, "3 h late"))
 _IF = {"missed_connection": "if the connection is missed", "overnight": "with a night more", "diversion": "if diverted"}
@@ -37,6 +39,8 @@ class KitScreen(ResultScreen):
         self.open_notes = Stack(gap=2)
         self.numbers = Side(least_sp=96)
         self.sentence = Text("", role="lead")
+        self.often = Stack(gap=0)
+        self.asked_often = Why(self.sentence, lambda: self._ask("run_out"))
         self.items = Section("The set")
         self.item_rows = Stack(gap=0)
         self.items.add_widget(self.item_rows)
@@ -64,7 +68,7 @@ class KitScreen(ResultScreen):
             self.supplies,
             self.open_notes,
             self.numbers,
-            self.sentence,
+            self.often,
             self.items,
             self.own,
             self.turn_back,
@@ -108,6 +112,7 @@ class KitScreen(ResultScreen):
         sized = kit is not None and bool(kit.items)
         self._show_numbers(kit if sized else None)
         self.sentence.text = self._sentence(plan) if sized else ""
+        self.often.hold(self.asked_often if sized else None)
         both = sized and kit.left is not None and kit.left.litres.max() > 0 and kit.left.watt_hours.max() > 0
         self.supplies.hold(self.supply if both else None)
         self._show_items(kit)
@@ -128,6 +133,9 @@ class KitScreen(ResultScreen):
         carried = [unit for unit, values in (("L", left.litres), ("Wh", left.watt_hours)) if values.max() > 0]
         chosen = self.supply.value
         return chosen if chosen in carried else carried[0] if carried else "L"
+
+    def _ask(self, kind: str, part_id: str = "") -> None:
+        ask(self.session, self.go, kind, part_id)
 
     def _show_stress(self) -> None:
         """The cases that can happen on this trip, the chosen one ticked; none where nothing flies."""
@@ -251,8 +259,10 @@ class KitScreen(ResultScreen):
     def _show_turn_back(self, kit: Any) -> None:
         self.readings.clear_widgets()
         rows = kit_words.turn_back_rows(kit.turn_back if kit is not None else (), self.session.case.display.gauge)
-        for where, detail, value in rows:
-            self.readings.add_widget(ListRow(plain(where), detail, plain(value)))
+        for where, detail, value, part_id in rows:
+            row = ListRow(plain(where), detail, plain(value), lambda i=part_id: self._ask("turn_back", i))
+            row.add_widget(Onward())
+            self.readings.add_widget(row)
 
     def _show_cautions(self, kit: Any) -> None:
         self.cautions.clear_widgets()
@@ -267,7 +277,9 @@ class KitScreen(ResultScreen):
             detail = f"{sources or 'no oxygen needed'} · runs short {kit_words.one_in(one.run_out_chance).lower()}"
             if one.run_out_chance > 0:
                 detail += f" ({kit_words.between(one.run_out_low, one.run_out_high)})"
-            body.add_widget(ListRow(plain(one.name), plain(detail), need))
+            row = ListRow(plain(one.name), plain(detail), need, lambda i=one.part_id: self._ask("supply", i))
+            row.add_widget(Onward())
+            body.add_widget(row)
         for check in kit.cross_checks if kit is not None else ():
             apart = 100 * (check.textbook_l / check.real_l - 1)
             words = (

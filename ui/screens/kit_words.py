@@ -45,9 +45,9 @@ def still_open(undecided: Iterable[str]) -> str:
     return f"{total} {'flow is' if total == 1 else 'flows are'} still open: {each}."
 
 
-def turn_back_rows(readings: Iterable[Any], gauge_unit: str) -> list[tuple[str, str, str]]:
-    """(where, what is read, value) with places that read the same together."""
-    alike: dict[tuple[str, str], list[str]] = {}
+def turn_back_rows(readings: Iterable[Any], gauge_unit: str) -> list[tuple[str, str, str, str]]:
+    """(where, what is read, value, id of the first part) with places that read the same together."""
+    alike: dict[tuple[str, str], list[Any]] = {}
     for one in readings:
         values = [f"{name} {gauge_to_read(bar, gauge_unit):,.0f} {gauge_unit}" for name, bar in one.gauge_bar]
         details = []
@@ -62,8 +62,11 @@ def turn_back_rows(readings: Iterable[Any], gauge_unit: str) -> list[tuple[str, 
             values.append("more than full" if short else f"{charge_to_read(one.battery_percent):.0f} % charge")
             if short:
                 details.append("charge on the way, or take another pack")
-        alike.setdefault((", ".join(details), ", ".join(values)), []).append(one.name)
-    return [(f"Starting: {', '.join(dict.fromkeys(names))}", detail, value) for (detail, value), names in alike.items()]
+        alike.setdefault((", ".join(details), ", ".join(values)), []).append(one)
+    return [
+        (f"Starting: {', '.join(dict.fromkeys(one.name for one in points))}", detail, value, points[0].part_id)
+        for (detail, value), points in alike.items()
+    ]
 
 
 def item_rows(items: Sequence[Any]) -> list[tuple[str, str, str]]:
