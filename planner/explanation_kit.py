@@ -100,6 +100,8 @@ def _turn_back(plan: Plan, case: Case, part: PartPlan | None, _: str) -> Explana
     inputs = [Named("reserve on top", q.percent(100 * case.policy.reserve_fraction))]
     if one.litres_needed is not None:
         inputs.append(Named("gas needed from here to the next supply", q.litres(one.litres_needed)))
+    if one.watt_hours_needed is not None:
+        inputs.append(Named("charge needed from here to the next plug", q.watt_hours(one.watt_hours_needed)))
     if one.gauge_bar:
         inputs.append(Named("temperature of the cylinder", q.temperature(one.temperature_c)))
         inputs.append(Named("cylinder is changed at", q.gauge(case.policy.residual_bar)))

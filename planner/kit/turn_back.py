@@ -29,6 +29,7 @@ class TurnBack:
     battery_percent: float | None
     fresh_cylinders: int
     liquid_kg: float | None = None
+    watt_hours_needed: float | None = None
 
 
 def turn_back(
@@ -69,8 +70,8 @@ def turn_back(
                 readings.append((choice.name, reading))
                 fresh = max(fresh, fresh_here + sum(there.values()) - count)
         liquid = _litres_ahead(uses, vessels, number) * (1.0 + reserve_fraction)
-        percent = _battery_percent(legs, uses, number, power, batteries, reserve_fraction)
-        if readings or liquid > 0.0 or percent is not None:
+        charge = _charge_wh(legs, uses, number, power, batteries, reserve_fraction)
+        if readings or liquid > 0.0 or charge is not None:
             found.append(
                 TurnBack(
                     part_id=leg.part_id,
@@ -78,7 +79,8 @@ def turn_back(
                     litres_needed=litres if readings else None,
                     gauge_bar=tuple(readings),
                     temperature_c=temperature_c,
-                    battery_percent=percent,
+                    battery_percent=_percent(charge, power, batteries),
+                    watt_hours_needed=charge,
                     fresh_cylinders=fresh,
                     liquid_kg=liquid * G_PER_L / 1000.0 if liquid > 0.0 else None,
                 )
@@ -109,7 +111,7 @@ def _reading(
     return gauge_bar(min(own + left, most), size.water_capacity_l, temperature_c), full_beside
 
 
-def _battery_percent(
+def _charge_wh(
     legs: Sequence[Leg],
     uses: Sequence[LegUse],
     number: int,
@@ -117,7 +119,7 @@ def _battery_percent(
     batteries: int,
     reserve_fraction: float,
 ) -> float | None:
-    """Charge that must be there at this leg, less what plugs on the way give, as per cent of all packs carried."""
+    """Charge that must be there at this leg, less what plugs on the way give; None where no pack is used from here."""
     if power is None or batteries == 0:
         return None
     needed = 0.0
@@ -129,6 +131,9 @@ def _battery_percent(
         needed += leg.battery_w * wanted
         if later > number and leg.mains:
             needed = max(needed - CHARGE_SHARE * power.charge_w * leg.hours, 0.0)
-    if needed <= 0.0:
-        return None
-    return 100.0 * needed / (power.battery_wh * batteries)
+    return needed if needed > 0.0 else None
+
+
+def _percent(charge_wh: float | None, power: Power | None, batteries: int) -> float | None:
+    """A charge as per cent of what all packs carried hold."""
+    return None if charge_wh is None or power is None else 100.0 * charge_wh / (power.battery_wh * batteries)
