@@ -79,7 +79,6 @@ class CasesPage(BoxLayout):
         if rows and not self.library.protected:
             folds.add_widget(Fold("Passphrase", "Seal the cases on this device", self._fill_passphrase))
         if rows:
-            folds.add_widget(ListRow("[b]After the trip[/b]", "What happened, beside the plan", "›", show_outcomes))
             folds.add_widget(Fold("Remove a case", "With all its versions", self._fill_removal))
             folds.add_widget(
                 ListRow("[b]After the trip[/b]", "What happened beside what was planned", "›", show_outcomes)
