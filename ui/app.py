@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import gc
+import time
 from pathlib import Path
 from typing import Any
 
@@ -19,6 +20,7 @@ from ui.widgets.reach import ESCAPE, TAB
 from ui.widgets.text import Text
 
 WARM_AFTER_S = 0.3
+IDLE_CHECK_S = 5.0
 TITLE = "Oxygen and altitude planner"
 
 
@@ -50,6 +52,7 @@ class PlannerApp(App):  # type: ignore[misc]
         self.library: Any = None
         self.session: Any = None
         self.shell: Any = None
+        self._touched_at = time.monotonic()
 
     def load_kv(self, filename: str | None = None) -> bool:
         """There is no kv file of the app's name to look for."""
@@ -58,7 +61,7 @@ class PlannerApp(App):  # type: ignore[misc]
     def build(self) -> Root:
         """The ground and the name; the rest follows after the first frame."""
         Window.clearcolor = theme.ground
-        Window.bind(on_key_down=self._on_key)
+        Window.bind(on_key_down=self._on_key, on_touch_down=self._touched, on_key_up=self._touched)
         root = Root()
         first = BoxLayout(padding=24)
         paint_ground(first, theme.ground)
@@ -74,6 +77,7 @@ class PlannerApp(App):  # type: ignore[misc]
         self.library = Library(self.data_folder)
         self.session = Session(load_planner=self.load_planner, saver=self.library.save)
         Clock.schedule_once(lambda _dt: self.session.warm(), WARM_AFTER_S)
+        Clock.schedule_interval(lambda _dt: self.lock_if_idle(), IDLE_CHECK_S)
         gc.freeze()  # what is imported stays; the collector need not walk it while a finger drags
         self.show_cases()
         if self.case_file is not None:
@@ -117,6 +121,23 @@ class PlannerApp(App):  # type: ignore[misc]
         self.shell._before = before
         self.root.show(self.shell)
 
+    def lock_if_idle(self) -> None:
+        """Save and lock sealed cases when nothing was touched for the minutes chosen."""
+        after = self.library.lock_after_min if not self.library.locked else None
+        if after is not None and time.monotonic() - self._touched_at >= 60.0 * after:
+            self.lock()
+
+    def lock(self) -> None:
+        """Save what is open, forget the key, and ask for the passphrase."""
+        self._drop_shell()
+        self.session.close()
+        self.library.lock()
+        self.show_cases()
+
+    def _touched(self, *_: Any) -> bool:
+        self._touched_at = time.monotonic()
+        return False
+
     def _drop_shell(self) -> None:
         if self.shell is not None:
             self.shell.close()
@@ -133,7 +154,7 @@ class PlannerApp(App):  # type: ignore[misc]
         if self.session is not None:
             self.session.close()
             self.library.close()
-        Window.unbind(on_key_down=self._on_key)
+        Window.unbind(on_key_down=self._on_key, on_touch_down=self._touched, on_key_up=self._touched)
 
     def _focused(self, kind: type) -> Any:
         return next((widget for widget in self.root.walk() if isinstance(widget, kind) and widget.focus), None)

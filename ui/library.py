@@ -11,7 +11,7 @@ from planner.case import Case
 from planner.catalogue import profile_text
 from planner.errors import StoreError
 from planner.records.reading import read_case
-from planner.records.store import FILE_NAME, CaseEntry, CaseStore, new_case_id
+from planner.records.store import FILE_NAME, CaseEntry, CaseStore, VersionEntry, new_case_id
 from ui.widgets.typing import date_text
 
 DIAGNOSIS_WORDS = {
@@ -78,13 +78,43 @@ class Library:
         with self._one_at_a_time:
             self._opened().protect(passphrase)
 
+    def change_passphrase(self, old: str, new: str) -> None:
+        """Wrap the same key with another passphrase. Raises StoreError where the old one is wrong."""
+        with self._one_at_a_time:
+            self._opened().change_passphrase(old, new)
+
+    def lock(self) -> None:
+        """Forget the key until the passphrase is entered again."""
+        with self._one_at_a_time:
+            if self._store is not None:
+                self._store.lock()
+
+    @property
+    def lock_after_min(self) -> float | None:
+        """Idle minutes after which sealed cases are locked; None: never, and where nothing is sealed."""
+        return self._store.lock_after_min if self._store is not None and self._store.protected else None
+
+    def choose_lock_after(self, minutes: float | None) -> None:
+        """Keep the idle minutes."""
+        with self._one_at_a_time:
+            self._opened().choose_lock_after(minutes)
+
+    def history(self, case_id: str) -> tuple[VersionEntry, ...]:
+        """Every version of a case, the newest first."""
+        return self._opened().history(case_id)
+
+    def restore(self, case_id: str, version: int) -> None:
+        """Make an older version the latest again, as a new one; nothing is lost."""
+        with self._one_at_a_time:
+            self._opened().restore(case_id, version)
+
     def rows(self) -> list[CaseRow]:
         """Every kept case, the last saved first."""
         return [] if self._store is None or self.locked else [_row(entry) for entry in self._store.entries()]
 
-    def read(self, case_id: str) -> Case:
-        """The last kept version of a case. Raises StoreError where it cannot be read."""
-        return self._opened().load(case_id)
+    def read(self, case_id: str, version: int | None = None) -> Case:
+        """A kept version of a case, the last one for None. Raises StoreError where it cannot be read."""
+        return self._opened().load(case_id, version)
 
     def save(self, case_id: str, case: Case) -> None:
         """Keep a version. Raises StoreError where it cannot be kept; what was kept before stays."""

@@ -6,6 +6,7 @@ import contextlib
 import os
 import sqlite3
 import sys
+import threading
 from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
@@ -20,10 +21,15 @@ DAMAGE = (sqlite3.Error, UnicodeError, OverflowError)
 
 
 class Database:
-    """One SQLite file. read_only: another process writes it. Raises StoreError for what cannot be done."""
+    """One SQLite file. read_only: another process writes it. Raises StoreError for what cannot be done.
+
+    Threads take turns: the library ends the whole process when a connection is closed while another thread reads it.
+    """
 
     def __init__(self, path: Path) -> None:
         self.path = path
+        self._turn = threading.RLock()
+        self._closed = False
         self._lock: int | None = None
         try:
             path.parent.mkdir(parents=True, exist_ok=True, mode=0o700)
@@ -44,7 +50,9 @@ class Database:
     def rows(self, statement: str, *values: object) -> list[Any]:
         """All rows of a reading statement."""
         try:
-            return self._db.execute(statement, values).fetchall()
+            with self._turn:
+                self._require_open()
+                return self._db.execute(statement, values).fetchall()
         except DAMAGE as error:
             raise StoreError(f"{self.path.name} cannot be read: {error}.") from error
 
@@ -61,29 +69,39 @@ class Database:
         """A transaction: on leaving it is on the disk, or nothing of it is and StoreError says so."""
         if self.read_only:
             raise StoreError("Another window of this program has the cases open; this one only reads.")
-        try:
-            self._db.execute("begin immediate")
-            yield
-            self._db.execute("commit")
-        except sqlite3.Error as error:
-            self._roll_back()
-            raise StoreError(f"Not saved: {error}. What was saved before is still there.") from error
-        except BaseException:
-            self._roll_back()
-            raise
+        with self._turn:
+            self._require_open()
+            try:
+                self._db.execute("begin immediate")
+                yield
+                self._db.execute("commit")
+            except sqlite3.Error as error:
+                self._roll_back()
+                raise StoreError(f"Not saved: {error}. What was saved before is still there.") from error
+            except BaseException:
+                self._roll_back()
+                raise
 
     def scrub(self) -> None:
         """Leave nothing of removed or replaced rows in the file or its log."""
         try:
-            self._db.execute("vacuum")
-            self._db.execute("pragma wal_checkpoint(truncate)")
+            with self._turn:
+                self._require_open()
+                self._db.execute("vacuum")
+                self._db.execute("pragma wal_checkpoint(truncate)")
         except sqlite3.Error as error:
             raise StoreError(f"{self.path.name} could not be tidied: {error}.") from error
 
     def close(self) -> None:
-        """Close the file and let another process write."""
-        self._db.close()
-        self._release()
+        """Close the file and let another process write. What is read of it afterwards is refused."""
+        with self._turn:
+            self._closed = True
+            self._db.close()
+            self._release()
+
+    def _require_open(self) -> None:
+        if self._closed:
+            raise StoreError(f"{self.path.name} is closed.")
 
     def _opened(self) -> sqlite3.Connection:
         if self.read_only:

@@ -24,7 +24,8 @@ from planner.records.reading import CaseFileError, read_case, write_case
 from planner.records.secrecy import Seal, new_seal, unwrapped
 
 FILE_NAME = "cases.db"
-WRAPPED_KEY = "wrapped_key"
+WRAPPED_KEY, LOCK_AFTER = "wrapped_key", "lock_after_min"
+USUAL_LOCK_MIN = 15.0  # of idle time, after which sealed cases are locked; planning assumption
 
 
 @dataclass(frozen=True)
@@ -201,6 +202,22 @@ class CaseStore:
     def lock(self) -> None:
         """Forget the key until the passphrase is entered again."""
         self._seal = None
+
+    @property
+    def lock_after_min(self) -> float | None:
+        """Idle minutes after which sealed cases are to be locked; None: never. 15 where nothing was chosen."""
+        row = self._file.row("select value from settings where name = ?", LOCK_AFTER)
+        try:
+            minutes = USUAL_LOCK_MIN if row is None else float(bytes(row[0]))
+        except ValueError:
+            return USUAL_LOCK_MIN  # damaged: lock rather than stay open
+        return minutes or None
+
+    def choose_lock_after(self, minutes: float | None) -> None:
+        """Keep the idle minutes; None: never."""
+        value = str(minutes or 0.0).encode()
+        with self._file.writing():
+            self._file.write("insert or replace into settings(name, value) values(?, ?)", LOCK_AFTER, value)
 
     def change_passphrase(self, old: str, new: str) -> None:
         """Wrap the same key with another passphrase."""

@@ -18,6 +18,8 @@ from planner.errors import StoreError
 from planner.records.secrecy import Seal, WrongPassphrase, new_seal, unwrapped
 from planner.records.store import CaseStore, default_path, new_case_id
 
+ROOT = Path(__file__).resolve().parents[2]
+
 SECRET = "correct horse battery"
 
 
@@ -353,3 +355,36 @@ TestAgainstAModel.settings = settings(
 
 def test_the_store_is_owned_by_the_user_who_made_it(store, tmp_path):
     assert (tmp_path / "cases.db").stat().st_uid == os.getuid()
+
+
+def test_closing_while_another_thread_reads_refuses_and_never_ends_the_process(tmp_path):
+    # A connection closed under a reading thread ends the interpreter; this runs in one of its own.
+    code = """
+import sys, threading
+from pathlib import Path
+from planner.case import Case
+from planner.errors import StoreError
+from planner.records.store import CaseStore
+for number in range(40):
+    store = CaseStore(Path(sys.argv[1]) / f"{number}.db")
+    store.save("a", Case())
+    refused, started = [], threading.Event()
+    def read():
+        try:
+            while True:
+                store.load("a")
+                started.set()
+        except StoreError as error:
+            refused.append(str(error))
+    threads = [threading.Thread(target=read) for _ in range(3)]
+    for thread in threads:
+        thread.start()
+    started.wait()
+    store.close()
+    for thread in threads:
+        thread.join()
+    assert refused == [f"{number}.db is closed."] * 3, refused
+print("whole")
+"""
+    done = subprocess.run([sys.executable, "-c", code, tmp_path], cwd=ROOT, capture_output=True, text=True)
+    assert done.stdout == "whole\n", done.stderr

@@ -6,6 +6,7 @@ from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
+from kivy.app import App
 from kivy.core.window import Window
 from kivy.uix.boxlayout import BoxLayout
 
@@ -13,12 +14,13 @@ from planner.case import Case
 from planner.errors import PlannerError
 from ui.library import CaseRow
 from ui.screens.outcomes import show_outcomes
+from ui.screens.passphrase import fill_changing, fill_setting
 from ui.theme import theme
 from ui.widgets.buttons import PlainButton, PrimaryButton
 from ui.widgets.entries import TextEntry
 from ui.widgets.notices import CautionStrip, Notice, paint_ground
 from ui.widgets.page import Page
-from ui.widgets.rows import Fold, ListRow, Side, Stack
+from ui.widgets.rows import Fold, ListRow, Stack
 from ui.widgets.text import Text, plain
 from ui.worker import away
 
@@ -76,9 +78,10 @@ class CasesPage(BoxLayout):
         folds = Stack(gap=0)
         folds.add_widget(Fold("Other demos", "Three invented people and trips", self._fill_demos))
         folds.add_widget(Fold("Import a case", "From a file on this device", self._fill_import))
-        if rows and not self.library.protected:
-            folds.add_widget(Fold("Passphrase", "Seal the cases on this device", self._fill_passphrase))
         if rows:
+            sealed = "Lock, or change it" if self.library.protected else "Seal the cases on this device"
+            folds.add_widget(Fold("Passphrase", sealed, self._fill_passphrase))
+            folds.add_widget(Fold("Versions of a case", "Compare them, go back to one", self._fill_versions))
             folds.add_widget(Fold("Remove a case", "With all its versions", self._fill_removal))
             folds.add_widget(
                 ListRow("[b]After the trip[/b]", "What happened beside what was planned", "›", show_outcomes)
@@ -105,22 +108,15 @@ class CasesPage(BoxLayout):
         self.content.add_widget(PrimaryButton("Unlock", lambda: self._away(lambda: self.library.unlock(entry.value))))
 
     def _fill_passphrase(self, body: BoxLayout) -> None:
-        words = (
-            "With a passphrase nothing about a person can be read in the file, not even a name. Without it nobody can "
-            "open the cases again: write it down where it is kept well."
-        )
-        first, again = TextEntry("Passphrase", longest=200), TextEntry("The same again", longest=200)
-        for entry in (first, again):
-            entry.input.password = True
+        if self.library.protected:
+            fill_changing(body, self.library, self._away, self._lock)
+        else:
+            fill_setting(body, self.library, self._away)
 
-        def seal() -> None:
-            if not first.value or first.value != again.value:
-                again.refuse("Both must be the same, and not empty.")
-                return
-            self._away(lambda: self.library.protect(first.value))
-
-        for widget in (Text(words), Side(first, again), PlainButton("Seal the cases", seal)):
-            body.add_widget(widget)
+    def _lock(self) -> None:
+        self.library.lock()
+        self.content.clear_widgets()
+        self._fill()
 
     def _away(self, work: Callable[[], None]) -> None:
         """Do what takes longer than a frame, then show what came of it."""
@@ -134,6 +130,12 @@ class CasesPage(BoxLayout):
             self.fault.add_widget(Notice(plain(str(refused)), "stop"))
 
         away(work, done)
+
+    def _fill_versions(self, body: BoxLayout) -> None:
+        listed = Stack(gap=0)
+        for row in self.library.rows():
+            listed.add_widget(ListRow(plain(row.title), row.detail, "›", on_tap=lambda r=row: _show_history(r)))
+        body.add_widget(listed)
 
     def _fill_removal(self, body: BoxLayout) -> None:
         listed, asked = Stack(gap=0), Stack()
@@ -178,3 +180,10 @@ class CasesPage(BoxLayout):
             self.fault.add_widget(Notice(plain(str(error)), "stop", title="Not opened."))
         except OSError as error:
             self.fault.add_widget(Notice(plain(f"{error.filename}: {error.strerror}."), "stop", title="Not opened."))
+
+
+def _show_history(row: CaseRow) -> None:
+    from ui.screens.history import HistoryPage
+
+    app = App.get_running_app()
+    app.root.show(HistoryPage(app, row))

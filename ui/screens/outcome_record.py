@@ -12,7 +12,8 @@ from ui import measures
 from ui.measures import plain_measure
 from ui.screens import form as forms
 from ui.screens.form import Form
-from ui.screens.outcomes import OutsidePage, show_outcomes
+from ui.screens.outcomes import show_outcomes
+from ui.screens.outside import OutsidePage
 from ui.screens.trip_ribbon import KIND_WORDS
 from ui.widgets.buttons import PrimaryButton
 from ui.widgets.notices import Notice

@@ -45,6 +45,13 @@ def fill_person(session: Any, form: Form, body: BoxLayout) -> None:
     body.add_widget(form.choice("patient.function.breathes_through_nose", "Breathes through the nose",
                                 hint="A pulse device needs it to trigger."))  # fmt: skip
     body.add_widget(form.choice("patient.function.can_run_equipment", "Can run the oxygen equipment without help"))
+    body.add_widget(Text("Only where the service needs it: initials or a reference are enough.", tone="muted"))
+    body.add_widget(
+        Side(
+            form.text("patient.name", "Name", hint="Left out of exports"),
+            form.date("patient.birth_date", "Born on", why="Left out of exports"),
+        )
+    )
 
 
 def fill_risk(session: Any, form: Form, body: BoxLayout) -> None:
