@@ -43,7 +43,6 @@ class Shell(BoxLayout):
         self.aside: Any = None
         self._asking: tuple[str, Any, Any] | None = None  # the step left to ask about a number, its screen and page
         self._show_again = Clock.create_trigger(self._show, -1)
-        paint_ground(self, theme.ground)
         self._build()
         names = ("revision", "plan", "preview", "stale", "said", "working_on")
         self._bindings = {name: lambda *_: self._show_again() for name in names}
