@@ -185,3 +185,37 @@ def test_what_is_missing_leads_by_one_touch_to_where_it_is_entered_and_nothing_i
     marks = [one.opacity for cell in shown(driver).answers.children for one in cell.children if isinstance(one, Onward)]
     assert marks == [0.0, 0.0]
     driver.close()
+
+
+def test_tab_goes_from_the_verdict_down_the_methods_in_their_order(demo_at):
+    driver = demo_at("forecast")
+    methods = shown(driver).part.forecast.activities[0].predictors
+    for _ in range(40):
+        driver.key(TAB)
+        if isinstance(driver.focused(), Why):
+            break
+    for index in range(len(methods)):
+        driver.key(TAB)
+        assert driver.focused() is driver.widgets(WhyRows)[0].children[len(methods) - 1 - index]
+    driver.key(ENTER)
+    driver.frames(6)
+    assert driver.reads(methods[-1].formula)
+
+
+def test_an_explanation_is_copied_as_plain_text_and_read_as_text(demo_at, monkeypatch):
+    from ui.screens import why
+    from ui.screens.as_text import text_of_step
+
+    copied = []
+    monkeypatch.setattr(why.Clipboard, "copy", copied.append)
+    driver = demo_at("forecast")
+    driver.tap(shown(driver).verdict)
+    driver.frames(6)
+    driver.tap("Copy this")
+    (text,) = copied
+    for words in ("Verdict, Flight 1", "Formula\n", "Inputs\n", "Source\n", "By another method\n"):
+        assert words in text
+    assert "[b]" not in text
+    read = text_of_step("why", driver.app.session)
+    assert "Verdict, Flight 1" in read
+    assert read.endswith("Estimate only. Confirm with prescriber.")
