@@ -2,6 +2,7 @@
 
 import re
 from datetime import date
+from importlib import resources
 
 import pytest
 
@@ -138,3 +139,16 @@ def test_no_explanation_promises_harmlessness(planned, case):
         for kind, part, item in (("verdict", "out", ""), ("model", "out", "rest"), ("target", "", ""))
     )
     assert not re.search(r"\b(safe|fit|cleared)\b", said)
+
+
+def test_what_a_part_needs_is_explained_from_its_decisions_its_hours_and_every_assumption():
+    case = Case.model_validate_json(resources.files("profiles").joinpath("demo", "copd_layover.json").read_text())
+    worked_out = plan(case, draws=200)
+    supply = next(one for one in worked_out.kit.parts if one.part_id == "flight_1")
+    found = asked(worked_out, case, "supply", "flight_1")
+    assert f"{supply.litres:,.0f} L" in found.result.replace("\u202f", ",")
+    decided = {one.value: one.taken_on for one in found.inputs if one.name.startswith("decided")}
+    assert "2 L/min by nasal cannula" in decided
+    assert all(decided.values())
+    assert {name for name, _ in worked_out.kit.assumptions} <= {one.name for one in found.inputs}
+    assert "Schmidt" in found.source

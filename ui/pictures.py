@@ -11,6 +11,8 @@ from kivy.clock import Clock
 
 from ui.app import PlannerApp
 from ui.screens import STEPS
+from ui.theme import theme
+from ui.widgets.notices import paint_ground
 
 PATIENCE_S = 60.0
 # An invented test: minute, phase, SpO2 (%), heart rate (a minute), flow (L/min).
@@ -33,7 +35,8 @@ class _Pictures:
         self._waited = 0.0
 
     def begin(self, _dt: float) -> None:
-        """The list of cases first."""
+        """The list of cases first; the ground that the window has is painted, since a picture is not of the window."""
+        paint_ground(self.app.root, theme.ground)
         self._save("cases")
         self.app.cases.open_demo()
         self._when_answered(lambda: self._step(0))

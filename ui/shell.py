@@ -43,7 +43,6 @@ class Shell(BoxLayout):
         self.aside: Any = None
         self._asking: tuple[str, Any, Any] | None = None  # the step left to ask about a number, its screen and page
         self._show_again = Clock.create_trigger(self._show, -1)
-        paint_ground(self, theme.ground)
         self._build()
         names = ("revision", "plan", "preview", "stale", "said", "working_on")
         self._bindings = {name: lambda *_: self._show_again() for name in names}
@@ -81,19 +80,18 @@ class Shell(BoxLayout):
         back = IconButton("back", "All cases", self.leave, pos_hint={"center_y": 0.5})
         header = BoxLayout(size_hint_y=None, height=0, padding=(space(1.5), space(1), space(2), 0))
         header.bind(minimum_height=header.setter("height"))
-        for widget in (back, self.who, self.undo, self.units):
+        for widget in (back, Widget() if self.wide else self.who, self.undo, self.units):
             header.add_widget(widget)
         self.said = Text("", role="label", tone="caution")
-        said = BoxLayout(size_hint_y=None, height=0, padding=(dp(MARGIN_DP), 0))
-        said.add_widget(self.said)
-        said.bind(minimum_height=said.setter("height"))
+        said = within_margins(self.said)
         self.working = Working(self.session)
         self.work = BoxLayout()
         self.strip = CautionStrip()
         if self.wide:
             self.orientation = "horizontal"
             side = BoxLayout(orientation="vertical", size_hint_x=None, width=dp(SIDE_DP))
-            for widget in (header, said, self.bar, Widget(), self.working):
+            who = within_margins(self.who)
+            for widget in (header, who, said, self.bar, Widget(), self.working):
                 side.add_widget(widget)
             edge = Widget(size_hint_x=None, width=max(1, dp(1)))
             paint_ground(edge, theme.line)
@@ -176,7 +174,7 @@ class Shell(BoxLayout):
         case, plan = self.session.case, self.session.plan
         state = plan.state if plan is not None and not self.session.stale else "Draft"
         name = plain(case.patient.initials or case.patient.reference or "New case")
-        self.who.text = f"[b]{name}[/b] · {state}"
+        self.who.text = f"[b]{name}[/b]\n{state}" if self.wide else f"[b]{name}[/b] · {state}"
         self.units.text = f"{case.display.pressure} {case.display.altitude}"
         self.undo.disabled = not self.session.can_undo
         self.said.text = plain(self.session.said)
@@ -206,6 +204,14 @@ class Shell(BoxLayout):
                 self.leave()
             return True
         return False
+
+
+def within_margins(widget: Widget) -> BoxLayout:
+    """A widget between the margins, as high as it is."""
+    box = BoxLayout(size_hint_y=None, height=0, padding=(dp(MARGIN_DP), 0))
+    box.add_widget(widget)
+    box.bind(minimum_height=box.setter("height"))
+    return box
 
 
 def beside(*widgets: Widget) -> BoxLayout:

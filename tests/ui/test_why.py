@@ -161,3 +161,61 @@ def test_the_explanation_follows_an_undone_entry(demo_at):
     driver.until(lambda: session.shown_plan is not None and not session.working_on, frames=20000)
     driver.frames(6)
     assert not driver.reads("PaO₂ 8.1 kPa")
+
+
+def test_what_is_missing_leads_by_one_touch_to_where_it_is_entered_and_nothing_is_marked_without_an_answer(
+    planner, tmp_path
+):
+    driver = Driver(PlannerApp(data_folder=tmp_path / "data", load_planner=planner), (390, 844), 1.0)
+    session = driver.app.session
+    driver.app.cases.new_case()
+    driver.frames(8)
+    driver.fill(driver.field("From gate to gate"), "3.5")
+    driver.until(lambda: session.shown_plan is not None and not session.working_on, frames=20000)
+    go = driver.app.shell.go
+    for question, step in (("What is SpO₂ or the blood gas at rest", "patient"), ("The elevation where", "trip")):
+        go("forecast")
+        driver.frames(8)
+        driver.tap(shown(driver).verdict)
+        assert driver.app.shell.step == "forecast"
+        driver.tap(question)
+        assert driver.app.shell.step == step
+    go("oxygen")
+    driver.frames(8)
+    marks = [one.opacity for cell in shown(driver).answers.children for one in cell.children if isinstance(one, Onward)]
+    assert marks == [0.0, 0.0]
+    driver.close()
+
+
+def test_tab_goes_from_the_verdict_down_the_methods_in_their_order(demo_at):
+    driver = demo_at("forecast")
+    methods = shown(driver).part.forecast.activities[0].predictors
+    for _ in range(40):
+        driver.key(TAB)
+        if isinstance(driver.focused(), Why):
+            break
+    for index in range(len(methods)):
+        driver.key(TAB)
+        assert driver.focused() is driver.widgets(WhyRows)[0].children[len(methods) - 1 - index]
+    driver.key(ENTER)
+    driver.frames(6)
+    assert driver.reads(methods[-1].formula)
+
+
+def test_an_explanation_is_copied_as_plain_text_and_read_as_text(demo_at, monkeypatch):
+    from ui.screens import why
+    from ui.screens.as_text import text_of_step
+
+    copied = []
+    monkeypatch.setattr(why.Clipboard, "copy", copied.append)
+    driver = demo_at("forecast")
+    driver.tap(shown(driver).verdict)
+    driver.frames(6)
+    driver.tap("Copy this")
+    (text,) = copied
+    for words in ("Verdict, Flight 1", "Formula\n", "Inputs\n", "Source\n", "By another method\n"):
+        assert words in text
+    assert "[b]" not in text
+    read = text_of_step("why", driver.app.session)
+    assert "Verdict, Flight 1" in read
+    assert read.endswith("Estimate only. Confirm with prescriber.")

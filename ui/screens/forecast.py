@@ -45,7 +45,9 @@ class ForecastScreen(ResultScreen):
         self.notes = Stack(gap=2)
         self.guidance = GuidanceFolds(self.session)
         self.test = PlainButton("Hypoxic challenge test", lambda: self.go("challenge"))
-        self.put(Why(self.verdict, self.ask_verdict), self.chart, self.others, self.narrow, self.notes)
+        self.asked = Why(self.verdict, self.ask_verdict)
+        self.missing = Stack(gap=0)
+        self.put(self.asked, self.chart, self.others, self.narrow, self.missing, self.notes)
         self.put(self.test, self.guidance)
         self.put(PrimaryButton("On to the oxygen", lambda: self.go("oxygen")))
 
@@ -94,6 +96,7 @@ class ForecastScreen(ResultScreen):
         forecast = part.forecast
         rest = forecast.activities[0] if forecast is not None else None
         self.verdict.text = self._verdict(part, rest)
+        self.asked.answer(rest is not None and bool(rest.against))
         answered = rest is not None and any(one.pao2_mmhg is not None for one in rest.predictors)
         self.chart.show((lambda **size: self._lay(part, rest, **size)) if answered else None)
         self._show_others(part)
@@ -183,8 +186,11 @@ class ForecastScreen(ResultScreen):
         self.notes.clear_widgets()
         for sentence in forecast.why if forecast is not None and forecast.test_advised else ():
             self.notes.add_widget(Notice(plain(sentence), "note", title="Test advised."))
+        self.missing.clear_widgets()
         for missing in plan.missing:
-            self.notes.add_widget(Notice(plain(missing.would_change), "caution", title=plain(missing.question)))
+            step = "trip" if missing.name.startswith("trip") else "kit" if missing.name.startswith("kit") else "patient"
+            notice = Notice(plain(missing.would_change), "caution", title=plain(missing.question))
+            self.missing.add_widget(Why(notice, lambda step=step: self.go(step)))
         for note in plan.baseline.notes:
             if note.kind in ("old", "state", "place", "oximetry"):
                 self.notes.add_widget(Notice(plain(note.text), "caution"))

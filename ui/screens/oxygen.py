@@ -172,7 +172,9 @@ class OxygenScreen(ResultScreen):
                 Text(plain(below), role="label", tone="muted"),
                 gap=0.5,
             )
-            self.answers.add_widget(Why(words, lambda kind=kind: self._ask(kind)))
+            cell = Why(words, lambda kind=kind: self._ask(kind))
+            cell.answer({"rule": True, "model": titration is not None, "decided": decided is not None}[kind])
+            self.answers.add_widget(cell)
 
     def _show_risk(self, plan: Any) -> None:
         self.risk.clear_widgets()

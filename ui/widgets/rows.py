@@ -60,13 +60,15 @@ class ListRow(Tappable):
 
     def _place(self, *_: Any) -> None:
         reach = space(3)
-        self._ground.pos, self._ground.size = (self.x - reach, self.y), (self.width + 2 * reach, self.height)
-        self._bar.pos, self._bar.size = (self.x - reach, self.y), (dp(3), self.height)
+        raised = self.chosen or self.state == "down"  # an invisible ground would take as long to draw as a visible one
+        self._ground.pos = (self.x - reach, self.y)
+        self._ground.size = (self.width + 2 * reach, self.height) if raised else (0, 0)
+        self._bar.pos, self._bar.size = (self.x - reach, self.y), (dp(3) if self.chosen else 0, self.height)
         self._line.pos, self._line.size = self.pos, (self.width, max(1, dp(1)))
 
     def _paint(self, *_: Any) -> None:
-        self._ground_colour.rgba = theme.raised if self.chosen or self.state == "down" else (0, 0, 0, 0)
-        self._bar_colour.rgba = theme.data if self.chosen else (0, 0, 0, 0)
+        self._ground_colour.rgba, self._bar_colour.rgba = theme.raised, theme.data
+        self._place()
 
 
 class Chevron(Widget):

@@ -44,12 +44,19 @@ class Why(Asked):
 
     def __init__(self, thing: Widget, on_tap: Callable[[], None], **keywords: Any) -> None:
         super().__init__(on_tap, size_hint_y=None, height=target(), spacing=space(1.5), **keywords)
-        self.thing = thing
+        self._asked = on_tap
+        self.thing, self._mark = thing, Onward()
         thing.pos_hint = {"center_y": 0.5}
         self.add_widget(thing)
-        self.add_widget(Onward())
+        self.add_widget(self._mark)
         thing.bind(height=self._grow)
         self._grow()
+
+    def answer(self, there: bool) -> None:
+        """Whether there is anything to ask: without an answer there is no mark, and a touch does nothing."""
+        self.on_tap = self._asked if there else None
+        self.is_focusable = there
+        self._mark.opacity = 1.0 if there else 0.0
 
     def _grow(self, *_: Any) -> None:
         self.height = max(target(), self.thing.height + space(2))
