@@ -224,17 +224,19 @@ def test_a_killed_worker_loses_nothing(finished, tmp_path):
 
 def test_a_bad_case_is_reported_with_its_line_and_the_rest_is_done(tmp_path):
     cases = tmp_path / "cases.jsonl"
-    newer = json.dumps(DEMO | {"version": 99})
-    cases.write_text("\n".join([case_text("good"), "{not json", newer, case_text("also good")]), encoding="utf-8")
+    newer, older = (json.dumps(DEMO | {"version": version}) for version in (99, 0))
+    lines = [case_text("good"), "{not json", newer, case_text("also good"), older]
+    cases.write_text("\n".join(lines), encoding="utf-8")
     told = Told()
     assert run_batch(cases, tmp_path / "out", progress=told) == 1
     assert told.sentences[0].startswith("Line 2: ")
     assert told.sentences[1].startswith("Line 3: ")
     assert "version 99" in told.sentences[1]
     assert not any("The planner failed" in text for text in told.sentences)
-    assert told.sentences[2].startswith("2 of 4 cases failed")
+    assert "version 0" in told.sentences[2]
+    assert told.sentences[3].startswith("3 of 5 cases failed")
     rows = table(tmp_path / "out")
-    assert [row["status"] for row in rows] == ["planned", "failed", "failed", "planned"]
+    assert [row["status"] for row in rows] == ["planned", "failed", "failed", "planned", "failed"]
     assert rows[1]["message"] in told.sentences[0]
 
 
