@@ -1,6 +1,10 @@
 """Versions, passphrase and lock in the real app: nothing is lost, and nothing is left open."""
 
+import os
+import subprocess
+import sys
 import time
+from pathlib import Path
 
 import pytest
 
@@ -9,6 +13,8 @@ from planner.case.patient import Patient
 from planner.records.store import CaseStore
 from ui import app as app_module
 from ui.library import Library
+
+ROOT = Path(__file__).resolve().parents[2]
 
 
 def kept(folder, *ages):
@@ -149,3 +155,49 @@ def test_undo_goes_back_over_steps(demo):
     demo.tap(demo.app.shell.undo)
     assert session.case.patient.age_years == age
     assert session.case.trip.parts[0].duration_min == minutes
+
+
+CRASH = """
+import sys
+from pathlib import Path
+from kivy.clock import Clock
+from ui.app import PlannerApp
+app = PlannerApp(data_folder=Path(sys.argv[1]))
+def open_and_fail(_dt):
+    app.library.unlock("ripe cherries")
+    app.open_case("a", app.library.read("a"))
+    app.session.set("patient.reference", "ZORRO-2")
+    app.session.save_now()
+    Clock.schedule_once(fail, 0.3)
+def fail(_dt):
+    raise RuntimeError("a fault in the program")
+Clock.schedule_once(open_and_fail, 1.0)
+app.run()
+"""
+
+
+def test_a_crash_leaves_nothing_of_a_sealed_case_in_any_file_or_report(tmp_path):
+    data, home, temporary = (tmp_path / name for name in ("data", "kivy", "temporary"))
+    temporary.mkdir()
+    with CaseStore(data / "cases.db") as store:
+        store.save("a", Case(patient=Patient(initials="ZORRO", name="Zorro Zorrino")))
+        store.protect("ripe cherries")
+    environment = os.environ | {"KIVY_HOME": str(home), "TMPDIR": str(temporary), "PYTHONFAULTHANDLER": "1"}
+    for name in ("KIVY_NO_FILELOG", "KIVY_NO_CONSOLELOG"):
+        environment.pop(name, None)
+    done = subprocess.run(
+        [sys.executable, "-c", CRASH, str(data)],
+        cwd=ROOT,
+        env=environment,
+        capture_output=True,
+        timeout=60,
+        check=False,
+    )
+    assert b"a fault in the program" in done.stderr
+    with CaseStore(data / "cases.db") as store:
+        store.unlock("ripe cherries")
+        assert store.load("a").patient.reference == "ZORRO-2"
+    left = [path for path in tmp_path.rglob("*") if path.is_file()]
+    assert any("kivy" in path.parts for path in left)
+    assert [path for path in left if b"zorr" in path.read_bytes().lower()] == []
+    assert b"zorr" not in (done.stdout + done.stderr).lower()
