@@ -1,4 +1,4 @@
-"""Command line: python -m planner plan | demo | batch | outcomes | profiles.
+"""Command line: python -m planner plan | demo | batch | outcomes | export | import | profiles.
 
 Exit status: 0 done; 1 something in a batch failed; 2 bad input, with a sentence on standard error.
 """
@@ -63,6 +63,18 @@ def _parser() -> argparse.ArgumentParser:
     outcomes.add_argument("cases", type=Path, metavar="CASES.jsonl")
     outcomes.set_defaults(run=_run_outcomes)
 
+    export = commands.add_parser("export", help="one file of cases, without name and birth date; or FHIR measurements")
+    export.add_argument("cases", type=Path, nargs="+", metavar="CASE.json")
+    export.add_argument("--out", type=Path, required=True, metavar="FILE")
+    export.add_argument("--fhir", action="store_true", help="measurements of one case as a FHIR R4 Bundle")
+    export.add_argument("--with-identity", action="store_true", help="keep name and birth date")
+    export.set_defaults(run=_run_export)
+
+    taken = commands.add_parser("import", help="cases from files or folders: cases, exports, FHIR Bundles")
+    taken.add_argument("files", type=Path, nargs="+", metavar="FILE_OR_FOLDER")
+    taken.add_argument("--out", type=Path, required=True, metavar="FOLDER")
+    taken.set_defaults(run=_run_import)
+
     profiles = commands.add_parser("profiles", help="list and check the profiles: the packaged and the service's own")
     profiles.set_defaults(run=_run_profiles)
     return parser
@@ -116,6 +128,34 @@ def _run_outcomes(chosen: argparse.Namespace) -> int:
 
     print(outcomes_report(read_cases(chosen.cases)))
     return 0
+
+
+def _run_export(chosen: argparse.Namespace) -> int:
+    from planner.errors import InputError
+    from planner.records.exchange import export_cases, export_fhir
+    from planner.records.reading import read_case, write_atomically
+
+    cases = [read_case(path.read_bytes()) for path in chosen.cases]
+    if chosen.fhir and len(cases) != 1:
+        raise InputError("cases", f"A FHIR Bundle holds one case; {len(cases)} were named.")
+    content, said = export_fhir(cases[0]) if chosen.fhir else export_cases(cases, with_identity=chosen.with_identity)
+    write_atomically(chosen.out, content)
+    print(*said, chosen.out, sep="\n")
+    return 0
+
+
+def _run_import(chosen: argparse.Namespace) -> int:
+    from planner.records.exchange import Taken, import_file, import_folder, save_cases
+
+    found: list[Taken] = []
+    for path in chosen.files:
+        found += import_folder(path) if path.is_dir() else [import_file(path.read_bytes(), path.name)]
+    for one in found:
+        for sentence in one.said:
+            print(f"{one.name}: {sentence}")
+    written = save_cases((case for one in found for case in one.cases), chosen.out)
+    print(*written, sep="\n")
+    return 0 if written else 2
 
 
 def _run_profiles(_: argparse.Namespace) -> int:

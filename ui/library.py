@@ -10,7 +10,8 @@ from pathlib import Path
 from planner.case import Case
 from planner.catalogue import profile_text
 from planner.errors import StoreError
-from planner.records.reading import read_case
+from planner.records.exchange import Taken, export_cases, export_fhir, file_name, import_file, import_folder
+from planner.records.reading import read_case, write_atomically
 from planner.records.store import FILE_NAME, CaseEntry, CaseStore, VersionEntry, new_case_id
 from ui.widgets.typing import date_text
 
@@ -138,9 +139,23 @@ class Library:
         """One of the demo cases."""
         return read_case(profile_text(f"demo/{name}.json"))
 
-    def read_file(self, path: Path) -> Case:
-        """A case from a file. Raises PlannerError with a sentence for each fault, or OSError."""
-        return read_case(path.read_bytes())
+    def read_file(self, path: Path) -> Taken:
+        """Cases from a case file, an export, a FHIR Bundle or a folder of them. Raises PlannerError, or OSError."""
+        if path.is_dir():
+            found = import_folder(path)
+            said = [f"{one.name}: {sentence}" for one in found for sentence in one.said]
+            return Taken(path.name, tuple(case for one in found for case in one.cases), tuple(said))
+        return import_file(path.read_bytes(), path.name)
+
+    def export(self, case_id: str, folder: Path, *, fhir: bool, with_identity: bool) -> tuple[Path, tuple[str, ...]]:
+        """Write one case to a file of its own, with what is to be known of it. Raises PlannerError, or OSError."""
+        case = self.read(case_id)
+        content, said = export_fhir(case) if fhir else export_cases([case], with_identity=with_identity)
+        folder.mkdir(parents=True, exist_ok=True)
+        kind = "measurements" if fhir else "case"
+        path = folder / f"{kind}-{file_name(case.patient.reference or case.patient.initials)}-{case_id[:6]}.json"
+        write_atomically(path, content)
+        return path, said
 
 
 def _row(entry: CaseEntry) -> CaseRow:

@@ -75,10 +75,10 @@ def test_a_file_that_is_no_case_is_refused_beside_the_entry(opened, tmp_path):
     wrong = tmp_path / "wrong.json"
     wrong.write_text(json.dumps({"format": "shopping list"}))
     driver = opened()
-    driver.tap("Import a case")
+    driver.tap("Import cases")
     driver.tap(driver.app.cases.path.input)
     driver.type(str(wrong))
-    driver.tap("Import this file")
+    driver.tap("Import this")
     assert driver.reads("This is not a case file")
     assert driver.app.shell is None
 

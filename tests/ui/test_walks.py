@@ -20,7 +20,7 @@ def case(driver):
 def test_an_empty_start_explains_itself_and_offers_three_ways_on(opened):
     driver = opened()
     assert driver.reads("A person with lung disease wants to travel.")
-    for way in ("New case", "Open a demo", "Import a case"):
+    for way in ("New case", "Open a demo", "Import cases"):
         assert driver.says(way) is not None
 
 

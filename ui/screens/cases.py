@@ -6,6 +6,7 @@ from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
+import platformdirs
 from kivy.app import App
 from kivy.core.window import Window
 from kivy.uix.boxlayout import BoxLayout
@@ -17,6 +18,7 @@ from ui.screens.outcomes import show_outcomes
 from ui.screens.passphrase import fill_changing, fill_setting
 from ui.theme import theme
 from ui.widgets.buttons import PlainButton, PrimaryButton
+from ui.widgets.choices import Choice
 from ui.widgets.entries import TextEntry
 from ui.widgets.notices import CautionStrip, Notice, paint_ground
 from ui.widgets.page import Page
@@ -77,11 +79,12 @@ class CasesPage(BoxLayout):
         self.content.add_widget(PlainButton("Open a demo", self.open_demo))
         folds = Stack(gap=0)
         folds.add_widget(Fold("Other demos", "Three invented people and trips", self._fill_demos))
-        folds.add_widget(Fold("Import a case", "From a file on this device", self._fill_import))
+        folds.add_widget(Fold("Import cases", "From a file or folder on this device", self._fill_import))
         if rows:
             sealed = "Lock, or change it" if self.library.protected else "Seal the cases on this device"
             folds.add_widget(Fold("Passphrase", sealed, self._fill_passphrase))
             folds.add_widget(Fold("Versions of a case", "Compare them, go back to one", self._fill_versions))
+            folds.add_widget(Fold("Export a case", "To a file, without name and birth date", self._fill_export))
             folds.add_widget(Fold("Remove a case", "With all its versions", self._fill_removal))
             folds.add_widget(
                 ListRow("[b]After the trip[/b]", "What happened beside what was planned", "›", show_outcomes)
@@ -93,10 +96,11 @@ class CasesPage(BoxLayout):
             body.add_widget(PlainButton(words, lambda n=name: self.open_demo(n)))
 
     def _fill_import(self, body: BoxLayout) -> None:
-        body.add_widget(Text("Drop a case file on this window, or write where it is.", role="body"))
-        self.path = TextEntry("File", longest=1000)
+        words = "Drop a case file, an export, a FHIR Bundle or a folder on this window, or write where it is."
+        body.add_widget(Text(words))
+        self.path = TextEntry("File or folder", longest=1000)
         body.add_widget(self.path)
-        body.add_widget(PlainButton("Import this file", lambda: self.import_file(Path(self.path.value).expanduser())))
+        body.add_widget(PlainButton("Import this", lambda: self.import_file(Path(self.path.value).expanduser())))
 
     def _fill_locked(self) -> None:
         self.fault = Stack()
@@ -137,6 +141,24 @@ class CasesPage(BoxLayout):
             listed.add_widget(ListRow(plain(row.title), row.detail, "›", on_tap=lambda r=row: _show_history(r)))
         body.add_widget(listed)
 
+    def _fill_export(self, body: BoxLayout) -> None:
+        listed, said = Stack(gap=0), Stack()
+        forms = Choice("As", ((False, "Whole case"), (True, "Measurements, FHIR")), False)
+        who = Choice("Name and birth date", ((False, "Left out"), (True, "Kept")), False)
+
+        def write(row: CaseRow) -> None:
+            def do() -> None:
+                folder = Path(platformdirs.user_documents_dir()) / "oxygen-exports"
+                path, words = self.library.export(row.case_id, folder, fhir=forms.value, with_identity=who.value)
+                said.hold(Notice(plain(" ".join((f"Written: {path}.", *words))), "note"))
+
+            self._try(do)
+
+        for row in self.library.rows():
+            listed.add_widget(ListRow(plain(row.title), row.detail, on_tap=lambda r=row: write(r)))
+        for widget in (forms, who, listed, said):
+            body.add_widget(widget)
+
     def _fill_removal(self, body: BoxLayout) -> None:
         listed, asked = Stack(gap=0), Stack()
 
@@ -163,8 +185,21 @@ class CasesPage(BoxLayout):
         self._try(lambda: self.open_case(self.library.new_id(), self.library.demo(name)))
 
     def import_file(self, path: Path) -> None:
-        """Read a case file and open it; a fault is said here and nothing is lost."""
-        self._try(lambda: self.open_case(self.library.new_id(), self.library.read_file(path)))
+        """Read cases from a file or a folder: one is opened, several are kept; what is not taken is said."""
+
+        def take() -> None:
+            taken = self.library.read_file(path)
+            if len(taken.cases) == 1 and not taken.said:
+                self.open_case(self.library.new_id(), taken.cases[0])
+                return
+            for case in taken.cases:
+                self.library.save(self.library.new_id(), case)
+            self.content.clear_widgets()
+            self._fill()
+            words = " ".join((f"Cases taken: {len(taken.cases)}.", *taken.said))
+            self.fault.add_widget(Notice(plain(words), "note" if taken.cases else "stop"))
+
+        self._try(take)
 
     def _open(self, case_id: str) -> None:
         self._try(lambda: self.open_case(case_id, self.library.read(case_id)))
