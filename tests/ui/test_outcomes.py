@@ -179,6 +179,20 @@ def test_escape_goes_back_page_by_page(opened, tmp_path):
     assert driver.reads("New case")
 
 
+def test_what_is_being_recorded_is_kept_when_the_cases_are_locked_and_hidden_then(opened, tmp_path):
+    kept(tmp_path, demo=DEMO)
+    driver = opened()
+    driver.app.library.protect("a long passphrase")
+    open_flight(driver)
+    driver.fill(driver.field("Symptoms"), "dizzy")
+    driver.app.lock()
+    driver.frames(3)
+    assert not driver.reads("dizzy")
+    assert not driver.reads("M. T.")
+    driver.app.library.unlock("a long passphrase")
+    assert [one.symptoms for one in driver.app.library.read("demo").outcome.parts if one.symptoms] == ["dizzy"]
+
+
 def test_a_case_without_a_trip_has_nothing_to_record(opened, tmp_path):
     kept(tmp_path, empty=Case())
     driver = opened()
