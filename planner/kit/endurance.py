@@ -8,7 +8,7 @@ so sets compare fairly.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, fields, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -135,15 +135,17 @@ def draw_trips(
     draws, count = waits_min.shape
     nights = np.array([max(1.0, leg.hours / 24.0) if leg.stationary else 0.0 for leg in legs])
     return Draws(
-        waits_h=waits_min / 60.0,
-        longer_h=longer_min / 60.0,
+        waits_h=np.asfortranarray(waits_min) / 60.0,
+        longer_h=np.asfortranarray(longer_min) / 60.0,
         flow=np.asarray(assumed.flow_sd * rng.standard_normal(draws) + 1.0),
         breathing=np.clip(assumed.breathing_sd * rng.standard_normal(draws) + 1.0, 0.3, None),
         fill=np.clip(assumed.fill_mean + assumed.fill_sd * rng.standard_normal(draws), 0.5, 1.0),
         battery=np.clip(assumed.battery_mean + assumed.battery_sd * rng.standard_normal(draws), 0.3, 1.0),
         failure_h=np.asarray(assumed.concentrator_mttf_h * rng.standard_exponential(draws)),
-        airline_ok=rng.random((draws, count)) >= assumed.airline_fails,
-        stationary_ok=rng.random((draws, count)) < (1.0 - assumed.stationary_fails_a_night) ** nights,
+        airline_ok=np.asfortranarray(rng.random((draws, count)) >= assumed.airline_fails),
+        stationary_ok=np.asfortranarray(
+            rng.random((draws, count)) < (1.0 - assumed.stationary_fails_a_night) ** nights
+        ),
         charger_ok=np.greater_equal(rng.random(draws), assumed.charger_fails),
     )
 
@@ -156,9 +158,9 @@ def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draw
     carried. power: None where no concentrator is carried.
     """
     draws, count = drawn.waits_h.shape
-    short, down = np.zeros((draws, count)), np.zeros((draws, count), dtype=bool)
-    failed = np.zeros((draws, count), dtype=bool)
-    litres_there, litres_left, wh_there, wh_left = (np.zeros((draws, count)) for _ in range(4))
+    # Leg after leg in memory, since each leg is written at once.
+    short, litres_there, litres_left, wh_there, wh_left = (np.zeros((draws, count), order="F") for _ in range(5))
+    down, failed = (np.zeros((draws, count), dtype=bool, order="F") for _ in range(2))
     litres, liquid = np.zeros(draws), np.zeros(draws)
     full_wh = (0.0 if power is None else power.nominal_wh * carried.batteries) * drawn.battery
     energy, clock = full_wh.copy(), np.zeros(draws)
@@ -191,7 +193,8 @@ def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draw
         liquid, needed = _from_vessel(leg.liquid_l_per_h, liquid, needed, flow)
         liquid = np.maximum(np.minimum(liquid, before - boils * (hours + wait)), 0.0)
         if powered:
-            for floor in (np.minimum(_kept_wh(legs, number), energy), np.zeros(draws)):
+            kept = _kept_wh(legs, number)
+            for floor in (kept, 0.0) if kept else (0.0,):
                 spendable = np.where(working, np.maximum(energy - floor, 0.0), 0.0)
                 used = np.minimum(needed, spendable / leg.battery_w)
                 energy, needed = energy - used * leg.battery_w, needed - used
@@ -207,14 +210,17 @@ def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draw
     return Played(short, down, failed, litres_there, litres_left, wh_there, wh_left)
 
 
-def run_out(played: Played) -> RunOut:
-    """Chance of running out anywhere, by leg (first one) and by cause."""
+def run_out(played: Played, draws: int | None = None) -> RunOut:
+    """Chance of running out anywhere, by leg (first one) and by cause.
+
+    draws: of how many trips, where only those that may run out were played.
+    """
     ran = played.short_h > SHORT_H
-    draws = ran.shape[0]
+    draws = ran.shape[0] if draws is None else draws
     any_leg = ran.any(axis=1)
     first = np.where(any_leg, ran.argmax(axis=1), -1)
-    by_leg = tuple(float(np.mean(first == leg)) for leg in range(ran.shape[1]))
-    at = np.arange(draws)[any_leg], first[any_leg]
+    by_leg = tuple(float((first == leg).sum()) / draws for leg in range(ran.shape[1]))
+    at = np.flatnonzero(any_leg), first[any_leg]
     broken = played.concentrator_down[at]
     missing = played.source_failed[at] & ~broken
     causes = {
@@ -223,7 +229,13 @@ def run_out(played: Played) -> RunOut:
         "delay or use": float((~broken & ~missing).sum()) / draws,
     }
     low, high = wilson(int(any_leg.sum()), draws)
-    return RunOut(float(any_leg.mean()), low, high, by_leg, causes, draws)
+    return RunOut(float(any_leg.sum()) / draws, low, high, by_leg, causes, draws)
+
+
+def those_short(played: Played, drawn: Draws) -> Draws:
+    """The draws that ran out: with more of anything carried, no other can."""
+    ran = (played.short_h > SHORT_H).any(axis=1)
+    return replace(drawn, **{one.name: np.asfortranarray(getattr(drawn, one.name)[ran]) for one in fields(drawn)})
 
 
 def wilson(hits: int, draws: int, z: float = 1.959964) -> tuple[float, float]:

@@ -10,7 +10,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
-from planner.kit.endurance import Assumptions, Carried, Draws, RunOut, play, run_out
+from planner.kit.endurance import Assumptions, Carried, Draws, RunOut, play, run_out, those_short
 from planner.kit.legs import Choice, Leg, Power
 
 MOST_EXTRA = 4
@@ -60,6 +60,7 @@ def strengthen(
         for batteries in range(more_packs + 1)
         for cylinders in range(MOST_EXTRA + 1 if may_carry else 1)
     ]
+    trips = drawn.waits_h.shape[0]
     best: Stronger | None = None
     for _, batteries, cylinders in sorted(grid)[:SCREENED]:
         added = batteries * battery_kg
@@ -69,7 +70,10 @@ def strengthen(
         if (batteries or cylinders) and _too_heavy(legs, heavier):
             continue
         larger = _with(carried, choice, batteries, cylinders, kept, assumed)
-        chance = run_out(play(legs, larger, power, drawn, assumed))
+        played = play(legs, larger, power, drawn, assumed)
+        chance = run_out(played, trips)
+        if best is None:  # the planned set itself
+            drawn = those_short(played, drawn)
         found = Stronger(
             carried=larger,
             extra_batteries=batteries,

@@ -3,8 +3,9 @@
 from dataclasses import replace
 
 import numpy as np
+import pytest
 
-from planner.kit.endurance import Assumptions, Carried, draw_trips
+from planner.kit.endurance import SHORT_H, Assumptions, Carried, draw_trips, play, run_out
 from planner.kit.legs import Choice, Leg, Power
 from planner.kit.strengthen import strengthen
 
@@ -57,3 +58,38 @@ def test_an_added_cylinder_is_gone_after_a_flight_that_forbids_it():
     found = stronger(legs, Carried((200.0, 0.0, 0.0), (200.0, 0.0, 0.0), 0), [4.0, 0.0, 0.0])
     assert found.carried.litres_most[0] > 200.0
     assert found.carried.litres_most[1:] == (0.0, 0.0)
+
+
+@pytest.mark.parametrize("seed", range(12))
+def test_the_chance_of_a_larger_set_is_that_of_all_trips_though_only_the_short_ones_are_played_again(seed):
+    rng = np.random.default_rng(seed)
+    legs = [replace(leg, hours=float(rng.uniform(1.0, 6.0))) for leg in (ROAD, FLIGHT, ROAD, FLIGHT)]
+    legs = [replace(leg, oxygen_h=leg.hours, mains=bool(rng.random() < 0.3)) for leg in legs]
+    litres = [150.0 * leg.hours for leg in legs]
+    carried = Carried((litres[0], 0.0, litres[2], 0.0), (litres[0], 0.0, litres[2], 0.0), int(rng.integers(4, 7)))
+    drawn = draw_trips(legs, rng.exponential(40.0, (3000, 4)), rng.exponential(20.0, (3000, 4)), rng, ASSUMED)
+    found = strengthen(legs, carried, [9.0] * 4, [SMALL], POWER, drawn, ASSUMED, 0.02)
+    assert found.extra_batteries + found.extra_cylinders > 0
+    assert found.chosen_on == run_out(play(legs, found.carried, POWER, drawn, ASSUMED))
+
+
+@pytest.mark.parametrize("seed", range(20))
+def test_with_more_carried_no_trip_runs_out_that_did_not_before(seed):
+    rng = np.random.default_rng(seed)
+    legs = [replace(ROAD if rng.random() < 0.6 else FLIGHT, hours=float(rng.uniform(1.0, 6.0))) for _ in range(6)]
+    legs = [replace(leg, oxygen_h=leg.hours, mains=bool(rng.random() < 0.3), concentrator_w=40.0) for leg in legs]
+    litres = tuple(float(one) for one in rng.choice([0.0, 200.0, 600.0], 6))
+    carried = Carried(litres, (600.0,) * 6, int(rng.integers(1, 5)))
+    drawn = draw_trips(legs, rng.exponential(40.0, (2000, 6)), rng.exponential(20.0, (2000, 6)), rng, ASSUMED)
+    kept = int(rng.integers(1, 7))
+    larger = replace(
+        carried,
+        batteries=carried.batteries + 1,
+        litres_new=(litres[0] + 200.0, *litres[1:]),
+        litres_most=tuple(most + 200.0 * (leg < kept) for leg, most in enumerate(carried.litres_most)),
+    )
+    before, after = (
+        (play(legs, one, POWER, drawn, ASSUMED).short_h > SHORT_H).any(axis=1) for one in (carried, larger)
+    )
+    assert before.any()
+    assert not (after & ~before).any()
