@@ -55,6 +55,7 @@ class Driver:
         self.app.stop()
         stopTouchApp()
         for child in Window.children[:]:
+            child.clear_widgets()  # a page that listens to the window stops when it is taken out
             Window.remove_widget(child)
         EventLoop.touches.clear()
         Metrics.fontscale = 1.0
