@@ -147,6 +147,9 @@ class Shell(BoxLayout):
         if self.roomy and self.screen.explains:
             self.session.place["why"] = None
             self.aside = screen_class("why")(self.session, lambda _step: self.aside.show())
+            self.aside.first = self.screen.first_question
+            self.screen.moved = self.aside.show
+            self.aside.show()
             line = Widget(size_hint_x=None, width=max(1, dp(1)))
             paint_ground(line, theme.line)
             self.work.add_widget(line)

@@ -156,7 +156,7 @@ class CasesPage(BoxLayout):
 
         for row in self.library.rows():
             listed.add_widget(ListRow(plain(row.title), row.detail, on_tap=lambda r=row: write(r)))
-        for widget in (forms, who, listed, said):
+        for widget in (forms, who, said, listed):
             body.add_widget(widget)
 
     def _fill_removal(self, body: BoxLayout) -> None:

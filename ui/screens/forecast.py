@@ -105,6 +105,10 @@ class ForecastScreen(ResultScreen):
         self._show_notes(plan, forecast)
         self.guidance.show_plan(plan)
 
+    def first_question(self) -> tuple[str, str, str] | None:
+        """The verdict on the part under the finger."""
+        return None if self.part is None else ("verdict", self.part.span.part_id, "")
+
     def ask_verdict(self) -> None:
         """Show how the verdict on the part under the finger was worked out."""
         self._ask("verdict")

@@ -101,6 +101,10 @@ class OxygenScreen(ResultScreen):
         self.dose.height = 0
         self.decide.forget()
 
+    def first_question(self) -> tuple[str, str, str] | None:
+        """The flow of the model for this part and activity."""
+        return None if self.part is None else ("model", self.part.span.part_id, self.activity)
+
     # -- inside
 
     def _ask(self, kind: str) -> None:

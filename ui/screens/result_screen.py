@@ -104,3 +104,4 @@ class ResultScreen(Screen):
         elif seen != self._shown or again:
             self._shown = seen
             self.show_part(plan.parts[index], plan)
+            self.moved()

@@ -25,6 +25,7 @@ class Screen(BoxLayout):
     def __init__(self, session: Any, go: Callable[[str], None]) -> None:
         super().__init__(orientation="vertical", size_hint_y=None, height=0, spacing=space(5))
         self.session, self.go = session, go
+        self.moved: Callable[[], None] = lambda: None  # called when the screen shows another part
         self.form = Form(session)
         self.bind(minimum_height=self.setter("height"))
         self.put(Text(f"[b]{self.question}[/b]", role="title"))
@@ -51,6 +52,10 @@ class Screen(BoxLayout):
         """Grey results that no longer match the entries; ungrey those that do."""
         for widget in widgets:
             widget.opacity = GREY if self.session.stale else 1.0
+
+    def first_question(self) -> tuple[str, str, str] | None:
+        """The number whose explanation stands beside the screen in a wide window until another is asked about."""
+        return None
 
     def escape(self) -> bool:
         """What Escape does here first; False: the shell goes back."""

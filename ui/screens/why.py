@@ -32,23 +32,24 @@ class WhyScreen(Screen):
         self.body = Stack(gap=4)
         self.put(self.body)
         self._shown: Any = None
+        self.first: Callable[[], Any] = lambda: None  # what is explained until something is asked
 
     def refresh(self) -> None:
         """Show the number that was asked about last."""
-        found = self._explanation()
-        if found is not None and found == self._shown:
-            return
-        self._shown = found
-        self.body.clear_widgets()
         asked = self.session.place.get("why")
+        found = self._explanation(asked or self.first())
+        if found is not None and (asked, found) == self._shown:
+            return
+        self._shown = (asked, found)
+        self.body.clear_widgets()
         if asked is None:
             self.body.add_widget(Text(HINT, tone="muted"))
-            return
-        if found is None:
+        elif found is None:
             self.body.add_widget(Text("This number is not worked out yet: an entry it needs is missing."))
-        else:
+        if found is not None:
             self._fill(found)
-        self.body.add_widget(PlainButton("Back", self._back))
+        if asked is not None:
+            self.body.add_widget(PlainButton("Back", self._back))
 
     def escape(self) -> bool:
         """Escape goes back to where the number stands."""
@@ -59,12 +60,11 @@ class WhyScreen(Screen):
         self.session.place["why"] = None
         self.go(self.session.place.get("why_from", "forecast"))
 
-    def _explanation(self) -> Any:
-        from planner.explanation import About, explain
-
-        asked = self.session.place.get("why")
+    def _explanation(self, asked: Any) -> Any:
         if asked is None:
             return None
+        from planner.explanation import About, explain
+
         for plan in (self.session.preview, self.session.plan):
             found = None if plan is None else explain(plan, self.session.case, About(*asked))
             if found is not None:
