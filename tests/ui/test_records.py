@@ -4,11 +4,14 @@ import os
 import subprocess
 import sys
 import time
+from datetime import date
 from pathlib import Path
 
+import platformdirs
 import pytest
 
 from planner.case import Case
+from planner.case.measurements import BloodGas
 from planner.case.patient import Patient
 from planner.records.store import CaseStore
 from ui import app as app_module
@@ -155,6 +158,51 @@ def test_undo_goes_back_over_steps(demo):
     demo.tap(demo.app.shell.undo)
     assert session.case.patient.age_years == age
     assert session.case.trip.parts[0].duration_min == minutes
+
+
+@pytest.fixture
+def named(opened, tmp_path, monkeypatch):
+    """A case with a name, and exports that go to a folder of the test."""
+    monkeypatch.setattr(platformdirs, "user_documents_dir", lambda: str(tmp_path / "documents"))
+    store = Library(tmp_path / "data")
+    gas = BloodGas(taken_on=date(2026, 11, 2), pao2_mmhg=70.0)
+    store.save("a", Case(patient=Patient(initials="M. T.", name="Zorro Zorrino"), measurements=(gas,)))
+    store.close()
+    return opened()
+
+
+def written(tmp_path):
+    return sorted((tmp_path / "documents" / "oxygen-exports").glob("*.json"))
+
+
+def test_an_export_leaves_the_name_out_unless_chosen_and_comes_in_again(named, tmp_path):
+    named.tap("Export a case")
+    row = [one for one in named.widgets() if getattr(one, "text", "") == "M. T."][-1]
+    named.tap(row)
+    assert named.reads("Name and birth date are left out.")
+    assert b"Zorro" not in written(tmp_path)[0].read_bytes()
+    named.tap("Kept")
+    named.tap(row)
+    assert b"Zorro" in written(tmp_path)[0].read_bytes()
+    named.tap("Import cases")
+    named.fill(named.field("File or folder"), str(written(tmp_path)[0]))
+    named.tap("Import this")
+    assert named.app.session.case.patient.name == "Zorro Zorrino"
+
+
+def test_measurements_go_out_as_fhir_and_come_in_with_what_was_not_understood(named, tmp_path):
+    named.tap("Export a case")
+    named.tap("Measurements, FHIR")
+    named.tap([one for one in named.widgets() if getattr(one, "text", "") == "M. T."][-1])
+    assert named.reads("stay behind")
+    (bundle,) = written(tmp_path)
+    assert b"Zorro" not in bundle.read_bytes()
+    named.tap("Import cases")
+    named.fill(named.field("File or folder"), str(bundle.parent))
+    named.tap("Import this")
+    assert named.reads("Cases taken: 1.")
+    assert named.reads("Measurements taken: 1.")
+    assert len(named.app.library.rows()) == 2
 
 
 CRASH = """
