@@ -30,6 +30,7 @@ class KitScreen(ResultScreen):
 
     step = "kit"
     question = "What to carry?"
+    explains = True
 
     def build_results(self) -> None:
         """Stress case, the few numbers, run-out sentence, list, turn-back readings, cautions, assumptions, entries."""
@@ -133,6 +134,10 @@ class KitScreen(ResultScreen):
         carried = [unit for unit, values in (("L", left.litres), ("Wh", left.watt_hours)) if values.max() > 0]
         chosen = self.supply.value
         return chosen if chosen in carried else carried[0] if carried else "L"
+
+    def first_question(self) -> tuple[str, str, str]:
+        """How often the set would run short."""
+        return "run_out", "", ""
 
     def _ask(self, kind: str, part_id: str = "") -> None:
         ask(self.session, self.go, kind, part_id)
