@@ -52,10 +52,11 @@ class Driver:
         self.frames(6)
 
     def close(self) -> None:
+        root = self.app.root
         self.app.stop()
         stopTouchApp()
+        root.clear_widgets()  # a page that listens to the window stops when it is taken out
         for child in Window.children[:]:
-            child.clear_widgets()  # a page that listens to the window stops when it is taken out
             Window.remove_widget(child)
         EventLoop.touches.clear()
         Metrics.fontscale = 1.0
