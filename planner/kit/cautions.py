@@ -44,6 +44,11 @@ AIRCRAFT = KitCaution(
     "carriers allow none. Ask each carrier, on both ways.",
     "IATA/ICAO dangerous goods rules, table 2.3.A; 14 CFR 121.574",
 )
+PRESSURE_LOSS = KitCaution(
+    "If the cabin loses pressure.",
+    "The mask that drops comes first, before one's own oxygen, and then what the crew says. Nothing here plans for it.",
+    "Common practice",
+)
 LIQUID = KitCaution(
     "Liquid oxygen.",
     "Keep the vessel upright and the room aired; never touch a frosted part. It boils away whether used or not, so it "
@@ -79,7 +84,7 @@ def kit_cautions(
     if any(not leg.flight for leg in legs):
         cautions.append(CAR)
     if any(leg.flight for leg in legs):
-        cautions.append(AIRCRAFT)
+        cautions += [AIRCRAFT, PRESSURE_LOSS]
     if any(leg.liquid_l_per_h is not None for leg in legs):
         cautions.append(LIQUID)
     if power is not None:

@@ -194,6 +194,7 @@ def test_fire_and_carriage_cautions_stand_with_every_kit(copd):
     leads = [one.lead for one in copd.cautions]
     assert "No smoking or flames within 3 m." in leads
     assert "On aircraft." in leads
+    assert "If the cabin loses pressure." in leads
     assert all(one.source for one in copd.cautions)
 
 

@@ -152,3 +152,18 @@ def test_a_clock_that_is_not_the_airports_is_said(demo):
     demo.app.session.set("trip.parts.2.zone_at_end", "America/New_York", "zone")
     demo.frames(4)
     assert demo.reads("by the time zone entered; check the zone.")
+
+
+def test_a_place_that_is_no_airport_of_the_list_is_typed_in(demo):
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    demo.tap("3 · Flight 1")
+    demo.fill(demo.field("To"), "")
+    demo.tap("Another place or time zone")
+    demo.fill(demo.field("Elevation where it lands"), "2400")
+    demo.fill(demo.field("Time zone at its end"), "kathmandu")
+    demo.tap("Asia/Kathmandu")
+    part = demo.app.session.case.trip.parts[2]
+    assert (part.destination_place_id, part.end_elevation_m, part.zone_at_end) == (None, 2400.0, "Asia/Kathmandu")
+    assert not demo.app.session.timeline.parts[2].unknown
+    assert f"{demo.app.session.timeline.parts[2].ends_at:%Z}" == "+0545"

@@ -15,6 +15,7 @@ from ui.screens.screen import Screen
 from ui.screens.trip_edits import TripEdits
 from ui.screens.trip_part import PartForm
 from ui.screens.trip_ribbon import KIND_WORDS, RibbonOfTrip, value_at
+from ui.screens.zones import zones
 from ui.theme import space
 from ui.widgets.buttons import PlainButton, PrimaryButton, QuietButton
 from ui.widgets.choices import Choice
@@ -179,7 +180,7 @@ class TripScreen(Screen):
                 self.form.number("trip.home_elevation_m", "Elevation of home", altitude, why="0 is sea level"),
                 self.form.keep(
                     SearchEntry(
-                        "Time zone at home", None, _zones, str, hint="For example Vienna", on_value=self._set_zone
+                        "Time zone at home", None, zones, str, hint="For example Vienna", on_value=self._set_zone
                     ),
                     "trip.departure_zone",
                 ),
@@ -207,14 +208,6 @@ class TripScreen(Screen):
         day = self._day()
         if day is not None and clock is not None:
             self.session.set("trip.departs_at", datetime.combine(day, clock), "the time of leaving")
-
-
-def _zones(text: str) -> list[tuple[str, str, str]]:
-    from zoneinfo import available_timezones
-
-    wanted = text.strip().lower().replace(" ", "_")
-    found = sorted(zone for zone in available_timezones() if wanted in zone.lower() and "/" in zone)
-    return [(zone, zone.replace("_", " "), "") for zone in found[:5]]
 
 
 class _PartRow(ListRow):

@@ -12,6 +12,7 @@ from ui import measures
 from ui.measures import plain_measure
 from ui.screens.form import Form
 from ui.screens.trip_route import RouteEntry
+from ui.screens.zones import zones
 from ui.theme import space
 from ui.widgets.entries import NumberEntry
 from ui.widgets.journey_entries import DurationEntry, SearchEntry
@@ -29,6 +30,8 @@ POWER = (("none", "None"), ("vehicle", "Vehicle"), ("mains", "Mains"), (None, "N
 STILL = ("home", "wait", "layover", "stay")  # parts that stay at one elevation
 _PERCENT = measures.Measure("%", 0, lambda share: share * 100, lambda percent: percent / 100)
 
+AIRPORT_ELSE = "Empty: the airport's"
+
 
 class PartForm(Stack):
     """Entries of the part at an index. `again` is called when the form's own shape must change."""
@@ -44,6 +47,7 @@ class PartForm(Stack):
         else:
             self._ground(part.kind)
         self._shares()
+        self.add_widget(Fold("Another place or time zone", self._place_summary(part), self._fill_place))
         self.add_widget(Fold("Oxygen and power here", self._oxygen_summary(part), self._fill_oxygen))
         self.add_widget(Fold("Being late", "The chance of it, where you know better", self._fill_late))
 
@@ -204,6 +208,24 @@ class PartForm(Stack):
         return self.form.keep(entry, f"{self.path}.shares.{name}")  # type: ignore[no-any-return]
 
     # -- folded away
+
+    def _place_summary(self, part: Any) -> str:
+        zone = (part.zone_at_end or "").replace("_", " ")
+        return f"Clock at its end: {zone}" if zone else "Not in the list of airports, or the clock changes"
+
+    def _fill_place(self, body: BoxLayout) -> None:
+        """A place typed in by its elevation, and the clock where the part ends."""
+        form, path, fields = self.form, self.path, []
+        if self.session.get(path).kind == "flight":
+            for name, label in (("start_elevation_m", "starts"), ("end_elevation_m", "lands")):
+                words = f"Elevation where it {label}"
+                fields.append(form.number(f"{path}.{name}", words, self._altitude(), also=self._also, why=AIRPORT_ELSE))
+        zone = SearchEntry(
+            "Time zone at its end", None, zones, str, hint="For example Vienna",
+            on_value=lambda value: self.session.set(f"{path}.zone_at_end", value, "the time zone at the end"),
+        )  # fmt: skip
+        body.add_widget(Side(*fields, form.keep(zone, f"{path}.zone_at_end")))
+        form.refresh()
 
     def _oxygen_summary(self, part: Any) -> str:
         words = [dict(SOURCES)[source].lower() for source in part.sources]
