@@ -142,7 +142,7 @@ def _vessel(vessel: LiquidVessel, number: int) -> Choice:
     daily = EVAPORATION_KG_DAY if vessel.evaporation_kg_day is None else vessel.evaporation_kg_day
     return Choice(
         key=f"liquid {number}",
-        name=vessel.name or f"Liquid vessel, {vessel.liquid_kg:g} kg",
+        name=f"Liquid oxygen, {vessel.name or f'vessel of {vessel.liquid_kg:g} kg'}",
         usable_l=litres,
         full_l=litres,
         gross_kg=vessel.empty_kg + vessel.liquid_kg,

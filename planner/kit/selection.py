@@ -190,6 +190,8 @@ class _Built:
             columns[f"spilt {size}"]: 1.0,
         }
         if before is not None:
+            if choice.own:  # only what was brought along can be refilled there
+                model.row({columns[f"new {size}"]: 1.0, before[f"count {size}"]: -1.0}, upper=0.0)
             count[before[f"count {size}"]] = -1.0
             litres[before[f"litres {size}"]] = -1.0
             litres[before[f"used {size}"]] = 1.0

@@ -324,3 +324,14 @@ def test_two_machines_are_each_others_second_source_and_what_is_missing_is_told(
 def test_a_part_with_a_stationary_unit_asks_for_no_reserve_of_its_own():
     hotel = replace(LEG, stationary=True)
     assert chosen([hotel], reserve_fraction=0.5).bought() == {}
+
+
+def test_an_own_cylinder_left_behind_before_a_flight_is_not_refilled_after_it():
+    own = replace(SMALL, key="own", own=True, most=2)
+    landed = replace(LEG, part_id="b", supply_here=True)
+    found = chosen([LEG, flight(airline=True), landed], choices=(own,))
+    assert found.uses[1].cylinders == {}
+    assert found.uses[2].uncovered_h == pytest.approx(2.0)
+    by_road = chosen([replace(LEG, hours=3.0, oxygen_h=3.0), replace(landed, hours=3.0, oxygen_h=3.0)], choices=(own,))
+    assert by_road.uncovered_h == 0.0
+    assert by_road.uses[1].new_cylinders == {"own": 2}
