@@ -34,7 +34,9 @@ def plan_state(case: Case, timeline: Timeline, decisions: Sequence[DecidedOxygen
             f"The confirmation by {confirmation.name} of {confirmation.confirmed_at:%d %b %Y} is void: an entry it "
             "rested on has changed since."
         )
-    return "Confirmed", f"Confirmed by {confirmation.name}, {confirmation.role}, {confirmation.confirmed_at:%d %b %Y}."
+    of = f", version {confirmation.version}" if confirmation.version is not None else ""
+    by = f"{confirmation.name}, {confirmation.role}, {confirmation.confirmed_at:%d %b %Y}"
+    return "Confirmed", f"Confirmed by {by}{of}."
 
 
 def undecided(timeline: Timeline, decisions: Sequence[DecidedOxygen]) -> list[tuple[str, str]]:

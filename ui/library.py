@@ -117,10 +117,10 @@ class Library:
         """A kept version of a case, the last one for None. Raises StoreError where it cannot be read."""
         return self._opened().load(case_id, version)
 
-    def save(self, case_id: str, case: Case) -> None:
-        """Keep a version. Raises StoreError where it cannot be kept; what was kept before stays."""
+    def save(self, case_id: str, case: Case) -> int:
+        """Keep a version and give its number. Raises StoreError where it cannot be; what was kept before stays."""
         with self._one_at_a_time:
-            self._opened().save(case_id, case)
+            return self._opened().save(case_id, case)
 
     def remove(self, case_id: str) -> None:
         """Remove a case with all its versions. Raises StoreError where it cannot be."""

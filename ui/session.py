@@ -39,7 +39,7 @@ class Session(EventDispatcher):
         self,
         *,
         load_planner: Load | None = None,
-        saver: Callable[[str, Case], None] | None = None,
+        saver: Callable[[str, Case], int] | None = None,
         **keywords: Any,
     ) -> None:
         super().__init__(**keywords)
@@ -135,6 +135,16 @@ class Session(EventDispatcher):
         if self._save_due is not None:
             self._save_due.cancel()
             self._save()
+
+    def kept_version(self) -> int | None:
+        """The number of the kept version of the case as it is now; None where it cannot be kept."""
+        if self._saver is None:
+            return None
+        try:
+            return self._saver(self.case_id, self.case)
+        except PlannerError as error:
+            self.said = f"Not saved: {error}"
+            return None
 
     def fault(self, path: str, sentence: str) -> None:
         """Keep (or with "" forget) that what stands in a field does not fit."""

@@ -15,6 +15,7 @@ class Confirmation(Section):
     name: str = Field(min_length=1, max_length=80)
     role: str = Field(min_length=1, max_length=60)
     confirmed_at: datetime = Field(strict=False)
+    version: int | None = Field(None, ge=1, description="Kept version that was confirmed; None: kept nowhere yet")
     inputs_digest: str = Field(min_length=64, max_length=64, description="SHA-256 of the confirmed inputs")
 
 

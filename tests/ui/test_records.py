@@ -13,6 +13,7 @@ import pytest
 from planner.case import Case
 from planner.case.measurements import BloodGas
 from planner.case.patient import Patient
+from planner.records.reading import write_case
 from planner.records.store import CaseStore
 from ui import app as app_module
 from ui.library import Library
@@ -203,6 +204,17 @@ def test_measurements_go_out_as_fhir_and_come_in_with_what_was_not_understood(na
     assert named.reads("Cases taken: 1.")
     assert named.reads("Measurements taken: 1.")
     assert len(named.app.library.rows()) == 2
+
+
+def test_an_imported_case_is_kept_before_anything_is_changed(opened, tmp_path):
+    path = tmp_path / "case.json"
+    path.write_text(write_case(Case(patient=Patient(initials="I. M."))))
+    driver = opened()
+    driver.tap("Import cases")
+    driver.fill(driver.field("File or folder"), str(path))
+    driver.tap("Import this")
+    assert driver.app.session.case.patient.initials == "I. M."
+    assert [row.title for row in driver.app.library.rows()] == ["I. M."]
 
 
 CRASH = """

@@ -182,6 +182,10 @@ def test_a_confirmation_needs_name_and_role_and_is_void_after_a_change(answered)
     answered.tap("Confirm this plan")
     settle(answered)
     assert answered.app.session.plan.state == "Confirmed"
+    confirmation, session = case(answered).confirmation, answered.app.session
+    kept = answered.app.library.read(session.case_id, confirmation.version)
+    assert kept.inputs_digest() == confirmation.inputs_digest
+    assert answered.reads(f", version {confirmation.version}.")
     answered.app.session.set("patient.mass_kg", 99.0)
     settle(answered)
     assert answered.app.session.plan.state != "Confirmed"

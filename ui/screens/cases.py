@@ -189,11 +189,12 @@ class CasesPage(BoxLayout):
 
         def take() -> None:
             taken = self.library.read_file(path)
-            if len(taken.cases) == 1 and not taken.said:
-                self.open_case(self.library.new_id(), taken.cases[0])
+            ids = [self.library.new_id() for _ in taken.cases]
+            for case_id, case in zip(ids, taken.cases, strict=True):
+                self.library.save(case_id, case)  # what comes in is kept before it is shown
+            if len(ids) == 1 and not taken.said:
+                self.open_case(ids[0], taken.cases[0])
                 return
-            for case in taken.cases:
-                self.library.save(self.library.new_id(), case)
             self.content.clear_widgets()
             self._fill()
             words = " ".join((f"Cases taken: {len(taken.cases)}.", *taken.said))

@@ -127,6 +127,7 @@ class PapersScreen(Screen):
         confirmation = Confirmation(
             name=name,
             role=role,
+            version=self.session.kept_version(),
             confirmed_at=datetime.now(UTC).replace(microsecond=0),
             inputs_digest=self.session.case.inputs_digest(),
         )
