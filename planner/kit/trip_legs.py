@@ -42,15 +42,16 @@ class TripLegs:
         return replace(drawn, waits_h=waits / 60.0, longer_h=longer / 60.0)
 
     def _first(self, by_part: Array) -> Array:
-        new = [number == 0 or self.part_of[number - 1] != part for number, part in enumerate(self.part_of)]
-        waits: Array = np.where(new, by_part[:, self.part_of], 0.0)
+        waits = np.zeros((by_part.shape[0], len(self.legs)), order="F")
+        for number, part in enumerate(self.part_of):
+            if number == 0 or self.part_of[number - 1] != part:
+                waits[:, number] = by_part[:, part]
         return waits
 
     def _shared(self, by_part: Array) -> Array:
-        share = [
-            60.0 * leg.hours / self.spans[part].duration_min for leg, part in zip(self.legs, self.part_of, strict=True)
-        ]
-        longer: Array = by_part[:, self.part_of] * np.array(share)
+        longer = np.empty((by_part.shape[0], len(self.legs)), order="F")
+        for number, (leg, part) in enumerate(zip(self.legs, self.part_of, strict=True)):
+            longer[:, number] = by_part[:, part] * (60.0 * leg.hours / self.spans[part].duration_min)
         return longer
 
 

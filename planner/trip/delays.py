@@ -62,7 +62,7 @@ def sample_delays(
 
     A part that is not a flight, a road, a train or a ship is not late by itself.
     """
-    waits, longer = np.zeros((draws, len(spans))), np.zeros((draws, len(spans)))
+    waits, longer = (np.zeros((draws, len(spans)), order="F") for _ in range(2))  # part after part in memory
     common = rng.standard_normal(draws)
     for number, (span, part) in enumerate(zip(spans, parts, strict=True)):
         if span.kind == "flight":
