@@ -6,6 +6,7 @@ import json
 from dataclasses import fields, is_dataclass
 from datetime import date, datetime
 from functools import cache
+from math import isfinite
 from typing import Any
 
 import numpy as np
@@ -35,6 +36,8 @@ def _plain(value: Any) -> Any:
         return value
     if isinstance(value, float):
         return _significant(value)
+    if isinstance(value, np.ndarray) and value.ndim == 1 and value.dtype == np.float64:
+        return [_significant(item) for item in value.tolist()]
     if isinstance(value, FittedLung):
         low, middle, high = log_sd_spread(value)
         return {"log_sd_low": low, "log_sd_median": middle, "log_sd_high": high, "widened": list(value.widened)}
@@ -64,6 +67,4 @@ def _field_names(kind: type) -> tuple[str, ...]:
 
 
 def _significant(value: float) -> float | None:
-    if not np.isfinite(value):
-        return None
-    return float(f"{value:.{_DIGITS}g}")
+    return float(f"{value:.{_DIGITS}g}") if isfinite(value) else None
