@@ -25,7 +25,7 @@ def own_set(
 ) -> OwnSet:
     """What is at hand, played on the same trips as the proposed set."""
     used_power = power if found.concentrator else None
-    carried = carried_of(found, own, trip)
+    carried = carried_of(found, own, trip, used_power)
     alone = as_planned(carried, found.peak_kg, run_out(play(trip.legs, carried, used_power, drawn, trip.assumed)))
     return OwnSet(
         peak_kg=found.peak_kg,

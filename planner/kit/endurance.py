@@ -1,8 +1,8 @@
 """What happens when the trip is late: many trips played through in a policy that a person could follow.
 
-Order of use: the carrier's oxygen, a stationary unit, the plug, liquid (it boils away anyway), the battery down to what
-the next flight needs, the cylinder, then the rest of the battery. Every draw uses the same random numbers for any set,
-so sets compare fairly.
+Order of use: the carrier's oxygen, a stationary unit, the plug; then liquid (it boils away anyway), the battery and the
+cylinder, each down to what the plan needs of it further on; then the rest of them. Every draw uses the same random
+numbers for any set, so sets compare fairly.
 """
 
 from __future__ import annotations
@@ -59,10 +59,20 @@ class Assumptions:
 
 
 @dataclass(frozen=True)
+class Kept:
+    """What a person keeps for the legs ahead, since the plan needs it there: watt-hours, litres, litres as liquid."""
+
+    watt_hours: float = 0.0
+    litres: float = 0.0
+    liquid_l: float = 0.0
+
+
+@dataclass(frozen=True)
 class Carried:
     """What is there, by leg: usable litres of the cylinders that come in, and of all cylinders carried when full.
 
-    The same of liquid vessels, as litres of gas, with what boils away in an hour; empty where there are none.
+    The same of liquid vessels, as litres of gas, with what boils away in an hour; empty where there are none. kept: at
+    the end of each leg; empty where only the charge for the next flights without another source is kept.
     """
 
     litres_new: tuple[float, ...]
@@ -71,6 +81,7 @@ class Carried:
     liquid_new: tuple[float, ...] = ()
     liquid_most: tuple[float, ...] = ()
     liquid_loss_l_per_h: tuple[float, ...] = ()
+    kept: tuple[Kept, ...] = ()
 
     def liquid(self, number: int) -> tuple[float, float, float]:
         """New, most and hourly loss of liquid in a leg."""
@@ -188,20 +199,19 @@ def play(legs: Sequence[Leg], carried: Carried, power: Power | None, drawn: Draw
         powered = power is not None and leg.concentrator_w is not None
         if powered and (leg.mains or leg.vehicle):
             needed = np.where(working, np.minimum(needed, beyond), needed)
-        before = liquid
         flow = drawn.flow * (1.0 + leg.breath_share * (drawn.breathing - 1.0)) * (1.0 + assumed.left_running)
-        liquid, needed = _from_vessel(leg.liquid_l_per_h, liquid, needed, flow)
-        liquid = np.maximum(np.minimum(liquid, before - boils * (hours + wait)), 0.0)
-        if powered:
-            kept = _kept_wh(legs, number)
-            for floor in (kept, 0.0) if kept else (0.0,):
-                spendable = np.where(working, np.maximum(energy - floor, 0.0), 0.0)
+        kept = carried.kept[number] if carried.kept else Kept(watt_hours=_kept_wh(legs, number))
+        before = liquid
+        for keep in (kept, Kept()) if kept != Kept() else (kept,):
+            liquid, needed = _from_vessel(leg.liquid_l_per_h, liquid, keep.liquid_l, needed, flow)
+            if powered:
+                spendable = np.where(working, np.maximum(energy - keep.watt_hours, 0.0), 0.0)
                 used = np.minimum(needed, spendable / leg.battery_w)
                 energy, needed = energy - used * leg.battery_w, needed - used
-                litres, needed = _from_vessel(leg.cylinder_l_per_h, litres, needed, flow)
+            litres, needed = _from_vessel(leg.cylinder_l_per_h, litres, keep.litres, needed, flow)
+        liquid = np.maximum(np.minimum(liquid, before - boils * (hours + wait)), 0.0)
+        if powered:
             down[:, number] = ~working
-        else:
-            litres, needed = _from_vessel(leg.cylinder_l_per_h, litres, needed, flow)
         if power is not None and leg.mains:
             gained = CHARGE_SHARE * power.charge_w * (hours + (wait if leg.terminal else 0.0))
             energy = np.where(drawn.charger_ok, np.minimum(energy + gained, full_wh), energy)
@@ -271,12 +281,14 @@ def with_fewer_litres(carried: Carried, litres: float) -> Carried:
     return replace(carried, litres_new=(first, *carried.litres_new[1:]))
 
 
-def _from_vessel(rate_l_per_h: float | None, litres: Array, needed: Array, flow: Array) -> tuple[Array, Array]:
+def _from_vessel(
+    rate_l_per_h: float | None, litres: Array, kept_l: float, needed: Array, flow: Array
+) -> tuple[Array, Array]:
     """What is left and what is still needed; flow: what really leaves the vessel, as a share of its rate."""
     if not rate_l_per_h:
         return litres, needed
     rate = rate_l_per_h * flow
-    used = np.minimum(needed, litres / rate)
+    used = np.minimum(needed, np.maximum(litres - kept_l, 0.0) / rate)
     return litres - used * rate, needed - used
 
 

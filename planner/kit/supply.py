@@ -14,7 +14,7 @@ from planner.kit.cautions import kit_cautions
 from planner.kit.conservers import conserver_for
 from planner.kit.demand import Demand, by_part_and_activity, demand
 from planner.kit.eligible import told
-from planner.kit.endurance import on_time, play, run_out
+from planner.kit.endurance import SHORT_H, Played, on_time, play, run_out
 from planner.kit.kit_plan import Item, KitPlan, Left, PartSupply
 from planner.kit.legs import Choice, Leg
 from planner.kit.offer import assumptions_of, offered_choices, own_choices, own_packs, power_of
@@ -99,7 +99,7 @@ def plan_kit(
     faults += _overweight(trip.legs, found)
     tell("Playing the trip with delays", 0.6)
     used_power = power if found.concentrator else None
-    planned_set = carried_of(found, choices, trip)
+    planned_set = carried_of(found, choices, trip, used_power)
     stronger = strengthen(
         trip.legs,
         planned_set,
@@ -119,6 +119,7 @@ def plan_kit(
         play(trip.legs, stronger.carried, used_power, drawn, trip.assumed)
         for drawn in (on_time(trip.legs, trip.assumed), trip.stressed(case))
     )
+    faults += _short_on_time(trip, found, on_plan)
     chance = run_out(played)
     items = items_to_carry(found, stronger, choices, used_power, conserver, trip.legs)
     return KitPlan(
@@ -199,6 +200,18 @@ def _overweight(legs: Sequence[Leg], found: Selection) -> list[str]:
         if use.over_limit_kg > 0.0
     ]
     return list(dict.fromkeys(said))
+
+
+def _short_on_time(trip: TripLegs, found: Selection, on_plan: Played) -> list[str]:
+    """Parts that run short although the plan covers them, when the sources are used as a person would use them."""
+    said: dict[str, float] = {}
+    for leg, use, short in zip(trip.legs, found.uses, on_plan.short_h[0], strict=True):
+        if short - use.uncovered_h > SHORT_H:
+            said[leg.name] = said.get(leg.name, 0.0) + float(short) - use.uncovered_h
+    return [
+        f"{name}: even on time {60.0 * hours:.0f} min run short when some oxygen runs unused, as assumed. Carry more."
+        for name, hours in said.items()
+    ]
 
 
 def _carried_sizes(found: Selection, stronger: Stronger, choices: Sequence[Choice]) -> list[Choice]:

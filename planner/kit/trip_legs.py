@@ -10,10 +10,11 @@ import numpy as np
 from planner.air.ranges import Array
 from planner.case.trip import Part
 from planner.kit.demand import Demand
-from planner.kit.endurance import Assumptions, Carried, Draws, RunOut, draw_trips, on_time
+from planner.kit.endurance import Assumptions, Carried, Draws, Kept, RunOut, draw_trips, on_time
 from planner.kit.kit_plan import PartSupply
-from planner.kit.legs import Choice, Leg
+from planner.kit.legs import Choice, Leg, Power
 from planner.kit.selection import LegUse, Selection
+from planner.kit.turn_back import charge_ahead_wh, litres_ahead
 from planner.trip.delays import sample_delays
 from planner.trip.itinerary import PartSpan
 from planner.trip.stress import Stress
@@ -55,8 +56,11 @@ class TripLegs:
         return longer
 
 
-def carried_of(found: Selection, choices: Sequence[Choice], trip: TripLegs) -> Carried:
-    """Full contents, before the fill is drawn, of the vessels that are new and of all that are carried."""
+def carried_of(found: Selection, choices: Sequence[Choice], trip: TripLegs, power: Power | None) -> Carried:
+    """Full contents, before the fill is drawn, of the vessels that are new and of all that are carried.
+
+    What the plan needs further on is kept for it. power: None where no concentrator is carried.
+    """
     full = {choice.key: choice.usable_l / trip.assumed.fill_mean for choice in choices}
     gas = [choice.key for choice in choices if not choice.liquid]
     liquid = {choice.key: choice.loss_l_per_h for choice in choices if choice.liquid}
@@ -72,6 +76,17 @@ def carried_of(found: Selection, choices: Sequence[Choice], trip: TripLegs) -> C
         liquid_new=tuple(total(use.new_cylinders, full, list(liquid)) for use in uses),
         liquid_most=tuple(total(use.cylinders, full, list(liquid)) for use in uses),
         liquid_loss_l_per_h=tuple(total(use.cylinders, liquid, list(liquid)) for use in uses),
+        kept=tuple(_kept(found, choices, trip, power, leg + 1) for leg in range(len(uses))),
+    )
+
+
+def _kept(found: Selection, choices: Sequence[Choice], trip: TripLegs, power: Power | None, ahead: int) -> Kept:
+    """What the plan needs from a leg on, up to what is charged or delivered on the way."""
+    vessels = {liquid: {one.key: one for one in choices if one.liquid == liquid} for liquid in (False, True)}
+    return Kept(
+        watt_hours=charge_ahead_wh(trip.legs, found.uses, ahead, power, found.batteries, 0.0) or 0.0,
+        litres=litres_ahead(found.uses, vessels[False], ahead),
+        liquid_l=litres_ahead(found.uses, vessels[True], ahead),
     )
 
 

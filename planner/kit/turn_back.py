@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from planner.kit.cylinder import HIGHEST_GAUGE_BAR, contents_l, gauge_bar
@@ -54,7 +54,7 @@ def turn_back(
     for number, (leg, use) in enumerate(zip(legs, uses, strict=True)):
         if number and legs[number - 1].part_id == leg.part_id:
             continue  # the part began before
-        litres = _litres_ahead(uses, {key: choice for key, (choice, _) in known.items()}, number)
+        litres = litres_ahead(uses, {key: choice for key, (choice, _) in known.items()}, number)
         litres *= 1.0 + reserve_fraction
         temperature_c = READ_AT_C if leg.equipment_c is None else leg.equipment_c
         readings: list[tuple[str, float]] = []
@@ -69,8 +69,8 @@ def turn_back(
                 reading, fresh_here = _reading(choice, size, count, own, residual_bar, temperature_c)
                 readings.append((choice.name, reading))
                 fresh = max(fresh, fresh_here + sum(there.values()) - count)
-        liquid = _litres_ahead(uses, vessels, number) * (1.0 + reserve_fraction)
-        charge = _charge_wh(legs, uses, number, power, batteries, reserve_fraction)
+        liquid = litres_ahead(uses, vessels, number) * (1.0 + reserve_fraction)
+        charge = charge_ahead_wh(legs, uses, number, power, batteries, reserve_fraction)
         if readings or liquid > 0.0 or charge is not None:
             found.append(
                 TurnBack(
@@ -88,7 +88,7 @@ def turn_back(
     return tuple(found)
 
 
-def _litres_ahead(uses: Sequence[LegUse], choices: dict[str, Choice], number: int) -> float:
+def litres_ahead(uses: Sequence[LegUse], choices: Mapping[str, Choice], number: int) -> float:
     """Litres that must be there at this leg: what goes ahead and is not covered by what is delivered on the way."""
     needed = 0.0
     for later in range(len(uses) - 1, number - 1, -1):
@@ -111,7 +111,7 @@ def _reading(
     return gauge_bar(min(own + left, most), size.water_capacity_l, temperature_c), full_beside
 
 
-def _charge_wh(
+def charge_ahead_wh(
     legs: Sequence[Leg],
     uses: Sequence[LegUse],
     number: int,

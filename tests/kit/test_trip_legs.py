@@ -1,12 +1,15 @@
 """Delays of parts as delays of legs: a wait comes once, and a longer part is longer in each of its legs."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 
 from planner.case.trip import Part
-from planner.kit.endurance import Assumptions
-from planner.kit.legs import Leg
-from planner.kit.trip_legs import TripLegs
+from planner.kit.endurance import Assumptions, on_time, play
+from planner.kit.legs import Choice, Leg, Power
+from planner.kit.selection import select
+from planner.kit.trip_legs import TripLegs, carried_of
 from planner.trip.delays import sample_delays
 from planner.trip.itinerary import PartSpan
 from planner.trip.stress import stress
@@ -54,3 +57,43 @@ def test_a_stress_case_is_played_on_the_legs_of_its_part():
     assert late.waits_h.tolist() == [[0.0, 3.0, 0.0]]
     diverted = trip.stressed(stress("diversion", 0.0, spans))
     assert diverted.longer_h.tolist() == [pytest.approx([0.0, 3.5 * 2 / 3, 3.5 / 3])]
+
+
+EVEN = Assumptions(flow_sd=0.0, fill_sd=0.0, battery_sd=0.0, left_running=0.0)
+MACHINE = Power("c", "Concentrator", 6.4, 87.4, 95.0, 95.0, 0.8, 2, 120.0, 12)
+SMALL = Choice("s", "1 L", 190.0, 212.0, 2.1, None, True)
+
+
+def test_charge_and_gas_are_kept_for_the_parts_that_have_nothing_else():
+    # Both may be used at first; then only the battery, then only the cylinder. Used up in order, one would be missing.
+    both = replace(leg("a", 3.0), concentrator_w=50.0)
+    battery_only = replace(leg("b", 4.0), cylinder_l_per_h=None, concentrator_w=50.0)
+    cylinder_only = leg("c", 3.0)
+    legs = (both, battery_only, cylinder_only)
+    found = select(legs, [SMALL], MACHINE, reserve_fraction=0.0, batteries=3)
+    assert found.uncovered_h == 0.0
+    trip = TripLegs([], [], legs, (0, 1, 2), EVEN)
+    carried = carried_of(found, [SMALL], trip, MACHINE)
+    assert play(legs, carried, MACHINE, on_time(legs, EVEN), EVEN).short_h.max() < 0.01
+    unkept = replace(carried, kept=())
+    assert play(legs, unkept, MACHINE, on_time(legs, EVEN), EVEN).short_h.max() > 0.1
+
+
+@pytest.mark.parametrize("seed", range(40))
+def test_what_the_plan_covers_does_not_run_short_on_time(seed):
+    rng = np.random.default_rng(seed)
+    legs = tuple(
+        replace(
+            leg(str(number), float(hours)),
+            cylinder_l_per_h=float(rng.uniform(30, 200)) if rng.random() < 0.7 else None,
+            concentrator_w=float(rng.uniform(20, 120)) if rng.random() < 0.7 else None,
+            mains=bool(rng.random() < 0.3),
+            cold_share=float(rng.choice([1.0, 0.8])),
+        )
+        for number, hours in enumerate(rng.uniform(0.4, 6.0, 5))
+    )
+    found = select(legs, [SMALL], MACHINE, reserve_fraction=0.0)
+    carried = carried_of(found, [SMALL], TripLegs([], [], legs, tuple(range(5)), EVEN), MACHINE)
+    power = MACHINE if found.concentrator else None
+    short = play(legs, carried, power, on_time(legs, EVEN), EVEN).short_h[0]
+    assert short.sum() <= found.uncovered_h + 0.02
