@@ -58,18 +58,23 @@ def turned(parts: Parts, index: int, began_m: float | None) -> Parts:
     return (*parts[:index], _backwards(part, part.part_id, began_m), *parts[index + 1 :])
 
 
-def with_way_back(parts: Parts, began_m: Sequence[float | None]) -> Parts:
+def with_way_back(parts: Parts, began_m: Sequence[float | None], home_zone: str | None = None) -> Parts:
     """The trip with the same way back after it, without the stay at its end.
 
     Waits come before what is boarded, as on the way there, and those on arrival after it. began_m: elevation at which
-    each part begins, None where it is not known: there a journey over ground ends on the way back.
+    each part begins, None where it is not known: there a journey over ground ends on the way back. home_zone: time zone
+    at the start; a part that changed the clock on the way there changes it back.
     """
     there = list(zip(parts, began_m, strict=True))
+    zones = dict(zip(_ids(parts), _zones_at_start(parts, home_zone), strict=True))
     while there and there[-1][0].kind in ("stay", "home"):
         there.pop()
     back = list(parts)
     for part, began in _in_order_of_return(there):
-        back.append(_backwards(part, new_id(part.kind, _ids(back)), began, ", back"))
+        turned_part = _backwards(part, new_id(part.kind, _ids(back)), began, ", back")
+        if turned_part.zone_at_end is None and _zone_reached(part) is not None and part.kind != "wait":
+            turned_part = turned_part.model_copy(update={"zone_at_end": zones[part.part_id]})
+        back.append(turned_part)
     return tuple(back)
 
 
@@ -84,6 +89,21 @@ def _in_order_of_return(there: Sequence[tuple[Part, float | None]]) -> list[tupl
         before, run, after = (list(there[slice(*found.span(name))]) for name in ("before", "run", "after"))
         blocks.append([*before, *reversed(run), *after])
     return [one for block in reversed(blocks) for one in block]
+
+
+def _zones_at_start(parts: Parts, home_zone: str | None) -> list[str | None]:
+    """The time zone by which each part begins."""
+    zones, here = [], home_zone
+    for part in parts:
+        zones.append(here)
+        here = _zone_reached(part) or here
+    return zones
+
+
+def _zone_reached(part: Part) -> str | None:
+    """The time zone a part sets at its end, None where the clock goes on."""
+    place = by_id(part.destination_place_id) if part.destination_place_id else None
+    return part.zone_at_end or (place.zone if place is not None else None)
 
 
 def _backwards(part: Part, part_id: str, began_m: float | None, suffix: str = "") -> Part:

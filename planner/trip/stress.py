@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from itertools import pairwise
 
 import numpy as np
 
@@ -14,6 +13,7 @@ from planner.trip.delays import diversion_min
 from planner.trip.itinerary import PartSpan
 
 MISSED_MIN = 6 * 60.0  # until the next connection; planning assumption
+BETWEEN = ("layover", "wait", "walk")  # what may lie between two flights of one connection
 OVERNIGHT_MIN = 14 * 60.0  # from an evening to the next morning's flight; planning assumption
 
 
@@ -43,8 +43,8 @@ def possible(spans: Sequence[PartSpan]) -> tuple[StressKind, ...]:
 def stress(kind: StressKind, late_min: float, spans: Sequence[PartSpan]) -> Stress:
     """The case on this trip; nothing happens where it cannot. late_min: of every flight in the case "late".
 
-    A connection is missed at the first layover. The night more comes before the first connecting flight, else the
-    first flight. The longest flight is diverted, by the middle of the hours that the delays profile gives.
+    A connection is missed at the first flight that follows another. The night more comes before that one, else before
+    the first flight. The longest flight is diverted, by the middle of the hours that the delays profile gives.
     """
     waits, longer = np.zeros(len(spans)), np.zeros(len(spans))
     flights = [number for number, span in enumerate(spans) if span.kind == "flight"]
@@ -65,6 +65,10 @@ def stress(kind: StressKind, late_min: float, spans: Sequence[PartSpan]) -> Stre
 
 
 def _connection(spans: Sequence[PartSpan]) -> int | None:
-    """The first flight that follows a layover."""
-    pairs = enumerate(pairwise(span.kind for span in spans))
-    return next((number + 1 for number, pair in pairs if pair == ("layover", "flight")), None)
+    """The first flight that follows a layover, or another flight with nothing but waits and walks between."""
+    connects = False
+    for number, span in enumerate(spans):
+        if span.kind == "flight" and connects:
+            return number
+        connects = span.kind in ("flight", "layover") or (connects and span.kind in BETWEEN)
+    return None

@@ -140,3 +140,37 @@ def test_a_part_turned_twice_is_as_it_was():
     once = edits.turned((flight,), 0, None)
     assert once[0].destination_place_id == "VIE"
     assert edits.turned(once, 0, None)[0] == flight
+
+
+def clock_back(part, home_zone):
+    """The zone in which the way back of one part ends."""
+    return edits.with_way_back((part, new_part("stay", ())), [None, None], home_zone)[2].zone_at_end
+
+
+def test_the_way_back_over_ground_ends_by_the_clock_it_began_by():
+    train = Part(part_id="rail_1", kind="rail", duration_min=180.0, zone_at_end="Europe/London")
+    assert clock_back(train, "Europe/Vienna") == "Europe/Vienna"
+    assert clock_back(train.model_copy(update={"zone_at_end": None}), "Europe/Vienna") is None
+
+
+def test_the_way_back_to_a_place_outside_the_list_ends_by_its_clock():
+    flight = Part(part_id="flight_1", kind="flight", duration_min=500.0, destination_place_id="VIE")
+    assert clock_back(flight, "Asia/Kathmandu") == "Asia/Kathmandu"
+
+
+def test_each_part_of_the_way_back_takes_the_clock_of_its_own_start():
+    train = Part(part_id="rail_1", kind="rail", duration_min=180.0, zone_at_end="Europe/London")
+    wait = new_part("wait", ())
+    ship = Part(part_id="ship_1", kind="ship", duration_min=600.0, zone_at_end="Atlantic/Azores")
+    back = edits.with_way_back((train, wait, ship), [None] * 3, "Europe/Paris")[3:]
+    assert [(part.kind, part.zone_at_end) for part in back] == [
+        ("wait", None),
+        ("ship", "Europe/London"),
+        ("rail", "Europe/Paris"),
+    ]
+
+
+def test_a_wait_is_not_by_the_clock_of_the_other_end_on_the_way_back():
+    wait = new_part("wait", ()).model_copy(update={"zone_at_end": "Europe/Vienna"})
+    back = edits.with_way_back((wait, new_part("flight", ())), [None, None], "Europe/Vienna")[2]
+    assert (back.kind, back.zone_at_end) == ("wait", None)

@@ -54,3 +54,24 @@ def test_where_it_cannot_happen_nothing_does(kind):
     assert not case.waits_min.any()
     assert not case.longer_min.any()
     assert case.where == ""
+
+
+@pytest.mark.parametrize(
+    ("kinds", "missed"),
+    [
+        ("wait flight wait flight", 3),
+        ("flight layover walk flight", 3),
+        ("flight wait walk layover flight layover flight", 4),
+        ("flight flight", 1),
+        ("layover flight", 1),
+    ],
+)
+def test_a_connection_is_known_however_the_time_between_is_entered(kinds, missed):
+    spans = trip(*kinds.split())
+    assert "missed_connection" in possible(spans)
+    assert stress("missed_connection", 0.0, spans).waits_min.nonzero()[0].tolist() == [missed]
+
+
+@pytest.mark.parametrize("kinds", ["flight stay flight", "flight road wait flight", "flight home wait flight"])
+def test_a_flight_begun_anew_is_no_connection(kinds):
+    assert "missed_connection" not in possible(trip(*kinds.split()))

@@ -1,7 +1,10 @@
 """Altitudes that the Trip step takes from elsewhere: a recorded route, and an airport the data do not know well."""
 
+from datetime import datetime
+
 import pytest
 
+from planner.case.trip import Part
 from tests.trip.test_track import gpx
 
 
@@ -33,10 +36,16 @@ def test_a_route_is_read_used_and_taken_out_again(demo, tmp_path):
 def test_a_file_that_is_no_route_is_said_and_nothing_changes(demo, tmp_path):
     (tmp_path / "letter.gpx").write_text("Dear nurse")
     index = open_road(demo)
-    for name, said in (("letter.gpx", "not readable as GPX"), ("none.gpx", "cannot be read")):
+    (tmp_path / "flat.gpx").write_bytes(gpx([400, None, 500]))
+    for name, said in (
+        ("letter.gpx", "not readable as GPX"),
+        ("none.gpx", "cannot be read"),
+        ("flat.gpx", "1 of 3 points have no elevation"),
+    ):
         demo.fill(demo.field("GPX file"), str(tmp_path / name))
         demo.tap("Read this route")
         demo.until(lambda said=said: demo.reads(said))
+        assert demo.field("GPX file").input.text == str(tmp_path / name)
     assert demo.app.session.case.trip.parts[index].profile == ()
 
 
@@ -92,6 +101,8 @@ def test_the_days_of_a_stay_are_named_where_the_ribbon_is_zoomed_in(demo):
     ("row", "field", "typed", "path", "said"),
     [
         ("3 · Flight 1", "Gate to gate", "100 h", "duration_min", "up to 1 d 6 h"),
+        ("3 · Flight 1", "Gate to gate", "-3 h", "duration_min", "Write hours and minutes"),
+        ("3 · Flight 1", "Gate to gate", "0", "duration_min", "above 0"),
         ("3 · Flight 1", "Cabin altitude", "-20", "cabin_altitude_m", "0 to 4"),
         ("3 · Flight 1", "Cabin altitude", "9000", "cabin_altitude_m", "0 to 4"),
         ("1 · Road over the pass", "Highest point on the way", "9000", "highest_m", "8"),
@@ -105,7 +116,7 @@ def test_what_cannot_be_is_said_beside_the_field_and_what_was_typed_stays(demo, 
     before = getattr(demo.app.session.case.trip.parts[index], path)
     entry = demo.field(field)
     demo.fill(entry, typed)
-    demo.frames(4)
+    demo.tap(demo.field("Name").input)  # half an entry is no fault until the field is left
     assert getattr(demo.app.session.case.trip.parts[index], path) == before
     assert entry.input.text == typed
     assert any(said in text for text in _texts(entry)), _texts(entry)
@@ -167,3 +178,16 @@ def test_a_place_that_is_no_airport_of_the_list_is_typed_in(demo):
     assert (part.destination_place_id, part.end_elevation_m, part.zone_at_end) == (None, 2400.0, "Asia/Kathmandu")
     assert not demo.app.session.timeline.parts[2].unknown
     assert f"{demo.app.session.timeline.parts[2].ends_at:%Z}" == "+0545"
+
+
+def test_the_way_back_by_train_arrives_by_the_clock_at_home(demo):
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    train = Part(part_id="rail_1", kind="rail", duration_min=180.0, zone_at_end="Europe/London")
+    start = {"trip.parts": (train,), "trip.departure_zone": "Europe/Vienna", "decisions": ()}
+    demo.app.session.set_many(start | {"trip.departs_at": datetime(2026, 12, 3, 8)}, "a train over a border")
+    demo.frames(4)
+    demo.tap("Add to the trip")
+    demo.tap("Add the same way back")
+    home = demo.app.session.timeline.parts[-1].ends_at
+    assert f"{home:%H:%M %Z}" == "14:00 CET"

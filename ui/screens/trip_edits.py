@@ -28,7 +28,8 @@ class TripEdits:
 
     def add_way_back(self) -> None:
         """The way there backwards, without the stay at its end; equipment stays as it was."""
-        self._set(edits.with_way_back(self.parts, elevations_at_start(self.session.timeline)), "the way back was added")
+        began_m, home_zone = elevations_at_start(self.session.timeline), self.session.case.trip.departure_zone
+        self._set(edits.with_way_back(self.parts, began_m, home_zone), "the way back was added")
 
     def add(self, kind: Any, at: int | None) -> str:
         """A new part at an index, at the end for None; gives its id."""
