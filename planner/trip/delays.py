@@ -34,7 +34,7 @@ class PartDelay:
     part_id: str
     chance: float
     text: str
-    source: str
+    source: str  # with the region it is from
 
 
 def assumed_delays(spans: Sequence[PartSpan], parts: Sequence[Part]) -> tuple[PartDelay, ...]:
@@ -44,12 +44,12 @@ def assumed_delays(spans: Sequence[PartSpan], parts: Sequence[Part]) -> tuple[Pa
         if span.kind == "flight":
             chance = _flight_chance(span, part)
             own = part.late.chance is not None
-            text = f"late 15 min or more in {100 * chance:.0f} of 100" + (" (own entry)" if own else "")
-            found.append(PartDelay(part.part_id, chance, text, _entry("flight")["source"]))
+            text = f"Assumed: late 15 min or more in {100 * chance:.0f} of 100" + (" (own entry)" if own else "")
+            found.append(PartDelay(part.part_id, chance, text, _source("flight")))
         elif span.kind in MOVING:
             found.append(
                 PartDelay(
-                    part.part_id, 0.5, "travel time varies by 20 %; closed in 1 of 100", _entry("ground")["source"]
+                    part.part_id, 0.5, "Assumed: travel time varies by 20 %; closed in 1 of 100", _source("ground")
                 )
             )
     return tuple(found)
@@ -140,6 +140,11 @@ def _normal_share(z: Array) -> Array:
     upper = np.exp(-0.5 * z * z) / np.sqrt(2.0 * np.pi) * series
     share: Array = np.where(z >= 0.0, 1.0 - upper, upper)
     return share
+
+
+def _source(name: str) -> str:
+    entry = _entry(name)
+    return f"{entry['region']}. {entry['source']}"
 
 
 @cache

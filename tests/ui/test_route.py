@@ -191,3 +191,15 @@ def test_the_way_back_by_train_arrives_by_the_clock_at_home(demo):
     demo.tap("Add the same way back")
     home = demo.app.session.timeline.parts[-1].ends_at
     assert f"{home:%H:%M %Z}" == "14:00 CET"
+
+
+def test_what_is_assumed_of_lateness_is_shown_with_its_region_and_source(demo):
+    demo.app.shell.go("trip")
+    demo.frames(6)
+    demo.tap("3 · Flight 1")
+    demo.tap("Being late")
+    demo.frames(4)
+    assert demo.reads("Assumed: late 15 min or more in 16 of 100. United States; use your own region's figures")
+    demo.fill(demo.field("Chance of being late"), "40")
+    demo.frames(4)
+    assert demo.reads("Assumed: late 15 min or more in 40 of 100 (own entry).")

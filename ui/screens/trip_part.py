@@ -258,6 +258,8 @@ class PartForm(Stack):
 
     def _fill_late(self, body: BoxLayout) -> None:
         form, path = self.form, f"{self.path}.late"
+        body.add_widget(Text("", role="label", tone="muted"))
+        form.keep(_Assumed(self, body.children[0]), f"{self.path}")
         minutes = plain_measure("min", 0)
         body.add_widget(
             Side(
@@ -266,6 +268,21 @@ class PartForm(Stack):
             )
         )
         form.refresh()
+
+
+class _Assumed:
+    """Says what is assumed of the part's lateness, with its region and source."""
+
+    def __init__(self, form: PartForm, words: Text) -> None:
+        self._session, self._words, self.path = form.session, words, form.path
+
+    def show(self, part: Any) -> None:
+        """Say it."""
+        from planner.trip.delays import assumed_delays
+
+        found = assumed_delays(self._session.timeline.parts, self._session.case.trip.parts)
+        one = next((delay for delay in found if delay.part_id == part.part_id), None)
+        self._words.text = "By itself this part is not late." if one is None else plain(f"{one.text}. {one.source}.")
 
 
 class _Rest:
