@@ -1,8 +1,8 @@
 """Speed of the screens against bare Kivy in the same run: python tests/benchmarks/bench_screens.py
 
 Cold start: process start to the first drawn frame, and to a usable list of cases, as a ratio to a program that shows
-one empty Kivy window. Typing: a key to the frame that echoes it, and an entry to the frame that draws its forecast, which
-are not the same. Drag: one step along the ribbon, drawn. Software OpenGL, no display.
+one empty Kivy window. Typing: a key to the frame that echoes it, and an entry to the frame that draws its forecast,
+which are not the same. Drag: one step along the ribbon, drawn. Software OpenGL, no display.
 """
 
 from __future__ import annotations
