@@ -133,9 +133,11 @@ def _run_outcomes(chosen: argparse.Namespace) -> int:
 def _run_export(chosen: argparse.Namespace) -> int:
     from planner.errors import InputError
     from planner.records.exchange import export_cases, export_fhir
-    from planner.records.reading import read_case, write_atomically
+    from planner.records.reading import content_of, read_case, write_atomically
 
-    cases = [read_case(path.read_bytes()) for path in chosen.cases]
+    if chosen.fhir and chosen.with_identity:
+        raise InputError("with_identity", "A FHIR Bundle carries the local reference only, never name and birth date.")
+    cases = [read_case(content_of(path)) for path in chosen.cases]
     if chosen.fhir and len(cases) != 1:
         raise InputError("cases", f"A FHIR Bundle holds one case; {len(cases)} were named.")
     content, said = export_fhir(cases[0]) if chosen.fhir else export_cases(cases, with_identity=chosen.with_identity)
@@ -145,17 +147,18 @@ def _run_export(chosen: argparse.Namespace) -> int:
 
 
 def _run_import(chosen: argparse.Namespace) -> int:
-    from planner.records.exchange import Taken, import_file, import_folder, save_cases
+    from planner.errors import InputError
+    from planner.records.exchange import import_path, save_cases
 
-    found: list[Taken] = []
-    for path in chosen.files:
-        found += import_folder(path) if path.is_dir() else [import_file(path.read_bytes(), path.name)]
+    found = [taken for path in chosen.files for taken in import_path(path)]
     for one in found:
         for sentence in one.said:
             print(f"{one.name}: {sentence}")
-    written = save_cases((case for one in found for case in one.cases), chosen.out)
-    print(*written, sep="\n")
-    return 0 if written else 2
+    cases = [case for one in found for case in one.cases]
+    if not cases:
+        raise InputError("files", "No case was taken: nothing named is or holds a case, an export or a FHIR Bundle.")
+    print(*save_cases(cases, chosen.out), sep="\n")
+    return 0
 
 
 def _run_profiles(_: argparse.Namespace) -> int:

@@ -57,7 +57,12 @@ def _differences(where: tuple[str, ...], old: Any, new: Any) -> Iterator[Differe
     elif isinstance(old, list) and isinstance(new, list) and _holds_entries(old, new):
         yield from _of_lists(where, old, new)
     else:
-        yield Difference(", ".join(where), _value(old), _value(new))
+        before, after = _value(old), _value(new)
+        if before == after == NOT_ENTERED:
+            return
+        if before == after:  # alike as far as numbers are rounded to be read
+            before, after = str(old), str(new)
+        yield Difference(", ".join(where), before, after)
 
 
 def _of_lists(where: tuple[str, ...], old: list[Any], new: list[Any]) -> Iterator[Difference]:

@@ -9,10 +9,23 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
+from pydantic import ValidationError
+
 from planner.case import FORMAT, Case
-from planner.errors import PlannerError
-from planner.records.fhir import from_bundle, to_bundle
-from planner.records.reading import CaseFileError, read_case, read_json_object, write_atomically, write_case
+from planner.case.patient import Patient
+from planner.errors import InputError, PlannerError
+from planner.records.fhir import to_bundle
+from planner.records.fhir_reading import from_bundle, local_reference
+from planner.records.reading import (
+    MAX_BYTES,
+    CaseFileError,
+    content_of,
+    read_case,
+    read_json_object,
+    shown,
+    write_atomically,
+    write_case,
+)
 
 EXCHANGE = "oxygen-altitude-exchange"
 EXCHANGE_VERSION = 1
@@ -41,14 +54,24 @@ def without_identity(case: Case) -> tuple[Case, tuple[str, ...]]:
 
 
 def export_cases(cases: Iterable[Case], *, with_identity: bool = False) -> tuple[bytes, tuple[str, ...]]:
-    """Cases in one file of this program, and what is to be known as sentences."""
+    """Cases in one file of this program, and what is to be known as sentences.
+
+    Raises InputError where the file would be too large to be read back.
+    """
     kept, said = [], list[str]()
     for case in cases:
         shown, changes = (case, ()) if with_identity else without_identity(case)
         kept.append(json.loads(write_case(shown)))
         said += changes
     table = {"format": EXCHANGE, "version": EXCHANGE_VERSION, "cases": kept}
-    return (json.dumps(table, ensure_ascii=False, indent=1) + "\n").encode(), tuple(dict.fromkeys(said))
+    content = (json.dumps(table, ensure_ascii=False, indent=1) + "\n").encode()
+    if len(content) > MAX_BYTES:
+        raise InputError(
+            "cases",
+            f"A file of these {len(kept):,} cases would have {len(content):,} bytes; at most {MAX_BYTES:,} can be read "
+            "back. Put them into several files.",
+        )
+    return content, tuple(dict.fromkeys(said))
 
 
 def export_fhir(case: Case) -> tuple[bytes, tuple[str, ...]]:
@@ -64,9 +87,7 @@ def import_file(content: bytes, name: str = "the file") -> Taken:
     """
     table = read_json_object(content)
     if table.get("resourceType") is not None:
-        measurements, said = from_bundle(table)
-        case = Case(measurements=measurements)
-        return Taken(name, (case,) if measurements else (), (*said, f"Measurements taken: {len(measurements)}."))
+        return _from_fhir(name, table)
     if table.get("format") != EXCHANGE:
         return Taken(name, (read_case(content),), ())
     if table.get("version") != EXCHANGE_VERSION:
@@ -77,14 +98,21 @@ def import_file(content: bytes, name: str = "the file") -> Taken:
     return _several(name, listed)
 
 
+def import_path(path: Path) -> tuple[Taken, ...]:
+    """What a file, or every .json file of a folder, holds. Raises PlannerError for a faulty file, or OSError."""
+    return import_folder(path) if path.is_dir() else (import_file(content_of(path), printable(path)),)
+
+
 def import_folder(folder: Path) -> tuple[Taken, ...]:
     """Every .json file of a folder, by name; what cannot be read is told and left. Raises OSError."""
     found = []
-    for path in sorted(folder.glob("*.json")):
+    for path in sorted(one for one in folder.iterdir() if one.suffix.lower() == ".json"):
         try:
-            found.append(import_file(path.read_bytes(), path.name))
+            found.append(import_file(content_of(path), printable(path)))
         except PlannerError as error:
-            found.append(Taken(path.name, (), (f"Not taken: {error}",)))
+            found.append(Taken(printable(path), (), (f"Not taken: {error}",)))
+        except OSError as error:
+            found.append(Taken(printable(path), (), (f"Not taken: it cannot be read: {error.strerror}.",)))
     return tuple(found)
 
 
@@ -108,6 +136,24 @@ def file_name(words: str) -> str:
     """Words as a harmless file name: letters, digits and dashes only, never a path."""
     plain = re.sub(r"[^A-Za-z0-9]+", "-", words).strip("-")[:MOST_NAME]
     return plain or "case"
+
+
+def printable(path: Path) -> str:
+    """The name of a file as it may be printed anywhere."""
+    return path.name if path.name.isprintable() else shown(path.name)
+
+
+def _from_fhir(name: str, table: dict[str, Any]) -> Taken:
+    measurements, said = from_bundle(table)
+    reference, more = local_reference(table)
+    told = (*more, *said, f"Measurements taken: {len(measurements)}.")
+    if not measurements:
+        return Taken(name, (), told)
+    try:
+        return Taken(name, (Case(patient=Patient(reference=reference), measurements=measurements),), told)
+    except ValidationError as error:
+        allowed = error.errors(include_url=False)[0]["msg"]
+        raise CaseFileError((f"The bundle has more measurements than a case holds: {allowed}.",)) from None
 
 
 def _several(name: str, listed: list[Any]) -> Taken:

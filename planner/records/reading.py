@@ -33,17 +33,17 @@ def read_case(content: bytes | str) -> Case:
     """The case in a file's content. Raises CaseFileError with a sentence for each fault; nothing is repaired."""
     table = read_json_object(content)
     if table.get("format") != FORMAT:
-        raise CaseFileError((f"This is not a case file: its format is {_given(table.get('format'))}, not {FORMAT!r}.",))
+        raise CaseFileError((f"This is not a case file: its format is {shown(table.get('format'))}, not {FORMAT!r}.",))
     version = table.get("version")
     if not isinstance(version, int) or isinstance(version, bool) or not 1 <= version <= VERSION:
         raise CaseFileError(
-            (f"This program reads case files of version {VERSION}; this one has version {_given(version)}.",)
+            (f"This program reads case files of version {VERSION}; this one has version {shown(version)}.",)
         )
     try:
         return Case.model_validate_json(json.dumps(table))
     except ValidationError as error:
         details = error.errors(include_url=False)
-        faults = [_sentence(one) for one in details[:_SHOWN_FAULTS]]
+        faults = [fault_sentence(one) for one in details[:_SHOWN_FAULTS]]
         if len(details) > _SHOWN_FAULTS:
             faults.append(f"There are {len(details) - _SHOWN_FAULTS} more faults.")
         raise CaseFileError(tuple(faults)) from None
@@ -54,11 +54,22 @@ def write_case(case: Case) -> str:
     return case.model_dump_json(indent=1) + "\n"
 
 
+def content_of(path: Path) -> bytes:
+    """The content of a file, up to just more than is read of one. Raises OSError, or CaseFileError for no plain file.
+
+    A device or a pipe is refused: it may never end.
+    """
+    if path.exists() and not path.is_file():
+        raise CaseFileError((f"{shown(path.name)} is not a file.",))
+    with path.open("rb") as file:
+        return file.read(MAX_BYTES + 1)
+
+
 def read_json_object(content: bytes | str) -> dict[str, Any]:
     """A JSON object without duplicate keys, endless numbers or hostile depth. Raises CaseFileError."""
     raw = content.encode() if isinstance(content, str) else content
     if len(raw) > MAX_BYTES:
-        raise CaseFileError((f"The file has {len(raw):,} bytes; at most {MAX_BYTES:,} are read.",))
+        raise CaseFileError((f"The file has too many bytes; at most {MAX_BYTES:,} are read.",))
     try:
         text = raw.decode("utf-8-sig")
     except UnicodeDecodeError as error:
@@ -78,6 +89,21 @@ def read_json_object(content: bytes | str) -> dict[str, Any]:
     if not isinstance(table, dict):
         raise CaseFileError(("The file holds no case: an object in braces is expected.",))
     return table
+
+
+def fault_sentence(detail: ErrorDetails) -> str:
+    """A fault of a value as a sentence: where, what is allowed and what was given."""
+    where = ".".join(_step(step) for step in detail["loc"]) or "the case"
+    message = detail["msg"].removeprefix("Value error, ")
+    if detail["type"] in ("value_error", "missing", "extra_forbidden"):
+        return f"{where}: {message}."
+    return f"{where}: {message}; {shown(detail['input'])} was given."
+
+
+def shown(value: Any) -> str:
+    """What was given, as it may be printed anywhere: quoted, unprintable letters escaped, cut where long."""
+    text = repr(value)
+    return text if len(text) <= _SHOWN_CHARACTERS else text[:_SHOWN_CHARACTERS] + "…"
 
 
 def write_atomically(path: Path, content: bytes) -> None:
@@ -101,17 +127,10 @@ def write_atomically(path: Path, content: bytes) -> None:
             os.close(folder)
 
 
-def _sentence(detail: ErrorDetails) -> str:
-    where = ".".join(str(step + 1) if isinstance(step, int) else step for step in detail["loc"]) or "the case"
-    message = detail["msg"].removeprefix("Value error, ")
-    if detail["type"] in ("value_error", "missing", "extra_forbidden"):
-        return f"{where}: {message}."
-    return f"{where}: {message}; {_given(detail['input'])} was given."
-
-
-def _given(value: Any) -> str:
-    text = repr(value)
-    return text if len(text) <= _SHOWN_CHARACTERS else text[:_SHOWN_CHARACTERS] + "…"
+def _step(step: int | str) -> str:
+    if isinstance(step, int):
+        return str(step + 1)
+    return step if step.isprintable() else shown(step)
 
 
 def _without_duplicates(pairs: list[tuple[str, Any]]) -> dict[str, Any]:
@@ -119,7 +138,7 @@ def _without_duplicates(pairs: list[tuple[str, Any]]) -> dict[str, Any]:
     for key, value in pairs:
         if key in table:
             raise ValueError(
-                f"The key {_given(key)} stands twice in the same object; which one is meant cannot be known."
+                f"The key {shown(key)} stands twice in the same object; which one is meant cannot be known."
             )
         table[key] = value
     return table
@@ -132,7 +151,7 @@ def _refuse_constant(name: str) -> float:
 def _finite(text: str) -> float:
     value = float(text)
     if math.isinf(value):
-        raise ValueError(f"The number {_given(text)} is too large.")
+        raise ValueError(f"The number {shown(text)} is too large.")
     return value
 
 

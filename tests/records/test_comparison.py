@@ -7,6 +7,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from planner.case import Case
+from planner.case.patient import Patient
 from planner.catalogue import profile_text
 from planner.records.comparison import Difference, compare
 from planner.records.reading import read_case
@@ -74,6 +75,15 @@ def test_a_decision_is_named_by_its_part_and_activity():
     ((where, before, after),) = said(change)
     assert where == "Decided oxygen, flight 1 rest, flow (L/min)"
     assert (before, after) == ("2", "3")
+
+
+def test_numbers_that_differ_never_look_alike():
+    before, after = (Case(patient=Patient(age_years=age)) for age in (71.12345678, 71.12345679))
+    assert compare(before, after) == (Difference("Patient, age (years)", "71.12345678", "71.12345679"),)
+
+
+def test_an_empty_word_and_no_word_are_both_not_entered():
+    assert compare(Case(patient=Patient(name="")), Case(patient=Patient(name=None))) == ()
 
 
 @given(st.integers(1, 110), st.sampled_from(["UK", "US", "EU"]), st.floats(0.0, 1.0))

@@ -1,16 +1,27 @@
 """Cases out and in: the same again, no identity unasked, and a sentence for whatever is hostile."""
 
 import json
+import os
 from datetime import date
 
 import pytest
 
 from planner.__main__ import main
 from planner.case import Case
+from planner.case.measurements import Haemoglobin
 from planner.case.patient import Patient
 from planner.catalogue import profile_text
-from planner.records.exchange import export_cases, file_name, import_file, import_folder, save_cases
-from planner.records.reading import CaseFileError, read_case, write_case
+from planner.errors import InputError
+from planner.records.exchange import (
+    export_cases,
+    export_fhir,
+    file_name,
+    import_file,
+    import_folder,
+    import_path,
+    save_cases,
+)
+from planner.records.reading import MAX_BYTES, CaseFileError, read_case, write_case
 
 DEMOS = [read_case(profile_text(f"demo/{name}.json")) for name in ("copd_layover", "fibrosis_mountain_hotel")]
 NAMED = Case(patient=Patient(reference="R-7", name="Zorro Zorrino", birth_date=date(1958, 1, 1), age_years=68))
@@ -114,6 +125,65 @@ def test_a_folder_is_taken_with_a_sentence_for_what_cannot_be_read(tmp_path):
     found = import_folder(tmp_path)
     assert [(one.name, len(one.cases)) for one in found] == [("a.json", 2), ("b.json", 0)]
     assert found[1].said[0].startswith("Not taken: The file is not JSON")
+
+
+def test_one_bad_thing_in_a_folder_does_not_end_the_others(tmp_path):
+    (tmp_path / "a.json").mkdir()
+    os.mkfifo(tmp_path / "b.json")
+    (tmp_path / "c.json").symlink_to("/dev/zero")
+    (tmp_path / "d.json").symlink_to(tmp_path / "nowhere")
+    (tmp_path / "e.json").write_bytes(b" " * (MAX_BYTES + 1))
+    (tmp_path / "f.JSON").write_bytes(export_cases(DEMOS)[0])
+    (tmp_path / "g\x1b[2J.json").write_text("{")
+    found = import_folder(tmp_path)
+    assert [len(one.cases) for one in found] == [0, 0, 0, 0, 0, 2, 0]
+    sentences = [one.said[0] for one in found if one.said]
+    assert all(sentence.startswith("Not taken: ") for sentence in sentences)
+    assert [sentence.endswith("is not a file.") for sentence in sentences[:3]] == [True] * 3
+    assert "No such file" in sentences[3]
+    assert "at most 5,000,000" in sentences[4]
+    assert all(one.name.isprintable() for one in found)
+
+
+def test_a_pipe_or_a_device_is_refused_by_its_name(tmp_path):
+    os.mkfifo(tmp_path / "b.json")
+    with pytest.raises(CaseFileError, match=r"'b\.json' is not a file"):
+        import_path(tmp_path / "b.json")
+
+
+def test_a_file_that_could_not_be_read_back_is_not_written():
+    size = len(export_cases([DEMOS[0]])[0])
+    most = MAX_BYTES // size
+    assert len(import_file(export_cases([DEMOS[0]] * most)[0]).cases) == most
+    with pytest.raises(InputError, match=r"at most 5,000,000 can be read back\. Put them into several files"):
+        export_cases([DEMOS[0]] * (most + 20))
+
+
+def test_the_local_reference_goes_out_and_in_by_fhir():
+    (there,) = import_file(export_fhir(DEMOS[0])[0]).cases
+    assert there.patient == Patient(reference=DEMOS[0].patient.reference)
+
+
+def test_more_measurements_than_a_case_holds_are_refused():
+    case = Case(measurements=tuple(Haemoglobin(haemoglobin_g_dl=14.0) for _ in range(200)))
+    table = json.loads(export_fhir(case)[0])
+    table["entry"].append(table["entry"][-1])
+    with pytest.raises(CaseFileError, match=r"more measurements than a case holds: .*200"):
+        import_file(json.dumps(table).encode())
+
+
+def test_the_command_line_says_why_nothing_came_or_goes(tmp_path, capsys):
+    case, folder = tmp_path / "case.json", tmp_path / "in"
+    case.write_text(write_case(DEMOS[0]))
+    assert main(["export", str(case), "--out", str(folder), "--fhir", "--with-identity"]) == 2
+    assert "never name and birth date" in capsys.readouterr().err
+    assert not folder.exists()
+    (tmp_path / "empty").mkdir()
+    assert main(["import", str(tmp_path / "empty"), "--out", str(folder)]) == 2
+    assert "No case was taken" in capsys.readouterr().err
+    assert not folder.exists()
+    assert main(["export", "/dev/zero", "--out", str(folder)]) == 2
+    assert "is not a file" in capsys.readouterr().err
 
 
 def test_the_command_line_exports_and_imports(tmp_path, capsys):

@@ -11,8 +11,11 @@ from hypothesis import strategies as st
 
 from planner.case import Case
 from planner.case.measurements import BloodGas, Breathing, Haemoglobin, LungFunction, Oximetry, Place, WalkTest
+from planner.case.patient import Patient
 from planner.catalogue import profile_text
-from planner.records.fhir import FhirError, from_bundle, to_bundle
+from planner.records.fhir import to_bundle
+from planner.records.fhir_codes import FIO2, FLOW, LOINC, QUANTITIES, FhirError
+from planner.records.fhir_reading import from_bundle, local_reference
 from planner.records.reading import read_case
 
 GAS = BloodGas(taken_on=date(2026, 11, 12), pao2_mmhg=69.5, paco2_mmhg=39.6, ph=7.41, state="stable",
@@ -83,7 +86,7 @@ def test_the_person_is_a_local_reference_only():
 @pytest.mark.parametrize(
     ("resource", "sentence"),
     [
-        (observation("9999-9"), "no code of it is known here (9999-9)"),
+        (observation("9999-9"), "no code of it is known here ('9999-9')"),
         (observation(unit="torr"), "PaO2, arterial blood is in 'torr'; mm[Hg] or kPa is understood"),
         (observation(status="preliminary"), "'preliminary', not a final result"),
         (observation(valueQuantity={"value": 60.0, "comparator": "<", "code": "mm[Hg]"}), "no plain number"),
@@ -91,7 +94,7 @@ def test_the_person_is_a_local_reference_only():
         (observation(valueQuantity="60"), "has no quantity"),
         (observation(effectiveDateTime="soon"), "'soon' is not a whole date"),
         (observation(value=6000.0), "less than or equal to 700"),
-        ({"resourceType": "Device"}, "it is a Device, not an Observation"),
+        ({"resourceType": "Device"}, "it is a 'Device', not an Observation"),
         ({"resourceType": "Observation", "status": "final", "code": [1]}, "no LOINC code"),
     ],
 )
@@ -131,6 +134,171 @@ def test_a_reading_on_the_move_is_not_sent_as_one_at_rest():
     )
 
 
+def component(code, value, unit):
+    coding = [{"system": LOINC, "code": code}]
+    return {"code": {"coding": coding}, "valueQuantity": {"value": value, "code": unit}}
+
+
+def oximetry(*components, **more):
+    return observation("59408-5", 92.0, "%", component=list(components), **more)
+
+
+@pytest.mark.parametrize("code", [*(one.code for one in QUANTITIES), FLOW, FIO2])
+def test_every_code_that_is_written_ends_in_its_check_digit(code):
+    # The last digit of a LOINC code is a modulus 10 check digit (LOINC Users' Guide, from memory).
+    digits = [int(letter) for letter in reversed(code.replace("-", ""))]
+    assert (sum(digits[::2]) + sum(sum(divmod(2 * digit, 10)) for digit in digits[1::2])) % 10 == 0
+
+
+def test_measurements_of_two_persons_are_never_one_case():
+    gas = observation(subject={"reference": "Patient/1"}), observation("2019-8", subject={"reference": "Patient/2"})
+    person = {"resourceType": "Patient"}
+    for resources in (gas, (person, person)):
+        with pytest.raises(FhirError, match="2 persons; a case is one person"):
+            read(*resources)
+
+
+def test_the_local_reference_comes_back_and_a_number_of_a_system_does_not():
+    case = read_case(profile_text("demo/copd_layover.json"))
+    assert local_reference(to_bundle(case)[0]) == (case.patient.reference, ())
+    person = {"resourceType": "Patient", "identifier": [{"system": "urn:oid:1.2", "value": "943 476 5919"}],
+              "name": [{"family": "Zorrino"}]}  # fmt: skip
+    reference, said = local_reference({"resourceType": "Bundle", "entry": [{"resource": person}]})
+    assert reference == ""
+    assert [sentence.split(": ")[1][:12] for sentence in said] == ["the number o", "name and bir"]
+
+
+def test_a_bundle_without_a_reference_carries_no_initials():
+    made, _ = to_bundle(Case(patient=Patient(initials="Q. Z."), measurements=(GAS,)))
+    assert "Q. Z." not in str(made)
+
+
+def test_a_saturation_of_vital_signs_is_never_taken_for_arterial_blood():
+    both = [{"system": LOINC, "code": code} for code in ("2708-6", "59408-5")]
+    (taken,), _ = read(oximetry() | {"code": {"coding": both}})
+    assert (taken.kind, taken.spo2_percent) == ("oximetry", 92.0)
+    vital = [{"coding": [{"code": "vital-signs"}]}]
+    taken, said = read(observation("2708-6", 92.0, "%", category=vital))
+    assert taken == ()
+    assert "does not say whether blood was drawn" in said[0]
+    (taken,), _ = read(observation("2708-6", 92.0, "%"))
+    assert taken.sao2_percent == 92.0
+
+
+def test_oxygen_by_a_setting_is_not_sent_to_be_read_as_air():
+    pulses = Oximetry(spo2_percent=93.0, breathing=Breathing(gas="oxygen", device_id="pulse", setting=2.0))
+    made, left = to_bundle(Case(measurements=(pulses,)))
+    assert len(made["entry"]) == 1
+    assert "would be read as on air and stays behind" in left[0]
+
+
+def test_a_thin_mixture_comes_back_as_it_went():
+    thin = Oximetry(spo2_percent=83.0, breathing=Breathing(gas="air", fio2=0.15))
+    (there,), _ = from_bundle(bundle(thin))
+    assert there == thin
+
+
+@pytest.mark.parametrize(
+    ("parts", "breathed"),
+    [
+        ([component("3151-8", 0, "L/min")], Breathing()),
+        ([component("3151-8", 2, "l/min")], Breathing(gas="oxygen", flow_l_min=2.0)),
+        ([component("3150-0", 28, "%")], Breathing(gas="oxygen", fio2=0.28)),
+        ([component("3150-6", 28, "%")], Breathing(gas="oxygen", fio2=0.28)),
+        ([component("3150-0", 21, "%")], Breathing()),
+    ],
+)
+def test_what_was_breathed_is_read_from_its_codes(parts, breathed):
+    (taken,), said = read(oximetry(*parts))
+    assert taken.breathing == breathed
+    assert not any("room air" in sentence for sentence in said)
+
+
+def test_inhaled_oxygen_of_its_own_belongs_to_the_reading_of_the_same_moment():
+    flow = observation("3151-8", 2.0, "L/min")
+    (taken,), said = read(oximetry(), flow)
+    assert taken.breathing == Breathing(gas="oxygen", flow_l_min=2.0)
+    assert "taken as on the inhaled oxygen of the same moment. Check it." in said[0]
+    (own,), _ = read(oximetry(component("3150-0", 21.0, "%")), flow)
+    assert own.breathing.gas == "air"
+
+
+@pytest.mark.parametrize(
+    "change",
+    [
+        {"effectiveDateTime": "2026-11-12T17:00:00+01:00"},
+        {"effectiveDateTime": "2026-11-13T00:30:00+11:00"},
+        {"effectiveDateTime": None},
+        {"effectiveDateTime": "2026-11"},
+        {"effectiveDateTime": "soon"},
+        {"status": "preliminary"},
+        {"valueQuantity": {"value": 2.0, "code": "mL/min"}},
+    ],
+)
+def test_a_reading_is_not_taken_as_on_air_where_oxygen_of_that_day_is_not_understood(change):
+    taken, said = read(oximetry(), observation("3151-8", 2.0, "L/min") | change)
+    assert [one.kind for one in taken if one.breathing.gas == "air"] == []
+    assert any("may be its own" in sentence for sentence in said), said
+
+
+def test_oxygen_of_another_day_changes_nothing():
+    (taken,), _ = read(oximetry(), observation("3151-8", 2.0, "L/min", effectiveDateTime="2026-10-01"))
+    assert taken.breathing.gas == "air"
+
+
+def test_two_flows_of_one_moment_are_not_chosen_between():
+    taken, said = read(oximetry(), observation("3151-8", 2.0, "L/min"), observation("3151-8", 4.0, "L/min"))
+    assert taken == ()
+    assert "two values at the same moment" in said[0]
+
+
+def test_values_of_two_samples_of_one_day_are_never_one_gas():
+    later = {"effectiveDateTime": "2026-11-12T15:00:00+01:00"}
+    taken, _ = read(observation(value=60.0), observation(value=50.0, **later), observation("2019-8", 55.0, **later))
+    assert [(one.pao2_mmhg, one.paco2_mmhg) for one in taken] == [(60.0, None), (50.0, 55.0)]
+    halves = (GAS.model_copy(update={"paco2_mmhg": None}), GAS.model_copy(update={"pao2_mmhg": None}))
+    assert from_bundle(bundle(*halves))[0] == halves
+
+
+@pytest.mark.parametrize(
+    ("resource", "sentence"),
+    [
+        (oximetry(component("3151-8", 90.0, "L/min")), "flow_l_min"),
+        (oximetry(component("3150-0", 900.0, "%")), "fio2"),
+        (oximetry({"code": {"text": "Elevation where taken"}, "valueQuantity": {"value": 9000, "code": "m"}}), "5200"),
+        (observation(value=10**400), "no number that can be measured"),
+        (observation(value=float("nan")), "no number that can be measured"),
+        (observation(valueQuantity={"value": 60, "code": "mm[Hg]", "system": "urn:own"}), "a unit of 'urn:own'"),
+        (observation(effectiveDateTime="2026-11-12 or so"), "is not a whole date"),
+        (observation(effectiveDateTime=20261112), "is not a whole date"),
+        ({"resourceType": "\ud800\x1b[2J"}, "it is a '\\ud800\\x1b[2J', not an Observation"),
+        (None, "it holds no resource"),
+    ],
+)
+def test_a_hostile_entry_is_told_in_words_that_can_be_printed(resource, sentence):
+    taken, said = read(resource, observation("718-7", 14.0, "g/dL"))
+    assert [one.kind for one in taken] == ["haemoglobin"]
+    assert any(sentence in one for one in said), said
+    assert all(one.isprintable() for one in said)
+
+
+def test_a_part_of_an_entry_that_is_not_understood_is_told():
+    _, said = read(oximetry(component("8867-4", 80.0, "/min"), component("3150-0", 21.0, "%")))
+    assert said == ("Entry 1: Oxygen saturation by pulse oximetry: a part of it is not understood ('8867-4').",)
+
+
+def test_what_has_no_code_of_an_entry_that_goes_is_told():
+    partly = Oximetry(spo2_percent=93.0, heart_rate_min=80.0)
+    assert to_bundle(Case(measurements=(partly,)))[1][0] == (
+        "Oximetry without a day: the heart rate has no standard code here and stays behind."
+    )
+
+
+def test_a_bundle_of_endless_entries_is_refused():
+    with pytest.raises(FhirError, match=r"2,001 entries; at most 2,000 are read"):
+        read(*[observation()] * 2001)
+
+
 @pytest.mark.parametrize("content", [{}, {"resourceType": "Patient"}, {"resourceType": "Bundle", "entry": 3}])
 def test_what_is_no_bundle_is_refused(content):
     with pytest.raises(FhirError, match="not a FHIR Bundle"):
@@ -143,7 +311,7 @@ def test_without_the_extra_it_says_how_to_get_it(monkeypatch):
         to_bundle(Case(measurements=(GAS,)))
 
 
-@given(st.recursive(st.none() | st.booleans() | st.floats(allow_nan=False) | st.text(max_size=5),
+@given(st.recursive(st.none() | st.booleans() | st.floats() | st.integers() | st.text(max_size=5),
                     lambda inner: st.lists(inner, max_size=3) | st.dictionaries(st.sampled_from(
                         ["resourceType", "code", "coding", "value", "valueQuantity", "component", "text", "status"]),
                         inner, max_size=4), max_leaves=12))  # fmt: skip

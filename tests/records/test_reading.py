@@ -84,6 +84,10 @@ def test_a_very_long_wrong_value_is_not_told_whole():
     assert len(sentence) < 300
 
 
+def test_an_unknown_key_is_told_in_letters_that_can_be_printed():
+    assert faults("{" + HEAD + ', "\\u001b[2J": 1}')[0].isprintable()
+
+
 def assert_case_or_refusal(content):
     told = ("a case",)
     try:
