@@ -10,7 +10,7 @@ from pathlib import Path
 from planner.case import Case
 from planner.catalogue import profile_text
 from planner.errors import StoreError
-from planner.records.exchange import Taken, export_cases, export_fhir, file_name, import_file, import_folder
+from planner.records.exchange import Taken, export_cases, export_fhir, file_name, import_path, printable
 from planner.records.reading import read_case, write_atomically
 from planner.records.store import FILE_NAME, CaseEntry, CaseStore, VersionEntry, new_case_id
 from ui.widgets.typing import date_text
@@ -141,11 +141,11 @@ class Library:
 
     def read_file(self, path: Path) -> Taken:
         """Cases from a case file, an export, a FHIR Bundle or a folder of them. Raises PlannerError, or OSError."""
-        if path.is_dir():
-            found = import_folder(path)
-            said = [f"{one.name}: {sentence}" for one in found for sentence in one.said]
-            return Taken(path.name, tuple(case for one in found for case in one.cases), tuple(said))
-        return import_file(path.read_bytes(), path.name)
+        found = import_path(path)
+        if not path.is_dir():
+            return found[0]
+        said = [f"{one.name}: {sentence}" for one in found for sentence in one.said]
+        return Taken(printable(path), tuple(case for one in found for case in one.cases), tuple(said))
 
     def export(self, case_id: str, folder: Path, *, fhir: bool, with_identity: bool) -> tuple[Path, tuple[str, ...]]:
         """Write one case to a file of its own, with what is to be known of it. Raises PlannerError, or OSError."""
